@@ -1,0 +1,173 @@
+"""The lines of one calculation as they stand: who wrote them, in which order, what rests on what.
+
+Knows cells, transactions, replacing and removing lines, and when a line is stale. Must not know how a line is
+computed, shown or exported.
+"""
+
+from __future__ import annotations
+
+import copy
+from collections.abc import Callable, Iterator
+from contextlib import contextmanager
+from dataclasses import dataclass, field, replace
+from typing import Any
+
+from calckit.core.record import Figure, Line, Table, canonical, digest
+from calckit.core.settings import Settings
+from calckit.errors import DuplicateError
+
+
+@dataclass(frozen=True)
+class Cell:
+    """A run of a cell: the cell's `key` and the number of the `run`."""
+
+    key: str
+    run: int
+
+
+@dataclass
+class Entry:
+    """A line with what the core must remember beside it.
+
+    `numerals` are the digits as typed (None for a computed value), `decimals` those of the shown form; `remake` works
+    the line again with other decimals, for the column of a table.
+    """
+
+    line: Line
+    cell: Cell
+    numerals: tuple[str, ...] | None = None
+    decimals: int = 0
+    remake: Callable[[int], Entry] | None = None
+
+
+def this_cell() -> Cell:
+    """The cell that is running; outside a notebook the whole script counts as one run."""
+    shell = _shell()
+    if shell is None:
+        return Cell("script", 0)
+    metadata = shell.get_parent().get("metadata", {}) if hasattr(shell, "get_parent") else {}
+    return Cell(metadata.get("cellId") or f"run {shell.execution_count}", shell.execution_count)
+
+
+def _shell() -> Any:
+    try:
+        from IPython import get_ipython
+    except ImportError:
+        return None
+    return get_ipython()
+
+
+@dataclass
+class Book:
+    """All lines, tables and figures of a calculation, in document order."""
+
+    settings: Settings
+    entries: dict[str, Entry] = field(default_factory=dict)
+    tables: dict[str, Table] = field(default_factory=dict)
+    figures: dict[str, Figure] = field(default_factory=dict)
+    blocks: list[tuple[Cell, str, str]] = field(default_factory=list)
+    notices: list[str] = field(default_factory=list)
+    written: list[str] = field(default_factory=list)
+    fresh_tables: set[str] = field(default_factory=set)
+    depth: int = 0
+
+    def watch(self) -> None:
+        """Drop, after each run of a cell, the lines that the cell no longer writes."""
+        shell = _shell()
+        if shell is not None:
+            shell.events.register("post_run_cell", lambda _result: self.drop_left_over(this_cell()))
+
+    def drop_left_over(self, cell: Cell) -> None:
+        """Remove what earlier runs of this cell wrote and this run did not."""
+
+        def left_over(other: Cell) -> bool:
+            return other.key == cell.key and other.run < cell.run
+
+        for id_ in [id_ for id_, entry in self.entries.items() if left_over(entry.cell)]:
+            del self.entries[id_]
+        gone = [(kind, id_) for where, kind, id_ in self.blocks if left_over(where)]
+        self.blocks = [block for block in self.blocks if not left_over(block[0])]
+        for kind, id_ in gone:
+            store: dict[str, Any] = {"table": self.tables, "figure": self.figures}.get(kind, {})
+            if not any(block[1:] == (kind, id_) for block in self.blocks):
+                store.pop(id_, None)
+
+    @contextmanager
+    def together(self) -> Iterator[list[str]]:
+        """Write all lines or none; yields the list of ids written so far."""
+        kept = (dict(self.entries), dict(self.tables), dict(self.figures), list(self.blocks), list(self.written))
+        self.depth += 1
+        try:
+            yield self.written
+        except BaseException:
+            self.entries, self.tables, self.figures, self.blocks, self.written = kept
+            raise
+        finally:
+            self.depth -= 1
+
+    def write(self, entry: Entry) -> Entry:
+        """Put a line in its place: a new one at the end, a repeated one where it stood."""
+        line = entry.line
+        self._claim("line", line.id, self.entries[line.id].cell if line.id in self.entries else None)
+        headings, run = self.settings.headings, entry.cell.run
+        line.section = headings[run - 1] if 0 < run <= len(headings) else ""
+        line.content = digest(canonical(line.hashed()))
+        self.entries[line.id] = entry
+        self.written.append(line.id)
+        return entry
+
+    def write_table(self, table: Table) -> None:
+        """Put a table after the lines it prints."""
+        self._claim("table", table.id, self._where("table", table.id))
+        self.tables[table.id] = table
+
+    def write_figure(self, figure: Figure) -> None:
+        """Put a figure in its place."""
+        self._claim("figure", figure.id, self._where("figure", figure.id))
+        self.figures[figure.id] = figure
+
+    def _where(self, kind: str, id_: str) -> Cell | None:
+        return next((cell for cell, *block in self.blocks if block == [kind, id_]), None)
+
+    def _claim(self, kind: str, id_: str, earlier: Cell | None) -> None:
+        cell = this_cell()
+        if earlier is not None:
+            if earlier == cell:
+                raise DuplicateError(f"{kind} {id_!r} is written twice in one run of a cell; give one of them another id")
+            if self.settings.clean:
+                raise DuplicateError(f"{kind} {id_!r} is written by two cells; give one of them another id")
+            if earlier.key != cell.key:
+                self.notices.append(f"{kind} {id_} replaces the one that another cell wrote")
+        place = next((i for i, (_, *block) in enumerate(self.blocks) if block == [kind, id_]), None)
+        if place is None:
+            self.blocks.append((cell, kind, id_))
+        else:
+            self.blocks[place] = (cell, kind, id_)
+
+    def remade(self, entry: Entry) -> None:
+        """Put a line worked again with other decimals in place of itself."""
+        old = self.entries[entry.line.id].line
+        entry.line = replace(entry.line, section=old.section, content=old.content)
+        self.entries[entry.line.id] = entry
+
+    def find(self, part: str, name: str) -> Entry | None:
+        """What a name stands for in a part: the part's own line, then the calculation's."""
+        own = self.entries.get(f"{part}.{name}") if part and "." not in name else None
+        return own or self.entries.get(name)
+
+    def stale(self) -> dict[str, list[str]]:
+        """Lines whose operands are no longer what they were -> the operands; and all that rests on such lines."""
+        found: dict[str, list[str]] = {}
+        for id_, entry in self.entries.items():
+            for name, operand in entry.line.inputs.items():
+                now = self.find(entry.line.part, name)
+                if now is None or now.line.content != operand.content or now.line.id in found:
+                    found.setdefault(id_, []).append(name)
+        return found
+
+    def snapshot(self) -> list[Line]:
+        """Copies of all lines in document order, numbered 1..n."""
+        lines = [copy.deepcopy(self.entries[id_].line) for _, kind, id_ in self.blocks if kind == "line"]
+        for n, line in enumerate(lines, 1):
+            line.n = n
+        return lines

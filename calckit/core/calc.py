@@ -1,0 +1,175 @@
+"""A calculation and its parts.
+
+Knows the title block, documents, revisions and parts. Must not know how lines are made or reported.
+"""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Sequence
+from datetime import date as calendar_date
+from typing import Any
+
+from calckit.core import settings
+from calckit.core.book import Book, _shell
+from calckit.core.scope import Scope
+from calckit.core.sources import Document, Sources
+from calckit.core.standard import edition
+from calckit.core.symbol import Symbol
+from calckit.errors import DuplicateError, Fault, InputError, UnknownNameError
+
+STATUSES = ("preliminary", "for check", "checked", "for construction", "superseded", "void")
+
+_current: list[Calc] = []
+
+
+class Part(Scope):
+    """A named scope with its own symbols (a direction, a component)."""
+
+
+class Calc(Scope):
+    """One calculation package.
+
+    Arguments are the fields of the title block; `standard` names the standard in one edition, `units` the unit set
+    ("US" or "SI") in which empirical formulas are worked and results are shown, `supplements` those in force (None:
+    not answered; () for none), with `supplements_source`. Raises InputError naming every bad field at once.
+
+    >>> calc = Calc(project="Harbor Street Clinic", number="C-101", standard="ASCE 7-16")
+    >>> x = calc.part("X", "East-west direction")
+    >>> x is calc.part("X", "East-west direction")
+    True
+    """
+
+    def __init__(
+        self,
+        project: str,
+        number: str = "",
+        *,
+        location: str = "",
+        subject: str = "",
+        building_code: str = "",
+        amendments: Sequence[str] = (),
+        jurisdiction: str = "",
+        firm: str = "",
+        revision: str = "",
+        date: str = "",
+        status: str = "preliminary",
+        purpose: str = "",
+        prepared_by: str = "",
+        checked_by: str = "",
+        units: str = "US",
+        paper: str = "Letter",
+        standard: str = "ASCE 7-16",
+        supplements: Sequence[int] | None = None,
+        supplements_source: str = "",
+    ) -> None:
+        fields = {name: value for name, value in locals().items() if name != "self" and not name.startswith("__")}
+        self.superseded = False
+        super().__init__(self, "", "calculation")
+        run = settings.current()
+        self.title_block = _title_block(fields, run)
+        self.lines = Book(run)
+        self.standard = edition(self.title_block["standard"])
+        self.sources = Sources(self.standard)
+        self.parts: dict[str, Part] = {}
+        self.own_symbols: dict[str, Symbol] = {}
+        self.overrides: dict[str, tuple[Any, str, str, str]] = {}
+        self.revisions: list[dict[str, str]] = []
+        self.files: dict[str, bytes] = {}
+        self.figure_data: dict[str, bytes] = {}
+        if run.confirmed:
+            self.sources.read_register(run.confirmed)
+        if _shell() is not None:
+            for other in _current:
+                other.superseded = True
+        _current[:] = [self]
+        self.lines.watch()
+
+    def document(self, key: str, *, title: str, author: str = "", revision: str = "", date: str = "") -> None:
+        """Declare a document; sources name it by its key."""
+        self.sources.declare(Document(key, title, author, revision, date))
+
+    def revise(self, revision: str, *, date: str, reason: str, by: str, sheets: str = "") -> None:
+        """A row of the revision table."""
+        row = {"revision": revision, "date": date, "reason": reason, "by": by, "sheets": sheets}
+        faults = [Fault(f"revise {name}", "text", "blank") for name in ("revision", "date", "reason", "by") if not row[name].strip()]
+        if faults:
+            raise InputError("revise", faults)
+        if row not in self.revisions:
+            if any(other["revision"] == revision for other in self.revisions):
+                raise DuplicateError(f"revision {revision!r} is in the revision table already, with another row")
+            self.revisions.append(row)
+
+    def part(self, id_: str, title: str = "") -> Part:
+        """The part with this id, made at the first call."""
+        if self.superseded:
+            _ = self.book
+        if not re.fullmatch(r"[A-Za-z]\w*", id_):
+            raise InputError("part", [Fault(id_, "an id of letters and digits, starting with a letter", repr(id_))])
+        if id_ in self.standard.symbols:
+            raise InputError("part", [Fault(id_, "an id that is no symbol of the standard", repr(id_), "choose another id")])
+        if id_ not in self.parts:
+            self.parts[id_] = Part(self, id_, title or id_)
+        return self.parts[id_]
+
+
+def current() -> Calc | None:
+    """The calculation made last in this process."""
+    return _current[0] if _current else None
+
+
+def _title_block(fields: dict[str, Any], run: settings.Settings) -> dict[str, Any]:
+    block = dict(fields)
+    block["amendments"] = list(block["amendments"])
+    for name in block:
+        found = run.value(name)
+        if found:
+            block[name] = _typed_field(name, found[1], block[name], run)
+    block["status"] = run.status or block["status"]
+    block["date"] = run.date or block["date"]
+    faults = [fault for name in block if (fault := _field_fault(name, block[name]))]
+    if faults:
+        raise InputError("Calc", faults)
+    if block["supplements"] is not None:
+        block["supplements"] = sorted(block["supplements"])
+    return block
+
+
+def _typed_field(name: str, text: str, own: Any, run: settings.Settings) -> Any:
+    value: Any = text
+    if name == "amendments":
+        value = [part.strip() for part in text.split(";") if part.strip()]
+    if name == "supplements":
+        words = [part.strip() for part in text.split(",") if part.strip()]
+        numbers = words != ["none"]
+        value = [int(word) if word.isdigit() else word for word in words] if numbers else []
+    fault = _field_fault(name, value)
+    if fault is None and name == "standard":
+        try:
+            edition(value)
+        except UnknownNameError as error:
+            fault = Fault("standard", "an edition the kit offers", value, str(error))
+    if fault:
+        run.invalid[name] = str(fault)
+        return own
+    return value
+
+
+def _field_fault(name: str, value: Any) -> Fault | None:
+    choices = {"status": STATUSES, "units": ("US", "SI"), "paper": ("Letter", "A4")}.get(name)
+    if choices and value not in choices:
+        return Fault(name, f"one of {', '.join(choices)}", repr(value))
+    if name == "project" and not str(value).strip():
+        return Fault(name, "the project's name", "blank")
+    if name == "date" and value:
+        try:
+            calendar_date.fromisoformat(value)
+        except (TypeError, ValueError):
+            return Fault(name, "a day as YYYY-MM-DD", repr(value))
+    if name == "supplements" and value is not None:
+        if not all(isinstance(number, int) for number in value):
+            return Fault(name, "numbers of the supplements in force, or none", repr(value), 'write "1,3" or "none"')
+        return None
+    if name != "amendments" and value is not None and not isinstance(value, str):
+        return Fault(name, "text", repr(value))
+    return None

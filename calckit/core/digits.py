@@ -1,0 +1,120 @@
+"""The printed-digits rule: which digits are printed so that a line can be redone from them.
+
+Knows decimal rounding and the search for the fewest digits. Must not know expressions, lines or units.
+
+Values are rounded to 12 significant digits, then half up, in decimal. A result is shown to its symbol's significant
+digits, whole numbers never rounded to tens. Each operand is printed with the fewest digits, up to 10 significant, for
+which decimal arithmetic on the printed numerals gives the shown result; what was typed prints as typed.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable, Mapping, Sequence
+from dataclasses import dataclass, field
+from decimal import ROUND_HALF_UP, Decimal
+
+from calckit.core.numbers import DECIMAL
+
+CARRIED = 12
+MOST = 10
+MOST_IN_TABLE = 7
+
+
+def carried(value: float | Decimal) -> Decimal:
+    """A value rounded to 12 significant digits.
+
+    >>> carried(0.1 + 0.2)
+    Decimal('0.300000000000')
+    """
+    number = value if isinstance(value, Decimal) else Decimal(repr(float(value)))
+    if not number:
+        return Decimal(0)
+    return number.quantize(Decimal(1).scaleb(number.adjusted() - CARRIED + 1), ROUND_HALF_UP, DECIMAL)
+
+
+def decimals_for(values: Iterable[Decimal], digits: int) -> int:
+    """Number of decimals at which the largest of `values` has `digits` significant digits; never negative.
+
+    >>> decimals_for([Decimal("0.76045")], 4), decimals_for([Decimal(30394)], 4), decimals_for([Decimal(0)], 4)
+    (4, 0, 0)
+    """
+    largest = max((abs(value) for value in values), default=Decimal(0))
+    return max(0, digits - 1 - largest.adjusted()) if largest else 0
+
+
+def numeral(value: Decimal, decimals: int) -> str:
+    """The value rounded half up to `decimals`, in plain digits.
+
+    >>> numeral(Decimal("0.12345"), 4), numeral(Decimal("-0.00001"), 2)
+    ('0.1235', '0.00')
+    """
+    rounded = value.quantize(Decimal(1).scaleb(-decimals), ROUND_HALF_UP, DECIMAL)
+    return format(abs(rounded) if not rounded else rounded, "f")
+
+
+def typed_numeral(value: float) -> str:
+    """The digits of a number that was typed without text.
+
+    >>> typed_numeral(1.25), typed_numeral(62), typed_numeral(1e-7)
+    ('1.25', '62', '0.0000001')
+    """
+    return str(value) if isinstance(value, int) else format(Decimal(repr(value)), "f")
+
+
+@dataclass(frozen=True)
+class Operand:
+    """One operand of a line: its values (one, or one for each row), the decimals of its own shown form, and the
+    numerals as typed, if it was typed."""
+
+    values: tuple[Decimal, ...]
+    least: int
+    typed: tuple[str, ...] | None = None
+    most: int = field(init=False)
+
+    def __post_init__(self) -> None:
+        object.__setattr__(self, "most", max(self.least, decimals_for(self.values, MOST)))
+
+    def numerals(self, decimals: int) -> tuple[str, ...]:
+        """The printed numerals at this number of decimals."""
+        return self.typed or tuple(numeral(value, decimals) for value in self.values)
+
+    def admissible(self, decimals: int) -> bool:
+        """Whether rounding these printed digits gives every shorter form of the same values."""
+        return all(
+            numeral(Decimal(numeral(value, decimals)), fewer) == numeral(value, fewer)
+            for value in self.values
+            for fewer in range(self.least, decimals)
+        )
+
+    def choices(self) -> list[int]:
+        """The numbers of decimals that may be printed, fewest first."""
+        if self.typed:
+            return [self.least]
+        return [d for d in range(self.least, self.most + 1) if self.admissible(d)]
+
+
+def fewest(
+    operands: Mapping[str, Operand], accept: Callable[[Mapping[str, Sequence[Decimal]]], bool]
+) -> dict[str, tuple[str, ...]] | None:
+    """The printed numerals of every operand with the fewest digits that `accept` takes; None if there are none."""
+    choices = {name: operand.choices() for name, operand in operands.items()}
+
+    def printed(step: Mapping[str, int]) -> dict[str, tuple[str, ...]]:
+        return {name: operands[name].numerals(choices[name][step[name]]) for name in operands}
+
+    def accepted(step: Mapping[str, int]) -> bool:
+        return accept({name: [Decimal(text) for text in texts] for name, texts in printed(step).items()})
+
+    longest = max((len(options) for options in choices.values()), default=1)
+    for extra in range(longest):
+        step = {name: min(extra, len(options) - 1) for name, options in choices.items()}
+        if accepted(step):
+            break
+    else:
+        return None
+    for name in sorted(step, key=lambda name: -step[name]):
+        for fewer in range(step[name]):
+            if accepted(step | {name: fewer}):
+                step[name] = fewer
+                break
+    return printed(step)

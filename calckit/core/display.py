@@ -1,0 +1,126 @@
+"""Showing lines below the cell that wrote them.
+
+Knows the output forms a notebook takes: plain text, Markdown, LaTeX for a single formula, and the record's own. Must
+not know how a line came about.
+"""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Sequence
+from dataclasses import asdict
+from typing import Any
+
+from calckit.core.record import MIME, TO_BE_CONFIRMED, Line, Table
+
+
+def show(lines: Sequence[Line], tables: Sequence[Table], notices: Sequence[str]) -> None:
+    """Display lines and tables in a notebook; in a plain script nothing is shown."""
+    try:
+        from IPython import get_ipython
+        from IPython.display import display
+    except ImportError:
+        return
+    if get_ipython() is None or not (lines or tables or notices):
+        return
+    display(bundle(lines, tables, notices), raw=True)  # type: ignore[no-untyped-call]
+
+
+def bundle(lines: Sequence[Line], tables: Sequence[Table], notices: Sequence[str]) -> dict[str, Any]:
+    """The output forms of these lines."""
+    data: dict[str, Any] = {
+        "text/plain": "\n".join([*(plain(line) for line in lines), *(_plain_table(t) for t in tables), *notices]),
+        "text/markdown": "\n\n".join(
+            [*(_markdown(line) for line in lines), *(_markdown_table(t) for t in tables), *(_escaped(n) for n in notices)]
+        ),
+        MIME: {"lines": [asdict(line) for line in lines], "tables": [asdict(table) for table in tables]},
+    }
+    if len(lines) == 1 and not tables and not notices and lines[0].forms:
+        data["text/latex"] = f"$\\displaystyle {_latex(lines[0])}$"
+    return data
+
+
+def plain(line: Line) -> str:
+    """A line as text: symbol, formula, substitution, result, source."""
+    head = f"{line.id}  {line.meaning}"
+    value = _shown(line)
+    if line.kind == "check":
+        relation = "; ".join(line.forms.get("plain", []))
+        body = f"{relation}  {line.verdict}" + (f" (missing: {line.missing})" if line.missing else "")
+    elif line.forms:
+        symbolic, substituted = line.forms["plain"]
+        body = f"{line.typeset['plain']} = {symbolic} = {substituted} = {value}"
+    else:
+        body = " ".join(part for part in (f"{line.typeset['plain']} = {value}" if line.typeset else value, line.text) if part)
+    return "\n    ".join(part for part in (head, body, *_tail(line)) if part)
+
+
+def _shown(line: Line) -> str:
+    if isinstance(line.shown, list):
+        return f"{line.shown[line.rows.index(line.row)]} {line.unit} at {line.row}" if line.row else ", ".join(line.shown)
+    return line.shown
+
+
+def _tail(line: Line) -> list[str]:
+    tail = [line.detail] if line.detail else []
+    if line.override:
+        kit = line.computed.shown if line.computed else ""
+        tail.append(f"override: {line.override.shown} in place of {kit}; {line.override.reason} ({line.override.by})")
+    tail += [f"{item.equation}: {item.shown}{', governs' if item.governs else ''} ({item.reason})" for item in line.candidates]
+    if line.margin:
+        tail.append(f"margin: {line.margin.shown} {line.margin.to}")
+    if line.source:
+        mark = line.source.confirmed or (TO_BE_CONFIRMED if line.source.standard else "")
+        tail.append(f"{line.source.text()}" + (f" - {mark}" if mark else ""))
+    tail += [("open item: " if flag.open else "flag: ") + flag.text for flag in line.flags]
+    return tail
+
+
+def _latex(line: Line) -> str:
+    symbolic, substituted = line.forms["latex"]
+    if line.kind == "check":
+        return rf"\begin{{aligned}}&{symbolic}\\&{substituted}\end{{aligned}}"
+    shown = _text_latex(_shown(line))
+    return rf"\begin{{aligned}}{line.typeset['latex']} &= {symbolic}\\&= {substituted}\\&= {shown}\end{{aligned}}"
+
+
+def _text_latex(text: str) -> str:
+    return r"\text{" + re.sub(r"([#$%&_{}])", r"\\\1", text.replace("\\", "/")) + "}"
+
+
+def _markdown(line: Line) -> str:
+    head = f"**{_escaped(line.meaning)}**"
+    value = _shown(line)
+    if line.forms:
+        body = f"$$\n{_latex(line)}\n$$"
+    elif line.typeset:
+        body = f"${line.typeset['latex']}$ = {_escaped(value)}"
+    else:
+        body = _escaped(value)
+    words = [line.verdict or "", f"missing: {line.missing}" if line.missing else "", line.text if not line.forms else ""]
+    parts = [head, body, " ".join(_escaped(word) for word in words if word), *(_escaped(text) for text in _tail(line))]
+    return "  \n".join(part for part in parts if part) if not line.forms else "\n\n".join(part for part in parts if part)
+
+
+def _escaped(text: str) -> str:
+    """User text as Markdown text, never as markup."""
+    return re.sub(r"([\\`*_{}\[\]<>()#+!|$~-])", r"\\\1", text)
+
+
+def _grid(table: Table) -> tuple[list[str], list[list[str]]]:
+    head = [table.head, *(f"{c.typeset['plain']} [{c.unit}]" if c.unit else c.typeset["plain"] for c in table.columns)]
+    return head, [[name, *cells] for name, cells in zip(table.rows, table.shown, strict=True)]
+
+
+def _plain_table(table: Table) -> str:
+    head, rows = _grid(table)
+    widths = [max(len(row[i]) for row in [head, *rows]) for i in range(len(head))]
+    return "\n".join("  ".join(cell.rjust(w) for cell, w in zip(row, widths, strict=True)) for row in [head, *rows])
+
+
+def _markdown_table(table: Table) -> str:
+    head, rows = _grid(table)
+    lines = [head, ["---:"] * len(head), *rows]
+    return "\n".join(
+        "| " + " | ".join(cell if row is lines[1] else _escaped(cell) for cell in row) + " |" for row in lines
+    )

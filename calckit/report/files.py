@@ -1,0 +1,111 @@
+"""File names, and the replacement of several files together.
+
+Knows folders, names and how a write can fail. Must not know what the files hold.
+"""
+
+from __future__ import annotations
+
+import os
+import re
+import secrets
+import shutil
+from collections.abc import Mapping, Sequence
+from contextlib import suppress
+from pathlib import Path
+
+from calckit.errors import CommandError
+
+_UNFIT = re.compile(r'[<>:"/\\|?*\x00-\x1f\x7f]|^[. ]|[. ]$')
+
+
+def report_name(number: str, revision: str, stem: str) -> str:
+    """The name of an issue, without ending: `<number>_<revision>`, the notebook's stem if the number is blank.
+
+    >>> report_name("C-101/2", "A", "building"), report_name("", "A", "building")
+    ('C-101-2_A', 'building')
+    """
+    number, revision = number.strip(), revision.strip()
+    if not number:
+        return stem
+    return _UNFIT.sub("-", f"{number}_{revision}" if revision else number)
+
+
+def replace_together(folder: Path, files: Mapping[str, bytes]) -> list[Path]:
+    """Write files under these names into a folder: all of them, or none.
+
+    Each is written and flushed under a temporary name first; then they take their places in the order given. If one
+    cannot, those before it get their earlier content back. The last file should be the one that names the others, so
+    that a power cut between two renames leaves a set that shows it.
+
+    Raises CommandError naming the file that could not be written; every earlier file is then as it was.
+
+    >>> import tempfile
+    >>> with tempfile.TemporaryDirectory() as folder:
+    ...     [path.name for path in replace_together(Path(folder), {"a.txt": b"1", "b.txt": b"2"})]
+    ['a.txt', 'b.txt']
+    """
+    token = secrets.token_hex(4)
+    targets = [folder / name for name in files]
+    new = [folder / f".{name}.{token}.new" for name in files]
+    old = [folder / f".{name}.{token}.old" for name in files]
+    at, moved = folder, 0
+    try:
+        folder.mkdir(parents=True, exist_ok=True)
+        for at, part, data in zip(targets, new, files.values(), strict=True):  # noqa: B007
+            _write(part, data)
+        for at, keep in zip(targets, old, strict=True):
+            if at.is_dir():
+                raise IsADirectoryError("a folder has this name")
+            if at.exists():
+                shutil.copy2(at, keep)
+        for at, part in zip(targets, new, strict=True):
+            os.replace(part, at)
+            moved += 1
+    except BaseException as error:
+        _discard(new)
+        _put_back(targets[:moved], old[:moved])
+        _discard(old)
+        if isinstance(error, OSError):
+            raise CommandError(
+                f"{at} cannot be written ({error.strerror or error}); nothing was changed; "
+                "cure: close it where it is open, or choose another folder with --to"
+            ) from error
+        raise
+    _discard(old)
+    _flush_folder(folder)
+    return targets
+
+
+def _put_back(targets: Sequence[Path], kept: Sequence[Path]) -> None:
+    """Give the targets their earlier content; what cannot be given back stays in its kept copy, which is named."""
+    stuck = []
+    for target, keep in zip(targets, kept, strict=True):
+        try:
+            os.replace(keep, target) if keep.exists() else target.unlink()
+        except OSError:
+            stuck.append(f"{target} (its earlier content: {keep})")
+    if stuck:
+        raise CommandError(f"the writing failed half-way, and these could not be put back: {', '.join(stuck)}")
+
+
+def _discard(paths: Sequence[Path]) -> None:
+    for path in paths:
+        with suppress(OSError):
+            path.unlink(missing_ok=True)
+
+
+def _write(path: Path, data: bytes) -> None:
+    with path.open("xb") as file:
+        file.write(data)
+        file.flush()
+        os.fsync(file.fileno())
+
+
+def _flush_folder(folder: Path) -> None:
+    """Make the renames last through a power cut, where the system lets a folder be flushed."""
+    with suppress(OSError):
+        handle = os.open(folder, os.O_RDONLY)
+        try:
+            os.fsync(handle)
+        finally:
+            os.close(handle)

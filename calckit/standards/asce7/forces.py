@@ -1,0 +1,203 @@
+"""Chapter 12, forces: base shear, distribution over the height, drift and stability.
+
+Knows which candidate of C_s governs and why, and which checks follow. Must not know how lines are printed.
+"""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from calckit import units
+from calckit.core.formula import Formula
+from calckit.core.handle import Handle
+from calckit.core.record import NOT_CHECKED, Candidate, Flag
+from calckit.core.table import load
+from calckit.errors import InputError, ScopeError
+from calckit.standards.asce7 import formulas
+from calckit.standards.asce7.formulas import rule
+from calckit.standards.asce7.hazard import PACKAGE, site_class, study
+from calckit.standards.asce7.structure import system_row
+
+if TYPE_CHECKING:
+    from calckit.core.scope import Scope
+
+THRESHOLD = 0.10
+"""theta at or below which P-delta effects need not be considered (12.8.7)."""
+
+
+def base_shear(scope: Scope) -> Handle:
+    """Every candidate of C_s, the governing one, and V."""
+    needed = ("S_DS", "S_D1", "S_1", "T_L", "T_S", "R", "I_e", "T", "W")
+    faults = [scope.missing(name) for name in needed if scope.number(name) is None]
+    if faults:
+        raise InputError("asce7.base_shear", faults)
+    with scope.step():
+        _candidate_lines(scope)
+        C_s = _governing(scope)
+        V = scope.compute(formulas.V, detail=_against_computed(scope, C_s))
+        return V
+
+
+def _candidate_lines(scope: Scope) -> None:
+    T, T_L, S_1 = scope.number("T", "s") or 0.0, scope.number("T_L", "s") or 0.0, scope.number("S_1") or 0.0
+    scope.compute(formulas.C_S_BASIC)
+    long = T > T_L
+    scope.compute(formulas.C_S_CAP_LONG if long else formulas.C_S_CAP, detail="T > T_L" if long else "T <= T_L")
+    if study(scope.calc).reading in ("both", "exception 2") and _beyond(scope):
+        scope.compute(formulas.C_S_CAP_INCREASED, detail="T > 1.5 T_S")
+    scope.compute(formulas.C_S_FLOOR)
+    if S_1 >= 0.6:
+        scope.compute(formulas.C_S_FLOOR_S1, detail="S_1 is not less than 0.6")
+
+
+def _beyond(scope: Scope) -> bool:
+    """Whether T is above 1.5 T_S, where exception 2 of 11.4.8 increases the upper limit."""
+    return (scope.number("T", "s") or 0.0) > 1.5 * (scope.number("T_S", "s") or 0.0)
+
+
+def _floors(scope: Scope) -> str:
+    return "C_sfloor, C_sfloor1" if scope.number("S_1") and (scope.number("S_1") or 0.0) >= 0.6 else "C_sfloor"
+
+
+def _governing(scope: Scope) -> Handle:
+    reading = study(scope.calc).reading
+    source = rule("12.8.1.1", obtained="found")
+    if site_class(scope.calc) == "E" and scope.word("study_exception") == "exception 3" and (scope.number("T", "s") or 0) > (scope.number("T_S", "s") or 0):
+        raise ScopeError(f"{scope.id_of('C_s')}: exception 3 of 11.4.8 holds for T not above T_S only; a ground motion hazard analysis is needed")
+    plain = f"max(min(C_sbasic, C_scap), {_floors(scope)})"
+    increased = f"max(min(C_sbasic, C_scapinc), {_floors(scope)})" if _beyond(scope) else f"max(C_sbasic, {_floors(scope)})"
+    if reading == "both":
+        scope.compute(Formula("C_swithout", plain, source), detail="11.4.8 without the 50 % increase")
+        scope.compute(Formula("C_swith", increased, rule("11.4.8, exception 2", obtained="found")), detail="11.4.8 with the 50 % increase")
+        flag = Flag(f"{scope.id_of('C_s')}: the larger of both readings of 11.4.8 is used until supplements and exception are answered")
+        text, flags = "max(C_swithout, C_swith)", [flag]
+    else:
+        text, flags = (increased if reading == "exception 2" else plain), []
+    return scope.compute(Formula("C_s", text, source), candidates=_candidates(scope, reading), flags=flags)
+
+
+def _candidates(scope: Scope, reading: str) -> list[Candidate]:
+    """Every candidate in clause order with its value and reason; the one whose value is C_s governs."""
+    reasons = {
+        "C_sbasic": "basic value",
+        "C_scap": "upper limit for T <= T_L" if (scope.number("T") or 0) <= (scope.number("T_L") or 0) else "upper limit for T > T_L",
+        "C_scapinc": "upper limit increased by 11.4.8 for T > 1.5 T_S",
+        "C_sfloor": "lower limit",
+        "C_sfloor1": "lower limit where S_1 >= 0.6",
+    }
+    lines = [(name, entry.line) for name in reasons if (entry := scope.find(name))]
+    values = {name: float(line.value) for name, line in lines}  # type: ignore[arg-type]
+    cap = "C_scapinc" if "C_scapinc" in values else "C_scap"
+    if reading == "exception 2" and not _beyond(scope):
+        cap = "C_sbasic"
+    if reading == "both" and not _beyond(scope):
+        cap = "C_sbasic"
+    upper = min(("C_sbasic", cap), key=lambda name: values[name])
+    governs = max((upper, *(name for name in ("C_sfloor", "C_sfloor1") if name in values)), key=lambda name: values[name])
+    return [
+        Candidate(line.source.equation or line.source.where, values[name], "", str(line.shown), reasons[name], name == governs, line.id)
+        for name, line in lines
+        if line.source
+    ]
+
+
+def _against_computed(scope: Scope, C_s: Handle) -> str:
+    line = C_s.line
+    W = scope.number("W")
+    if not line.computed or not isinstance(line.computed.value, float) or W is None:
+        return ""
+    change = (float(C_s) / line.computed.value - 1) * 100
+    computed = line.computed.value * W
+    return f"with the computed C_s = {line.computed.shown}, V would be {computed:.1f}; the value in force gives {change:+.2f} %"
+
+
+def vertical_distribution(scope: Scope) -> Handle:
+    """k, C_vx, F_x, V_x and M_x over the height, and the check of their sum."""
+    faults = [scope.missing(name) for name in ("T", "V") if scope.number(name) is None]
+    faults += [scope.missing(name) for name in ("h_x", "w_x", "h_sx") if scope.find(name) is None]
+    if faults:
+        raise InputError("asce7.vertical_distribution", faults)
+    with scope.step():
+        T = scope.number("T", "s") or 0.0
+        reason = "T not above 0.5 s" if T <= 0.5 else "T not below 2.5 s" if T >= 2.5 else "linear between 0.5 and 2.5 s"
+        scope.compute(formulas.K, detail=reason)
+        for formula in (formulas.WH_X, formulas.SUM_WH, formulas.C_VX, formulas.F_X, formulas.V_X, formulas.M_X):
+            made = scope.compute(formula)
+        scope.table("forces", "Lateral forces, story shears and overturning moments", ["h_x", "w_x", "wh_x", "C_vx", "F_x", "V_x", "h_sx", "M_x"])
+        scope.compute(formulas.SUM_F)
+        scope.require("abs(sum_F/V - 1) <= 0.001", title="Sum of lateral forces equals base shear", source=formulas.F_X.source)
+        return made
+
+
+def drift(scope: Scope) -> Handle:
+    """Amplified displacements and story drifts against the allowable drift; NOT CHECKED without displacements."""
+    title = "Story drift"
+    risk, kind = scope.word("risk_category"), scope.word("drift_class")
+    faults = [scope.missing(name) for name, word in (("risk_category", risk), ("drift_class", kind)) if word is None]
+    if faults or risk is None or kind is None:
+        raise InputError("asce7.drift", faults)
+    with scope.step():
+        scope.look_up("r_Delta", load(PACKAGE, "drift").entry(kind, risk))
+        moment_frame = _divided_by_rho(scope)
+        if moment_frame and scope.number("rho") is None:
+            missing = "rho (redundancy factor; it divides the allowable drift of a moment frame)"
+            return scope.verdict("drift", title, NOT_CHECKED, rule("12.12.1.1"), missing=missing)
+        formula = formulas.DELTA_A_RHO if moment_frame else formulas.DELTA_A
+        if scope.find("delta_xe") is None:
+            scope.compute(formula)
+            scope.table("drift", "Allowable story drift", ["h_sx", "Delta_a"], head="Story below")
+            return scope.require("Delta <= Delta_a", title=title, source=rule("12.12.1"), id_="drift")
+        for each in (formulas.DELTA_X, formulas.DELTA):
+            scope.compute(each)
+        scope.compute(formula)
+        scope.table("drift", "Displacements and story drifts", ["delta_xe", "delta_x", "Delta", "h_sx", "Delta_a"], head="Story below")
+        return scope.require("Delta <= Delta_a", title=title, source=rule("12.12.1"), id_="drift", flags=_edge_flags(scope))
+
+
+def _divided_by_rho(scope: Scope) -> bool:
+    """Whether 12.12.1.1 divides the allowable drift by rho: moment frames only, design categories D to F."""
+    key, _, _ = system_row(scope)
+    return key.startswith("moment frame:") and (scope.word("SDC") or "") in ("D", "E", "F")
+
+
+def _edge_flags(scope: Scope) -> list[Flag]:
+    if (scope.word("SDC") or "") not in ("C", "D", "E", "F"):
+        return []
+    answers = {name: scope.word(name) for name in ("H1a", "H1b")}
+    if "yes" in answers.values():
+        return [Flag("torsional irregularity: drift is to be taken along the edges (12.12.1), not at the centers of mass", True, "originator")]
+    return []
+
+
+def stability(scope: Scope) -> Handle:
+    """The stability coefficient of each story against its maximum; NOT CHECKED without P_x or drifts."""
+    title = "Stability coefficient"
+    with scope.step():
+        if scope.number("beta") is None:
+            scope.state("beta", "1.0", "table", rule("12.8.7"), detail="permitted to be taken as 1.0")
+        scope.compute(formulas.THETA_MAX)
+        lists = ("P_x", "Delta", "V_x", "h_sx")
+        absent = [name for name in lists if scope.find(name) is None]
+        if absent:
+            missing = ", ".join(f"{name} ({scope.symbol(name).meaning})" for name in absent)
+            return scope.verdict("stability", title, NOT_CHECKED, rule("12.8.7"), missing=missing)
+        theta = scope.compute(formulas.THETA)
+        scope.table("stability", "Stability coefficients", [*lists, "theta"], head="Story below")
+        return scope.require("theta <= theta_max", title=title, source=formulas.THETA.source, id_="stability", flags=_amplify(scope, theta))
+
+
+def _amplify(scope: Scope, theta: Handle) -> list[Flag]:
+    values = theta.value if isinstance(theta.value, list) else []
+    over = [row for row, value in zip(theta.line.rows, values, strict=True) if value > THRESHOLD]
+    if not over:
+        return [Flag(f"theta is not above {THRESHOLD:.2f} in any story: P-delta effects need not be considered")]
+    return [Flag(f"theta is above {THRESHOLD:.2f} at {', '.join(over)}: multiply drifts and forces by 1/(1 - theta) there", True, "originator")]
+
+
+def heights(scope: Scope) -> list[float]:
+    """h_x in the display unit, roof first, for a figure."""
+    entry = scope.find("h_x")
+    if entry is None or not isinstance(entry.line.value, list):
+        raise InputError("asce7", [scope.missing("h_x")])
+    unit = scope.symbol("h_x").unit(scope.system)
+    return [units.convert(value, entry.line.unit, unit) for value in entry.line.value]

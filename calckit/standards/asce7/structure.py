@@ -1,0 +1,235 @@
+"""Chapter 12, the structure: system, period, effective weight, irregularities and permitted procedure.
+
+Knows Tables 12.2-1, 12.6-1, 12.8-1 and 12.8-2 and the choice of T. Must not know forces.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from typing import TYPE_CHECKING, Any
+
+from calckit import units
+from calckit.core.handle import Handle
+from calckit.core.inputs import NONE
+from calckit.core.record import NOT_CHECKED, NOT_OK, OK, Candidate, Flag
+from calckit.core.table import Table, load
+from calckit.errors import Fault, InputError, ScopeError, UnknownNameError
+from calckit.standards.asce7 import formulas
+from calckit.standards.asce7.formulas import rule
+from calckit.standards.asce7.hazard import PACKAGE, study
+
+if TYPE_CHECKING:
+    from calckit.core.scope import Scope
+
+IRREGULARITIES = ("H1a", "H1b", "H2", "H3", "H4", "H5", "V1a", "V1b", "V2", "V3", "V4", "V5a", "V5b")
+TOLERATED = {"H2", "H3", "H4", "H5", "V4", "V5a", "V5b"}
+"""Irregularities with which equivalent lateral forces stay permitted up to 160 ft (Table 12.6-1)."""
+PROHIBITED = {"D": {"V5b"}, "E": {"H1b", "V1b", "V5a", "V5b"}, "F": {"H1b", "V1b", "V5a", "V5b"}}
+"""Irregularities that 12.3.3.1 prohibits, by design category."""
+
+
+def system_row(scope: Scope) -> tuple[str, dict[str, str], Table]:
+    """The row of Table 12.2-1 for the part's system: the whole key, or the part after the colon where unique."""
+    table = load(PACKAGE, "systems")
+    typed = scope.word("system")
+    if typed is None:
+        raise InputError("asce7.system", [scope.missing("system")])
+    typed = " ".join(typed.split())
+    matching = [key for key in table.rows if typed in (key, key.partition(": ")[2])]
+    if len(matching) > 1:
+        raise InputError("asce7.system", [Fault("system", "one row of Table 12.2-1", typed, f"write one of {'; '.join(matching)}")])
+    if not matching:
+        known = [key for key in table.rows if not typed.partition(":")[0] or True]
+        near = UnknownNameError("system", typed, known).known[:6]
+        cure = f"near names: {'; '.join(near)}"
+        raise InputError("asce7.system", [Fault("system", "a row of Table 12.2-1", typed, cure, "seismic force-resisting system")])
+    return matching[0], table.row(matching[0]), table
+
+
+def system(scope: Scope) -> list[Handle]:
+    """R, Omega_0, C_d of one row of Table 12.2-1, and whether the system and its height are permitted."""
+    key, row, table = system_row(scope)
+    category = scope.word("SDC")
+    with scope.step():
+        made = [scope.look_up(name, table.entry(key, name)) for name in ("R", "Omega_0", "C_d")]
+        made.append(_permitted(scope, key, row, table, category))
+        return made
+
+
+def _permitted(scope: Scope, key: str, row: Mapping[str, str], table: Table, category: str | None) -> Handle:
+    source = table.source(key)
+    title = "System and height permitted"
+    if category is None:
+        return scope.verdict("system_permitted", title, NOT_CHECKED, source, missing="SDC (seismic design category)")
+    limit = "NL" if category == "A" else row[category]
+    if limit == "NP":
+        return scope.verdict("system_permitted", title, NOT_OK, source, detail=f"{key} is not permitted in design category {category}")
+    if limit == "NL":
+        return scope.verdict("system_permitted", title, OK, source, detail=f"{key}: no height limit in design category {category}")
+    scope.state("h_limit", f"{limit} ft", "table", source, detail=f"{table.name}, row {key}, category {category}: {limit} ft; increases of 12.2.5.4 not taken")
+    return scope.require("h_n <= h_limit", title=title, source=source, id_="system_permitted")
+
+
+def approximate_period(scope: Scope, typed: Mapping[str, Any]) -> Handle:
+    """T_a by Table 12.8-2, or by 0.1 N where the engineer chooses it and its conditions hold."""
+    method = scope.word("T_a_method") or "table"
+    operands = scope.typed_in_place(typed)
+    with scope.step():
+        flags = _height_flags(scope)
+        if method == "stories":
+            return _by_stories(scope, flags)
+        _, row, _ = system_row(scope)
+        table = load(PACKAGE, "C_t")
+        column = "C_t (m)" if scope.system == "SI" else "C_t (ft)"
+        scope.look_up("C_t", table.entry(row["period"], column))
+        scope.look_up("x", table.entry(row["period"], "x"))
+        return scope.compute(formulas.T_A_TABLE, typed=operands, flags=flags)
+
+
+def _height_flags(scope: Scope) -> list[Flag]:
+    levels, h_n = scope.find("h_x"), scope.number("h_n")
+    if levels is None or h_n is None or not isinstance(levels.line.value, list):
+        return []
+    entry = scope.find("h_n")
+    assert entry is not None
+    highest = units.convert(max(levels.line.value), levels.line.unit, entry.line.unit)
+    if abs(h_n / highest - 1) <= 0.001:
+        return []
+    text = f"h_n = {entry.line.shown} differs from the highest level, {max(levels.line.shown, key=float)} {levels.line.unit}"
+    return [Flag(text, True, "originator")]
+
+
+def _by_stories(scope: Scope, flags: list[Flag]) -> Handle:
+    key, row, _ = system_row(scope)
+    levels = scope.find("h_x")
+    if levels is None:
+        raise InputError("asce7.approximate_period", [scope.missing("h_x")])
+    count = len(levels.line.rows)
+    highest = units.convert(max(levels.line.value), levels.line.unit, "ft")  # type: ignore[type-var, arg-type]
+    broken = []
+    if count > 12:
+        broken.append(f"{count} stories, more than 12")
+    if row["period"] not in ("steel moment frame", "concrete moment frame"):
+        broken.append(f"{key} is no steel or concrete moment frame")
+    if highest / count < 10:
+        broken.append(f"average story height {highest / count:.2f} ft, below 10 ft")
+    if broken:
+        raise ScopeError(f"{scope.id_of('T_a')} by 0.1 N (12.8.2.1): {'; '.join(broken)}; set T_a_method to table")
+    scope.state("N", str(count), "table", formulas.T_A_STORIES.source, detail="number of levels above the base")
+    return scope.compute(formulas.T_A_STORIES, flags=flags)
+
+
+def period(scope: Scope) -> Handle:
+    """C_u, the upper limit C_u T_a, the period T for strength with its three candidates, and T for drift."""
+    faults = [scope.missing(name) for name in ("S_D1", "T_a") if scope.number(name) is None]
+    if faults:
+        raise InputError("asce7.period", faults)
+    with scope.step():
+        scope.look_up("C_u", load(PACKAGE, "C_u").along("C_u", "S_D1", scope.number("S_D1") or 0.0))
+        scope.compute(formulas.T_MAX)
+        formula, reason, flags = _choice(scope)
+        T = scope.compute(formula, detail=reason, flags=flags, candidates=_candidates(scope, formula, reason))
+        made = scope.number("T_analysis") is not None
+        scope.compute(formulas.T_DRIFT_ANALYSIS if made else formulas.T_DRIFT_APPROXIMATE, detail="no upper limit for drift")
+        return T
+
+
+def _choice(scope: Scope) -> tuple[Any, str, list[Flag]]:
+    analysis, approximate = scope.number("T_analysis", "s"), scope.number("T_a", "s") or 0.0
+    if analysis is None:
+        return formulas.T_APPROXIMATE, "no analysis: T = T_a, not C_u T_a", []
+    if analysis >= approximate:
+        return formulas.T_CAPPED, "analysis, not more than C_u T_a", []
+    choice = scope.word("T_choice")
+    if choice == "analysis":
+        return formulas.T_ANALYSIS, "analysis shorter than T_a, taken by the engineer's choice", []
+    if choice == "approximate":
+        return formulas.T_APPROXIMATE, "T_a taken over a shorter analysis by the engineer's choice", []
+    flag = Flag(f"{scope.id_of('T_analysis')} is shorter than T_a; T = T_a is used until T_choice is answered", True, "engineer of record")
+    return formulas.T_APPROXIMATE, "T_a is permitted in place of an analysis; the choice is open", [flag]
+
+
+def _candidates(scope: Scope, formula: Any, reason: str) -> list[Candidate]:
+    listed = []
+    T_max, T_analysis = scope.number("T_max"), scope.number("T_analysis")
+    governs = {formulas.T_APPROXIMATE: "T_a", formulas.T_ANALYSIS: "T_analysis"}.get(formula) if formula is not formulas.T_CAPPED else None
+    if formula is formulas.T_CAPPED:
+        governs = "T_analysis" if (T_analysis or 0) <= (T_max or 0) else "T_max"
+    words = {"T_a": "approximate period", "T_analysis": "analysis", "T_max": "upper limit C_u T_a"}
+    for name, word in words.items():
+        entry = scope.find(name)
+        number = scope.number(name)
+        shown = str(entry.line.shown) if entry and number is not None else NONE
+        listed.append(Candidate(word, number, "s", shown, reason if governs == name else word, governs == name, entry.line.id if entry else ""))
+    return listed
+
+
+def seismic_weight(scope: Scope) -> Handle:
+    """W, the sum of the level weights; what they contain is the engineer's answer weight_contents."""
+    with scope.step():
+        return scope.compute(formulas.W)
+
+
+def procedure(scope: Scope) -> Handle:
+    """Whether equivalent lateral forces are permitted (Table 12.6-1), and prohibited irregularities (12.3.3.1)."""
+    with scope.step():
+        _prohibited(scope)
+        verdict, detail, missing = _table_12_6_1(scope)
+        return scope.verdict("procedure", "Equivalent lateral force procedure permitted", verdict, rule("Table 12.6-1", obtained="found"), detail=detail, missing=missing)
+
+
+def _answered(scope: Scope) -> tuple[set[str], list[str]]:
+    words = {name: scope.word(name) for name in IRREGULARITIES}
+    return {n for n, word in words.items() if word == "yes"}, [n for n, word in words.items() if word is None]
+
+
+def _prohibited(scope: Scope) -> None:
+    category = scope.word("SDC") or ""
+    wanted = PROHIBITED.get(category, set())
+    present, unanswered = _answered(scope)
+    source = rule("12.3.3.1", obtained="found")
+    title = "No prohibited irregularity"
+    if not category:
+        scope.verdict("prohibited", title, NOT_CHECKED, source, missing="SDC (seismic design category)")
+    elif found := sorted(wanted & present):
+        scope.verdict("prohibited", title, NOT_OK, source, detail=f"{', '.join(found)} is prohibited in design category {category}")
+    elif waiting := sorted(wanted & set(unanswered)):
+        scope.verdict("prohibited", title, NOT_CHECKED, source, missing=f"answers {', '.join(waiting)}")
+    elif category in "BC" and "V5b" in present:
+        scope.verdict("prohibited", title, NOT_CHECKED, source, missing="the limits of 12.3.3.2 for type V5b (two stories or 30 ft)")
+    else:
+        scope.verdict("prohibited", title, OK, source, detail=f"design category {category}: none of {', '.join(sorted(wanted)) or 'the types'} present")
+
+
+def _table_12_6_1(scope: Scope) -> tuple[str, str, str]:
+    category, risk = scope.word("SDC"), scope.word("risk_category")
+    levels, h_n = scope.find("h_x"), scope.number("h_n", "ft")
+    if category is None or levels is None or h_n is None:
+        return NOT_CHECKED, "", "SDC, levels and h_n"
+    if category in "ABC":
+        return OK, f"design category {category}: permitted for every structure", ""
+    if risk in ("I", "II") and len(levels.line.rows) <= 2:
+        return OK, f"risk category {risk}, not more than two stories", ""
+    present, unanswered = _answered(scope)
+    if unanswered:
+        return NOT_CHECKED, "", f"answers {', '.join(unanswered)}"
+    if h_n <= 160 and present <= TOLERATED:
+        return OK, f"h_n not above 160 ft, irregularities: {', '.join(sorted(present)) or 'none'}", ""
+    if present:
+        return NOT_OK, f"design category {category} with irregularities {', '.join(sorted(present))} and h_n = {h_n:g} ft", ""
+    return _long_period(scope, category, h_n)
+
+
+def _long_period(scope: Scope, category: str, h_n: float) -> tuple[str, str, str]:
+    T, T_S, increased = scope.number("T", "s"), scope.number("T_S", "s"), scope.number("T_Sinc", "s")
+    if T is None or T_S is None:
+        return NOT_CHECKED, "", "T and T_S"
+    readings = [T_S] if study(scope.calc).reading != "both" or increased is None else [T_S, increased]
+    shown = " and ".join(f"3.5 T_S = {3.5 * value:.4g} s" for value in readings)
+    holds = [3.5 * value > T for value in readings]
+    detail = f"regular, h_n = {h_n:g} ft above 160 ft; T = {T:.4g} s against {shown}"
+    if all(holds):
+        return OK, detail, ""
+    if any(holds):
+        return NOT_CHECKED, detail, f"the reading of 11.4.8: the answer differs between {shown}"
+    return NOT_OK, f"design category {category}: {detail}", ""
