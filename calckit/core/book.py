@@ -133,7 +133,9 @@ class Book:
         cell = this_cell()
         if earlier is not None:
             if earlier == cell:
-                raise DuplicateError(f"{kind} {id_!r} is written twice in one run of a cell; give one of them another id")
+                raise DuplicateError(
+                    f"{kind} {id_!r} is written twice in one run of a cell; give one of them another id"
+                )
             if self.settings.clean:
                 raise DuplicateError(f"{kind} {id_!r} is written by two cells; give one of them another id")
             if earlier.key != cell.key:

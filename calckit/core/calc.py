@@ -12,10 +12,10 @@ from typing import Any
 
 from calckit.core import settings
 from calckit.core.book import Book, _shell
-from calckit.core.scope import Scope
 from calckit.core.sources import Document, Sources
 from calckit.core.standard import edition
 from calckit.core.symbol import Symbol
+from calckit.core.writer import Writer
 from calckit.errors import DuplicateError, Fault, InputError, UnknownNameError
 
 STATUSES = ("preliminary", "for check", "checked", "for construction", "superseded", "void")
@@ -23,11 +23,11 @@ STATUSES = ("preliminary", "for check", "checked", "for construction", "supersed
 _current: list[Calc] = []
 
 
-class Part(Scope):
+class Part(Writer):
     """A named scope with its own symbols (a direction, a component)."""
 
 
-class Calc(Scope):
+class Calc(Writer):
     """One calculation package.
 
     Arguments are the fields of the title block; `standard` names the standard in one edition, `units` the unit set
@@ -92,7 +92,11 @@ class Calc(Scope):
     def revise(self, revision: str, *, date: str, reason: str, by: str, sheets: str = "") -> None:
         """A row of the revision table."""
         row = {"revision": revision, "date": date, "reason": reason, "by": by, "sheets": sheets}
-        faults = [Fault(f"revise {name}", "text", "blank") for name in ("revision", "date", "reason", "by") if not row[name].strip()]
+        faults = [
+            Fault(f"revise {name}", "text", "blank")
+            for name in ("revision", "date", "reason", "by")
+            if not row[name].strip()
+        ]
         if faults:
             raise InputError("revise", faults)
         if row not in self.revisions:
@@ -107,7 +111,9 @@ class Calc(Scope):
         if not re.fullmatch(r"[A-Za-z]\w*", id_):
             raise InputError("part", [Fault(id_, "an id of letters and digits, starting with a letter", repr(id_))])
         if id_ in self.standard.symbols:
-            raise InputError("part", [Fault(id_, "an id that is no symbol of the standard", repr(id_), "choose another id")])
+            raise InputError(
+                "part", [Fault(id_, "an id that is no symbol of the standard", repr(id_), "choose another id")]
+            )
         if id_ not in self.parts:
             self.parts[id_] = Part(self, id_, title or id_)
         return self.parts[id_]

@@ -9,12 +9,15 @@ from __future__ import annotations
 import re
 from collections.abc import Sequence
 from decimal import Decimal
-from typing import TYPE_CHECKING
+from functools import partial
+from typing import TYPE_CHECKING, Any
 
+from calckit import units
 from calckit.core import digits
 from calckit.core.book import Entry
 from calckit.core.formula import Formula
 from calckit.core.numbers import DECIMALS, in_decimals
+from calckit.core.parser import parse
 from calckit.core.record import Column, Source, Table
 from calckit.errors import DigitsError
 
@@ -29,14 +32,17 @@ def tabulate(scope: Scope, id_: str, title: str, names: Sequence[str], head: str
     while failing := _failing(entries, grids):
         if not any(_finer(entries, grids, id_) for id_ in failing):
             raise DigitsError(f"table {title!r}: rows do not follow from {digits.MOST_IN_TABLE} printed digits")
-    for id_, places in grids.items():
-        entry = entries[id_]
-        if entry.remake and places != entry.decimals:
+    others = [table for table in scope.book.tables.values() if table.id != scope.id_of(id_)]
+    elsewhere = {key for table in others for key in table.lines}
+    for key, places in grids.items():
+        entry = entries[key]
+        if entry.remake and places != entry.decimals and key not in elsewhere:
             scope.book.remade(entry.remake(places))
-    lines = [scope.book.entries[id_].line for id_ in entries]
+    lines = [entry.line for entry in entries.values()]
     columns = [Column(line.symbol, line.unit, line.id, line.typeset) for line in lines]
+    printed = [_texts(entries[key], places) for key, places in grids.items()]
     rows = lines[0].rows
-    shown = [[str(line.shown[i]) for line in lines] for i in range(len(rows))]
+    shown = [[column[i] for column in printed] for i in range(len(rows))]
     return Table(scope.id_of(id_), scope.id, title, head, columns, list(rows), shown, list(entries))
 
 
@@ -46,38 +52,53 @@ def _grid(entry: Entry) -> int:
     return entry.decimals if entry.numerals else digits.decimals_for(exact, 4)
 
 
-def _numbers(entry: Entry, places: int) -> list[Decimal]:
+def _texts(entry: Entry, places: int) -> list[str]:
     if entry.numerals:
-        return [Decimal(text) for text in entry.numerals]
+        return list(entry.numerals)
     values = entry.line.value if isinstance(entry.line.value, list) else []
-    return [Decimal(digits.numeral(digits.carried(v), places)) for v in values]
+    return [digits.numeral(digits.carried(v), places) for v in values]
+
+
+def _numbers(entry: Entry, places: int) -> list[Decimal]:
+    return [Decimal(text) for text in _texts(entry, places)]
 
 
 def _failing(entries: dict[str, Entry], grids: dict[str, int]) -> list[str]:
     """Columns that a row which does not follow rests on."""
-    printed = {id_: _numbers(entry, grids[id_]) for id_, entry in entries.items()}
     wanting: list[str] = []
     for id_, entry in entries.items():
-        line = entry.line
-        if line.formula is None or entry.numerals:
+        values = _printed_operands(entry, entries, grids)
+        if values is None:
             continue
-        formula = Formula(line.symbol, line.formula, line.source or Source(""))
-        values = {}
-        for name in formula.names:
-            key = f"{line.part}.{name}" if f"{line.part}.{name}" in line.inputs else name
-            if key in printed and line.inputs[key].unit == entries[key].line.unit:
-                values[name] = printed[key]
-            else:
-                shown = line.inputs[key].shown
-                values[name] = [Decimal(t) for t in shown] if isinstance(shown, list) else _last_number(shown)
+        line = entry.line
+        formula = Formula(line.symbol, line.formula or "", line.source or Source(""))
         unit = Decimal(1).scaleb(-grids[id_])
-        for row, result in enumerate(printed[id_]):
+        for row, result in enumerate(_numbers(entry, grids[id_])):
             env = formula.env(values, DECIMALS, line.rows, row)
-            worked = in_decimals(lambda env=env, formula=formula: formula.node.value(env))  # type: ignore[misc]
-            if abs(worked - result) > unit:
-                wanting += [key for key in line.inputs if key in printed and not entries[key].numerals]
+            if abs(in_decimals(partial(formula.node.value, env)) - result) > unit:
+                wanting += [key for key in line.inputs if key in entries and not entries[key].numerals]
                 break
     return wanting
+
+
+def _printed_operands(entry: Entry, entries: dict[str, Entry], grids: dict[str, int]) -> dict[str, Any] | None:
+    """What the names of a column's formula print as in this table; None for an input, or where a list is no column."""
+    line = entry.line
+    if line.formula is None or entry.numerals:
+        return None
+    values: dict[str, Any] = {}
+    for name in parse(line.formula).names:
+        key = f"{line.part}.{name}" if f"{line.part}.{name}" in line.inputs else name
+        operand = line.inputs[key]
+        if not isinstance(operand.shown, list):
+            values[name] = _last_number(operand.shown)
+        elif key not in entries:
+            return None
+        else:
+            ratio = units.factor(entries[key].line.unit, operand.unit)
+            numbers = _numbers(entries[key], grids[key])
+            values[name] = [in_decimals(lambda n=n: n * ratio.numerator / ratio.denominator) for n in numbers]  # type: ignore[misc]
+    return values
 
 
 def _last_number(shown: str) -> Decimal:
@@ -87,9 +108,12 @@ def _last_number(shown: str) -> Decimal:
 
 
 def _finer(entries: dict[str, Entry], grids: dict[str, int], id_: str) -> bool:
+    """Print one more digit in a column, or the next number of digits that rounds back to every shorter one."""
     values = entries[id_].line.value
-    most = digits.decimals_for([digits.carried(v) for v in values], digits.MOST_IN_TABLE) if isinstance(values, list) else 0
-    if grids[id_] >= most:
-        return False
-    grids[id_] += 1
-    return True
+    exact = tuple(digits.carried(v) for v in values) if isinstance(values, list) else ()
+    most = digits.decimals_for(exact, digits.MOST_IN_TABLE)
+    column = digits.Operand(exact, digits.decimals_for(exact, 4))
+    finer = [places for places in range(grids[id_] + 1, most + 1) if column.admissible(places)]
+    if finer:
+        grids[id_] = finer[0]
+    return bool(finer)

@@ -49,7 +49,7 @@ def numeral(value: Decimal, decimals: int) -> str:
     ('0.1235', '0.00')
     """
     rounded = value.quantize(Decimal(1).scaleb(-decimals), ROUND_HALF_UP, DECIMAL)
-    return format(abs(rounded) if not rounded else rounded, "f")
+    return format(rounded or abs(rounded), "f")
 
 
 def typed_numeral(value: float) -> str:

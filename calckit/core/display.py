@@ -11,6 +11,7 @@ from collections.abc import Sequence
 from dataclasses import asdict
 from typing import Any
 
+from calckit import units
 from calckit.core.record import MIME, TO_BE_CONFIRMED, Line, Table
 
 
@@ -31,7 +32,11 @@ def bundle(lines: Sequence[Line], tables: Sequence[Table], notices: Sequence[str
     data: dict[str, Any] = {
         "text/plain": "\n".join([*(plain(line) for line in lines), *(_plain_table(t) for t in tables), *notices]),
         "text/markdown": "\n\n".join(
-            [*(_markdown(line) for line in lines), *(_markdown_table(t) for t in tables), *(_escaped(n) for n in notices)]
+            [
+                *(_markdown(line) for line in lines),
+                *(_markdown_table(t) for t in tables),
+                *(_escaped(n) for n in notices),
+            ]
         ),
         MIME: {"lines": [asdict(line) for line in lines], "tables": [asdict(table) for table in tables]},
     }
@@ -51,13 +56,17 @@ def plain(line: Line) -> str:
         symbolic, substituted = line.forms["plain"]
         body = f"{line.typeset['plain']} = {symbolic} = {substituted} = {value}"
     else:
-        body = " ".join(part for part in (f"{line.typeset['plain']} = {value}" if line.typeset else value, line.text) if part)
+        body = " ".join(
+            part for part in (f"{line.typeset['plain']} = {value}" if line.typeset else value, line.text) if part
+        )
     return "\n    ".join(part for part in (head, body, *_tail(line)) if part)
 
 
 def _shown(line: Line) -> str:
     if isinstance(line.shown, list):
-        return f"{line.shown[line.rows.index(line.row)]} {line.unit} at {line.row}" if line.row else ", ".join(line.shown)
+        return (
+            f"{line.shown[line.rows.index(line.row)]} {units.shown(line.unit)}".rstrip() + f" at {line.row}" if line.row else ", ".join(line.shown)
+        )
     return line.shown
 
 
@@ -66,7 +75,10 @@ def _tail(line: Line) -> list[str]:
     if line.override:
         kit = line.computed.shown if line.computed else ""
         tail.append(f"override: {line.override.shown} in place of {kit}; {line.override.reason} ({line.override.by})")
-    tail += [f"{item.equation}: {item.shown}{', governs' if item.governs else ''} ({item.reason})" for item in line.candidates]
+    tail += [
+        f"{item.equation}: {item.shown}{', governs' if item.governs else ''} ({item.reason})"
+        for item in line.candidates
+    ]
     if line.margin:
         tail.append(f"margin: {line.margin.shown} {line.margin.to}")
     if line.source:
@@ -97,9 +109,15 @@ def _markdown(line: Line) -> str:
         body = f"${line.typeset['latex']}$ = {_escaped(value)}"
     else:
         body = _escaped(value)
-    words = [line.verdict or "", f"missing: {line.missing}" if line.missing else "", line.text if not line.forms else ""]
+    words = [
+        line.verdict or "",
+        f"missing: {line.missing}" if line.missing else "",
+        line.text if not line.forms else "",
+    ]
     parts = [head, body, " ".join(_escaped(word) for word in words if word), *(_escaped(text) for text in _tail(line))]
-    return "  \n".join(part for part in parts if part) if not line.forms else "\n\n".join(part for part in parts if part)
+    return (
+        "  \n".join(part for part in parts if part) if not line.forms else "\n\n".join(part for part in parts if part)
+    )
 
 
 def _escaped(text: str) -> str:
@@ -108,7 +126,7 @@ def _escaped(text: str) -> str:
 
 
 def _grid(table: Table) -> tuple[list[str], list[list[str]]]:
-    head = [table.head, *(f"{c.typeset['plain']} [{c.unit}]" if c.unit else c.typeset["plain"] for c in table.columns)]
+    head = [table.head, *(f"{c.typeset['plain']} [{units.shown(c.unit)}]" if c.unit else c.typeset["plain"] for c in table.columns)]
     return head, [[name, *cells] for name, cells in zip(table.rows, table.shown, strict=True)]
 
 

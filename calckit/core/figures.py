@@ -28,7 +28,9 @@ def image(drawing: Any, form: str) -> bytes:
 def place(scope: Scope, drawing: Any, figure: Figure) -> None:
     """Put a drawing in its place and show it below the cell."""
     if not hasattr(drawing, "savefig"):
-        raise InputError("figure", [Fault("figure", "a matplotlib Figure", type(drawing).__name__, "pass what plots.* returns")])
+        raise InputError(
+            "figure", [Fault("figure", "a matplotlib Figure", type(drawing).__name__, "pass what plots.* returns")]
+        )
     figure.file = f"{figure.id}.svg"
     scope.calc.figure_data[figure.file] = image(drawing, "svg")
     with scope.step():

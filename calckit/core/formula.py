@@ -18,7 +18,7 @@ if TYPE_CHECKING:
     from calckit.core.nodes import Env
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Formula:
     """`result = text`, from `source`, valid where the relation `domain` holds.
 

@@ -54,7 +54,11 @@ def read(symbol: Symbol, raw: Any, system: str) -> Reading | Fault:
         return _fault(symbol, needed, repr(raw), f"write it like {_example(symbol, system)}")
     unit = symbol.unit(system)
     if not units.same_kind(quantity.unit, unit):
-        cure = f"add the unit: {_example(symbol, system)}" if not quantity.unit else f"use a unit like {units.shown(unit) or 'none'}"
+        cure = (
+            f"add the unit: {_example(symbol, system)}"
+            if not quantity.unit
+            else f"use a unit like {units.shown(unit) or 'none'}"
+        )
         return _fault(symbol, needed, f"{quantity.numeral} {quantity.unit}".strip(), cure)
     shown = units.shown(quantity.unit)
     limits_hold = unit == quantity.unit or not (symbol.low or symbol.high)
@@ -103,5 +107,3 @@ def _example(symbol: Symbol, system: str) -> str:
 
 def _fault(symbol: Symbol, needed: str, given: str, cure: str) -> Fault:
     return Fault(symbol.name, needed, str(given), cure, symbol.meaning)
-
-

@@ -9,6 +9,7 @@ import csv
 import re
 from collections.abc import Callable
 from dataclasses import dataclass, field
+from itertools import pairwise
 
 from calckit import units
 from calckit.core.inputs import Reading, read
@@ -95,19 +96,30 @@ def _header(cells: list[str], parts: tuple[str, ...], faults: list[Fault]) -> li
         if not match or not known:
             wanted = [f"{p}.delta_xe" for p in parts] + list(COLUMNS)
             listed = ", ".join(nearest_first(cell.split(" ")[0], wanted))
-            faults.append(Fault(f"levels header, column {place}", "symbol [unit] with a known symbol", repr(cell), f"write one of {listed}"))
+            faults.append(
+                Fault(
+                    f"levels header, column {place}",
+                    "symbol [unit] with a known symbol",
+                    repr(cell),
+                    f"write one of {listed}",
+                )
+            )
             continue
         try:
             header.append((match[1], units.canonical(match[2])))
         except UnitError as error:
-            faults.append(Fault(f"levels header, column {place}", "a unit the kit knows", match[2], error.faults[0].cure))
+            faults.append(
+                Fault(f"levels header, column {place}", "a unit the kit knows", match[2], error.faults[0].cure)
+            )
     _refuse(faults)
     named = [symbol for symbol, _ in header]
     heights = [symbol for symbol in named if symbol in HEIGHTS]
     if len(heights) != 1:
         faults.append(Fault("levels header", f"exactly one of {', '.join(HEIGHTS)}", ", ".join(heights) or "none"))
     faults += [
-        Fault("levels header", "each column once", f"{symbol} twice") for symbol in set(named) if named.count(symbol) > 1
+        Fault("levels header", "each column once", f"{symbol} twice")
+        for symbol in set(named)
+        if named.count(symbol) > 1
     ]
     _refuse(faults)
     return header
@@ -115,10 +127,7 @@ def _header(cells: list[str], parts: tuple[str, ...], faults: list[Fault]) -> li
 
 def _reading(symbol: str, unit: str, cell: str, symbols: Callable[[str], Symbol], system: str) -> Reading | Fault:
     name = symbol.rpartition(".")[2]
-    if name == "elevation":
-        declared = Symbol("elevation", "elevation", "length")
-    else:
-        declared = symbols(name)
+    declared = Symbol("elevation", "elevation", "length") if name == "elevation" else symbols(name)
     if not cell:
         return Fault(symbol, "a number", "blank", "fill the cell")
     return read(declared, f"{cell} {unit}", system)
@@ -142,7 +151,7 @@ def _roof_first(levels: Levels, faults: list[Fault]) -> Levels:
 
 
 def _ordered(levels: Levels, heights: list[float | str], faults: list[Fault]) -> Levels:
-    pairs = list(zip(heights, heights[1:], strict=False))
+    pairs = list(pairwise(heights))
     if all(a > b for a, b in pairs):  # type: ignore[operator]
         return levels
     if all(a < b for a, b in pairs):  # type: ignore[operator]

@@ -55,7 +55,7 @@ def in_decimals(work: Callable[[], Decimal]) -> Decimal:
 
 @dataclass(frozen=True)
 class Dual:
-    """A number and its slope in one direction; equal numbers are ordered by slope, so a tie gives the one-sided slope."""
+    """A number and its slope in one direction; equal numbers are ordered by slope: a tie gives the one-sided slope."""
 
     value: float
     slope: float = 0.0

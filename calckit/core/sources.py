@@ -45,7 +45,11 @@ class Sources:
         """Add a document; a second one under the same key must be the same."""
         if document.key in self.documents and self.documents[document.key] != document:
             raise DuplicateError(f"document {document.key!r} is declared twice with different entries")
-        faults = [Fault(name, "text", "blank") for name, text in asdict(document).items() if name in ("key", "title") and not text.strip()]
+        faults = [
+            Fault(name, "text", "blank")
+            for name, text in asdict(document).items()
+            if name in ("key", "title") and not text.strip()
+        ]
         if faults:
             raise InputError("document", faults)
         self.documents[document.key] = document

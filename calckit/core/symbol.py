@@ -48,8 +48,8 @@ class Symbol:
     Arguments: `name` by the transliteration rule (stem, one underscore, subscript run together; Greek spelt out; a
     Python keyword takes a trailing underscore); `meaning` in plain words; `kind`, a key of `KINDS`; `sub`, the printed
     subscript where it differs from the name's ("s,min"); `layout`, an expression whose printed form stands for the
-    symbol ("w_x*h_x**k"); `own_unit`, the display unit of kind "other"; `digits`, the significant digits of a printed result; `low`, `high`, the allowed range, with
-    `low_open` if `low` itself is not allowed; `choices` for words.
+    symbol ("w_x*h_x**k"); `digits`, the significant digits of a printed result; `low`, `high`, the allowed range, with
+    `low_open` if `low` itself is not allowed; `choices` for words; `own_unit`, the display unit of kind "other".
 
     >>> T_a = Symbol("T_a", "approximate fundamental period", "time", low=0, low_open=True)
     >>> T_a.stem, T_a.subscript, T_a.unit("SI")

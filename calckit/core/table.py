@@ -11,6 +11,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cache
 from importlib import resources
+from itertools import pairwise
 
 from calckit.core.record import Source
 from calckit.errors import CalckitError, UnknownNameError
@@ -85,7 +86,7 @@ class Table:
                 held = f" (end value, {symbol} beyond the last column)" if end else ""
                 return Found(text, "", f"{self.name}, row {key}, column {column}: {text}{held}", source)
         (_, a, low), (_, b, high) = next(
-            (left, right) for left, right in zip(points, points[1:], strict=False) if left[0] < value < right[0]
+            (left, right) for left, right in pairwise(points) if left[0] < value < right[0]
         )
         detail = f"{self.name}, row {key}, between columns {a}: {low} and {b}: {high}"
         if low == high:
@@ -117,7 +118,9 @@ def read(text: str, name: str) -> Table:
     """A table from its text."""
     lines = text.splitlines()
     header = dict(
-        (part.strip() for part in line.lstrip("# ").split(":", 1)) for line in lines if line.startswith("#") and ":" in line
+        (part.strip() for part in line.lstrip("# ").split(":", 1))
+        for line in lines
+        if line.startswith("#") and ":" in line
     )
     missing = [key for key in REQUIRED if not header.get(key)]
     if missing:

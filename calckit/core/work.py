@@ -24,6 +24,10 @@ if TYPE_CHECKING:
     from calckit.core.scope import Scope
 
 
+RATIO_DIGITS = 3
+RATIO_DECIMALS = 4
+
+
 @dataclass
 class Inputs:
     """The operands of a line: entries by name, and for each the unit, the float values and the digits' view of it."""
@@ -96,7 +100,11 @@ def compute(
     `row` is the row of a list that is worked in full; `decimals` overrides the number of decimals of the result.
     """
     symbol = symbol or scope.symbol(formula.result)
-    unit = formula.units[formula.result][scope.system == "SI"] if formula.units and formula.result in formula.units else unit or symbol.unit(scope.system)
+    unit = (
+        formula.units[formula.result][scope.system == "SI"]
+        if formula.units and formula.result in formula.units
+        else unit or symbol.unit(scope.system)
+    )
     inputs = gather(scope, formula, unit, typed or {})
     _in_domain(formula, inputs)
     listed = _runs_over_rows(formula, inputs)
@@ -202,7 +210,9 @@ def _printed(
 
     def tried(numbers: Mapping[str, Sequence[Decimal]]) -> bool:
         values = {
-            name: (list(numbers[name]) * (1 if whole else len(inputs.rows))) if inputs.listed(name) else numbers[name][0]
+            name: (list(numbers[name]) * (1 if whole else len(inputs.rows)))
+            if inputs.listed(name)
+            else numbers[name][0]
             for name in numbers
         }
         env = formula.env(values, DECIMALS, inputs.rows, row)
@@ -233,7 +243,8 @@ def _recorded(inputs: Inputs, printed: Mapping[str, tuple[str, ...]]) -> dict[st
 def _forms(
     scope: Scope, formula: Formula, inputs: Inputs, printed: Mapping[str, tuple[str, ...]], row: int | None
 ) -> dict[str, list[str]]:
-    from calckit.core.printers import Printed, print_all
+    from calckit.core.layout import Printed
+    from calckit.core.printers import print_all
 
     shown: dict[str, Any] = {}
     for name, texts in printed.items():
@@ -296,7 +307,7 @@ def check(scope: Scope, id_: str, relation: Formula, *, title: str, flags: Seque
     worst = max(range(len(ratios)), key=lambda i: (not holds[i], ratios[i]))
     row = worst if listed else None
     value = digits.carried(ratios[worst])
-    places = digits.decimals_for([value], 3)
+    places = min(digits.decimals_for([value], RATIO_DIGITS), RATIO_DECIMALS)
     target = digits.numeral(value, places)
     pair = Formula(relation.result, relation.text, relation.source, relation.units)
 

@@ -87,7 +87,7 @@ def design_spectrum(
         for label, period, shown, mark in sorted(labels, key=lambda entry: entry[1])[::-1]:
             text = typeset(label, f" = {shown} s")
             flags.append(_Flag(text, period, width_of(drawing, [text], math=True), mark))
-        width = min([WIDTH - _LEFT - _EDGE - 0.15, *(_width_for(flag, longest) for flag in flags if flag.period)])
+        width = min([WIDTH - _LEFT - _EDGE - 0.15, *(_width_for(flag, longest) for flag in flags)])
         if width < _NARROWEST:
             read.fault("marks, corners", "labels short enough to stand beside their marks",
                        max(flags, key=lambda flag: flag.length).text, "shorten the label")  # fmt: skip
@@ -110,7 +110,7 @@ def design_spectrum(
 
 def _width_for(flag: _Flag, longest: float) -> float:
     """The widest axes that leave room for the label at the right of its mark."""
-    return (WIDTH - _EDGE - _LEFT - _PAD - flag.length) / (flag.period / longest)
+    return (WIDTH - _EDGE - _LEFT - _PAD - flag.length) / max(flag.period / longest, 0.01)
 
 
 def _stack(flags: Sequence[_Flag], place: Callable[[float], float]) -> None:

@@ -51,7 +51,7 @@ _SYMBOL = re.compile(r"(?<![A-Za-z0-9_])([A-Za-z][A-Za-z0-9]*)(?:_([A-Za-z0-9]+)
 
 
 class Drawing(Figure):
-    """A matplotlib figure that shows itself as SVG, the same bytes each time.
+    """A matplotlib figure that shows itself in a notebook as SVG and PNG, the same bytes each time.
 
     >>> with sheet(2.0, 1.0) as drawing:
     ...     _ = letter(drawing, 1.0, 0.5, "Roof", ha="center")
@@ -61,6 +61,9 @@ class Drawing(Figure):
 
     def _repr_svg_(self) -> str:
         return svg_bytes(self).decode()
+
+    def _repr_png_(self) -> bytes:
+        return png_bytes(self, 100)
 
 
 @contextmanager
@@ -141,7 +144,7 @@ def _as_symbol(match: re.Match[str]) -> str:
     base = rf"\{stem}" if _greek(stem) else stem if len(stem) == 1 else rf"\mathrm{{{stem}}}"
     if sub is None:
         return f"${base}$"
-    return f"${base}_{{{sub}}}$" if len(sub) == 1 and sub.isalpha() else rf"${base}_{{\mathrm{{{sub}}}}}$"
+    return f"${base}_{{{sub}}}$" if len(sub) == 1 else rf"${base}_{{\mathrm{{{sub}}}}}$"
 
 
 def _greek(word: str) -> bool:

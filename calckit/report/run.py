@@ -6,13 +6,16 @@ computes the lines: the process that issues loads neither sympy nor nbconvert.
 
 from __future__ import annotations
 
+import asyncio
 import json
 import logging
 import os
 import re
 import subprocess
 import sys
+import sysconfig
 from collections.abc import Mapping
+from concurrent.futures import ThreadPoolExecutor
 from dataclasses import asdict, dataclass, field
 from pathlib import Path
 from tempfile import TemporaryDirectory
@@ -24,6 +27,7 @@ from jupyter_client.manager import AsyncKernelManager
 from nbclient import NotebookClient
 from nbclient.exceptions import DeadKernelError
 
+import calckit
 from calckit.core.record import Record, from_json
 from calckit.errors import NotebookError
 from calckit.report.notebook import Cell, Notebook
@@ -111,47 +115,77 @@ class _OwnKernel(KernelSpecManager):
 
 
 def _execute(notebook: Notebook, folder: Path) -> tuple[Any, str, str]:
-    """The executed notebook, the message of the cell that raised, and why the hand-over failed."""
+    """The executed notebook, the message of the cell that raised, and why the hand-over failed.
+
+    The event loop is our own: the caller may be a worker thread, or may have a loop that is running.
+    """
+
+    def work() -> tuple[Any, str, str]:
+        with asyncio.Runner(loop_factory=asyncio.SelectorEventLoop) as runner:
+            return runner.run(_execute_cells(notebook, folder))
+
+    try:
+        asyncio.get_running_loop()
+    except RuntimeError:
+        return work()
+    with ThreadPoolExecutor(1) as pool:
+        return pool.submit(work).result()
+
+
+async def _execute_cells(notebook: Notebook, folder: Path) -> tuple[Any, str, str]:
     node = _fresh(notebook)
+    replies: list[dict[str, Any]] = []
     manager = AsyncKernelManager(kernel_name="calckit", kernel_spec_manager=_OwnKernel(), log=_QUIET)
     manager.connection_file = str(folder / "kernel.json")
-    replies: list[dict[str, Any]] = []
     client = NotebookClient(
         node,
         km=manager,
         log=_QUIET,
-        resources={"metadata": {"path": str(notebook.folder)}},
         timeout=None,
         allow_errors=True,
         record_timing=False,
         skip_cells_with_tag="",
-        shutdown_kernel="immediate",
         on_cell_executed=lambda cell, cell_index, execute_reply: replies.append(execute_reply["content"]),
     )
     failure = unable = ""
+    try:
+        await _start(client, notebook, folder)
+        running = [(index, cell) for index, cell in enumerate(notebook.cells) if cell.runs]
+        for (index, cell), heading in zip(running, notebook.headings(), strict=True):
+            await client.async_execute_cell(node.cells[index], index, execution_count=len(replies) + 1)
+            if replies[-1]["status"] != "ok":
+                failure = _failure(cell, len(replies), heading, replies[-1])
+                break
+        node.cells.append(nbformat.v4.new_code_cell(_HAND_OVER))  # type: ignore[no-untyped-call]
+        await client.async_execute_cell(node.cells[-1], len(node.cells) - 1)
+        node.cells.pop()
+        if replies[-1]["status"] != "ok":
+            unable = _message(replies[-1])
+    except DeadKernelError as error:
+        task = asyncio.current_task()
+        if task and task.cancelling():  # nbclient takes a cancelled wait, such as after Ctrl-C, for a dead process
+            raise asyncio.CancelledError from error
+        raise NotebookError(f"the Python process ended while cell [{len(replies) + 1}] ran") from error
+    finally:
+        if client.kc:
+            client.kc.stop_channels()
+        if manager.has_kernel:
+            await manager.shutdown_kernel(now=True)
+    return node, failure, unable
+
+
+async def _start(client: NotebookClient, notebook: Notebook, folder: Path) -> None:
+    """Start the process; raises NotebookError with what it said last."""
     log = folder / "kernel.log"
     try:
-        with (
-            log.open("wb") as messages,
-            client.setup_kernel(cleanup_kc=True, env=_environment(folder), stdout=subprocess.DEVNULL, stderr=messages),
-        ):
-            running = [(index, cell) for index, cell in enumerate(notebook.cells) if cell.runs]
-            for (index, cell), heading in zip(running, notebook.headings(), strict=True):
-                client.execute_cell(node.cells[index], index, execution_count=len(replies) + 1)
-                if replies[-1]["status"] != "ok":
-                    failure = _failure(cell, len(replies), heading, replies[-1])
-                    break
-            node.cells.append(nbformat.v4.new_code_cell(_HAND_OVER))  # type: ignore[no-untyped-call]
-            client.execute_cell(node.cells[-1], len(node.cells) - 1)
-            node.cells.pop()
-            if replies[-1]["status"] != "ok":
-                unable = _message(replies[-1])
-    except DeadKernelError as error:
-        raise NotebookError(f"the Python process ended while cell [{len(replies) + 1}] ran") from error
-    except RuntimeError as error:
+        with log.open("wb") as messages:
+            await client.async_start_new_kernel(
+                cwd=str(notebook.folder), env=_environment(folder), stdout=subprocess.DEVNULL, stderr=messages
+            )
+            await client.async_start_new_kernel_client()
+    except (RuntimeError, OSError) as error:
         said = [line for line in log.read_text(encoding="utf-8", errors="replace").splitlines() if "rror" in line]
         raise NotebookError(f"no Python process for the notebook: {(said or [str(error)])[-1]}") from error
-    return node, failure, unable
 
 
 def _fresh(notebook: Notebook) -> Any:
@@ -168,9 +202,12 @@ def _fresh(notebook: Notebook) -> Any:
 def _environment(folder: Path) -> dict[str, str]:
     """The environment of the run: as this process has it, without what would make two runs differ."""
     (folder / "matplotlibrc").touch()
-    kept = {name: value for name, value in os.environ.items() if name not in ("MPLBACKEND", "PYTHONSTARTUP")}
+    found = {name: value for name, value in os.environ.items() if name not in ("MPLBACKEND", "PYTHONSTARTUP")}
+    home = str(Path(calckit.__file__).resolve().parent.parent)
+    if home not in map(sysconfig.get_path, ("purelib", "platlib")):  # a source tree: the run uses the same kit
+        found["PYTHONPATH"] = os.pathsep.join(filter(None, (home, found.get("PYTHONPATH"))))
     return {
-        **kept,
+        **found,
         "CALCKIT_RUN": str(folder),
         "IPYTHONDIR": str(folder / "ipython"),
         "MATPLOTLIBRC": str(folder / "matplotlibrc"),

@@ -189,4 +189,6 @@ def homogeneous_set(unit: str, system: str) -> tuple[str, str]:
     metric = si or (system == "SI" and not us)
     if metric:
         return ("N" if words & {"N", "Pa", "MPa"} else "kN"), ("mm" if words & {"mm", "MPa"} else "m")
-    return ("lb" if words & {"lb", "psi", "psf", "pcf", "plf"} else "kip"), ("in" if words & {"in", "psi", "ksi"} else "ft")
+    return ("lb" if words & {"lb", "psi", "psf", "pcf", "plf"} else "kip"), (
+        "in" if words & {"in", "psi", "ksi"} else "ft"
+    )

@@ -1,20 +1,28 @@
 """What is on a drawing, read back from it."""
 
+import re
 from itertools import combinations
 
+from matplotlib.axes import Axes
 from matplotlib.figure import Figure
 from matplotlib.lines import Line2D
 from matplotlib.text import Text
 
 
 def lettering(figure: Figure) -> list[Text]:
-    """Every text that shows, tick labels included."""
+    """Every text that shows, tick labels within the axes included."""
     figure.canvas.draw()
-    return [text for text in figure.findobj(Text) if text.get_text() and text.get_visible() and _axis_on(text)]
+    hidden = [text for axes in figure.axes for text in _hidden(axes)]
+    return [text for text in figure.findobj(Text) if text.get_text() and text.get_visible() and text not in hidden]
 
 
-def _axis_on(text: Text) -> bool:
-    return text.axes is None or text.axes.axison
+def _hidden(axes: Axes) -> list[Text]:
+    labels = []
+    for axis in (axes.xaxis, axes.yaxis):
+        low, high = axis.get_view_interval()
+        ticks = axis.get_major_ticks()
+        labels += [tick.label1 for tick in ticks if not (axes.axison and low <= tick.get_loc() <= high)]
+    return labels
 
 
 def words(figure: Figure) -> list[str]:
@@ -33,13 +41,17 @@ def overlaps(figure: Figure) -> list[tuple[str, str]]:
     ]
 
 
+def vertical_lines(figure: Figure) -> list[Line2D]:
+    """Vertical lines that stand on the sheet, outside any axes."""
+    return [line for line in figure.artists if isinstance(line, Line2D) and len(set(line.get_xdata())) == 1]
+
+
 def struck_through(figure: Figure) -> list[str]:
     """Texts that a vertical line on the sheet runs through."""
-    poles = [line for line in figure.findobj(Line2D) if line.axes is None and len(set(line.get_xdata())) == 1]
     struck = []
     for text in lettering(figure):
         box = text.get_window_extent()
-        for pole in poles:
+        for pole in vertical_lines(figure):
             x = pole.get_xdata()[0] * figure.dpi
             low, high = sorted(y * figure.dpi for y in pole.get_ydata())
             if box.x0 < x < box.x1 and low < box.y1 - 1 and high > box.y0 + 1:
@@ -61,6 +73,4 @@ def smallest(figure: Figure) -> float:
 
 def colors(svg: bytes) -> set[str]:
     """Colors named in an SVG."""
-    import re
-
     return {match.lower() for match in re.findall(r"#[0-9a-fA-F]{6}\b", svg.decode())}

@@ -8,16 +8,28 @@ from matplotlib.text import Annotation
 
 from calckit import plots
 from tests.plots import ink
-from tests.plots.conftest import (
-    CORNERS, DRIFT_UNITS, DRIFTS, FORCES, H_X, LEVELS, LIMITS, MARKS, S_A, SHEARS, T, UNITS, W_X,
-)  # fmt: skip
+from tests.plots.examples import (
+    CORNERS,
+    DRIFT_UNITS,
+    DRIFTS,
+    FORCES,
+    H_X,
+    LEVELS,
+    LIMITS,
+    MARKS,
+    S_A,
+    SHEARS,
+    UNITS,
+    W_X,
+    T,
+)
 
 
 def test_elevation_draws_the_levels_to_scale() -> None:
     figure = plots.elevation(LEVELS, H_X, W_X, title="North frame", **UNITS)
     floors = [line for line in figure.findobj(Line2D) if line.get_linewidth() == 1.7]
     heights = np.array([line.get_ydata()[0] for line in floors])
-    base = min(line.get_ydata()[0] for line in figure.findobj(Line2D) if len(set(line.get_xdata())) == 1)
+    base = min(line.get_ydata()[0] for line in ink.vertical_lines(figure))
     assert (heights - base) / (heights[0] - base) == pytest.approx(np.array(H_X) / H_X[0], abs=1e-12)
 
 
@@ -89,8 +101,8 @@ def test_spectrum_curve_corners_and_marks() -> None:
     assert dots.get_ydata() == pytest.approx(np.interp(dots.get_xdata(), T, S_A))
     poles = sorted(
         axes.transData.inverted().transform((line.get_xdata()[0] * figure.dpi, 0))[0]
-        for line in figure.findobj(Line2D) if line.axes is None
-    )  # fmt: skip
+        for line in ink.vertical_lines(figure)
+    )
     assert poles == pytest.approx(sorted([*CORNERS.values(), *periods]))
     words = ink.words(figure)
     assert {"X: $T_{a}$ = 0.7605 s", "X: $C_{u}$ $T_{a}$ = 1.065 s", "Y: $T_{a}$ = 0.7716 s"} <= set(words)

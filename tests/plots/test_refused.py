@@ -6,7 +6,7 @@ import pytest
 
 from calckit import plots
 from calckit.errors import InputError
-from tests.plots.conftest import DRIFT_UNITS, H_X, LEVELS, UNITS, W_X
+from tests.plots.examples import DRIFT_UNITS, H_X, LEVELS, UNITS, W_X
 
 
 def test_all_faults_of_a_call_are_reported_at_once() -> None:
@@ -17,7 +17,7 @@ def test_all_faults_of_a_call_are_reported_at_once() -> None:
 
 
 def test_message_names_symbol_need_given_and_cure() -> None:
-    with pytest.raises(InputError) as caught:  # noqa: PT011 - the whole text is compared below
+    with pytest.raises(InputError) as caught:
         plots.elevation(LEVELS, H_X[::-1], W_X, **UNITS)
     assert str(caught.value) == (
         "plots.elevation: h_x: needed heights above the base, each above the next and the last above 0; "

@@ -58,10 +58,10 @@ def record(**fields: Any) -> Record:
 
 def html_file(_model: object, *, figures: Mapping[str, bytes], attachments: Sequence[Attachment]) -> bytes:
     """A page with the seal and the attachments as downloads."""
-    links = "".join(
-        f'<a download="{html.escape(a.name)}" href="data:{a.media_type};base64,{base64.b64encode(a.data).decode()}">x</a>'
-        for a in attachments
-    )
+    links = ""
+    for attached in attachments:
+        link = f"data:{attached.media_type};base64,{base64.b64encode(attached.data).decode()}"
+        links += f'<a download="{html.escape(attached.name)}" href="{link}">x</a>'
     head = f'<meta name="calckit-seal" content="{seal.PLACEHOLDER}">'
     return f"<!DOCTYPE html>\n<html><head>{head}</head><body>{links}</body></html>\n".encode()
 

@@ -148,7 +148,7 @@ def test_a_cell_that_raised_leaves_earlier_files(source: Notebook, give: Give, t
     issue.issue(source, Settings(), tmp_path)
     before = content(tmp_path)
     give(failure="cell [2]: ValueError: x", problems=(Problem("unknown", "a", ""),))
-    with pytest.raises(NotebookError, match="^cell .*x\nset values undecided, as the run stopped: a$"):
+    with pytest.raises(NotebookError, match=r"^cell .*x\nset values undecided, as the run stopped: a$"):
         issue.issue(source, Settings(), tmp_path)
     assert content(tmp_path) == before
 

@@ -34,8 +34,7 @@ def base_shear(scope: Scope) -> Handle:
     with scope.step():
         _candidate_lines(scope)
         C_s = _governing(scope)
-        V = scope.compute(formulas.V, detail=_against_computed(scope, C_s))
-        return V
+        return scope.compute(formulas.V, detail=_against_computed(scope, C_s))
 
 
 def _candidate_lines(scope: Scope) -> None:
@@ -62,14 +61,27 @@ def _floors(scope: Scope) -> str:
 def _governing(scope: Scope) -> Handle:
     reading = study(scope.calc).reading
     source = rule("12.8.1.1", obtained="found")
-    if site_class(scope.calc) == "E" and scope.word("study_exception") == "exception 3" and (scope.number("T", "s") or 0) > (scope.number("T_S", "s") or 0):
-        raise ScopeError(f"{scope.id_of('C_s')}: exception 3 of 11.4.8 holds for T not above T_S only; a ground motion hazard analysis is needed")
+    if (
+        site_class(scope.calc) == "E"
+        and scope.word("study_exception") == "exception 3"
+        and (scope.number("T", "s") or 0) > (scope.number("T_S", "s") or 0)
+    ):
+        raise ScopeError(
+            f"{scope.id_of('C_s')}: exception 3 of 11.4.8 holds for T not above T_S only; a ground motion hazard analysis is needed"
+        )
     plain = f"max(min(C_sbasic, C_scap), {_floors(scope)})"
-    increased = f"max(min(C_sbasic, C_scapinc), {_floors(scope)})" if _beyond(scope) else f"max(C_sbasic, {_floors(scope)})"
+    increased = (
+        f"max(min(C_sbasic, C_scapinc), {_floors(scope)})" if _beyond(scope) else f"max(C_sbasic, {_floors(scope)})"
+    )
     if reading == "both":
         scope.compute(Formula("C_swithout", plain, source), detail="11.4.8 without the 50 % increase")
-        scope.compute(Formula("C_swith", increased, rule("11.4.8, exception 2", obtained="found")), detail="11.4.8 with the 50 % increase")
-        flag = Flag(f"{scope.id_of('C_s')}: the larger of both readings of 11.4.8 is used until supplements and exception are answered")
+        scope.compute(
+            Formula("C_swith", increased, rule("11.4.8, exception 2", obtained="found")),
+            detail="11.4.8 with the 50 % increase",
+        )
+        flag = Flag(
+            f"{scope.id_of('C_s')}: the larger of both readings of 11.4.8 is used until supplements and exception are answered"
+        )
         text, flags = "max(C_swithout, C_swith)", [flag]
     else:
         text, flags = (increased if reading == "exception 2" else plain), []
@@ -80,7 +92,9 @@ def _candidates(scope: Scope, reading: str) -> list[Candidate]:
     """Every candidate in clause order with its value and reason; the one whose value is C_s governs."""
     reasons = {
         "C_sbasic": "basic value",
-        "C_scap": "upper limit for T <= T_L" if (scope.number("T") or 0) <= (scope.number("T_L") or 0) else "upper limit for T > T_L",
+        "C_scap": "upper limit for T <= T_L"
+        if (scope.number("T") or 0) <= (scope.number("T_L") or 0)
+        else "upper limit for T > T_L",
         "C_scapinc": "upper limit increased by 11.4.8 for T > 1.5 T_S",
         "C_sfloor": "lower limit",
         "C_sfloor1": "lower limit where S_1 >= 0.6",
@@ -93,9 +107,19 @@ def _candidates(scope: Scope, reading: str) -> list[Candidate]:
     if reading == "both" and not _beyond(scope):
         cap = "C_sbasic"
     upper = min(("C_sbasic", cap), key=lambda name: values[name])
-    governs = max((upper, *(name for name in ("C_sfloor", "C_sfloor1") if name in values)), key=lambda name: values[name])
+    governs = max(
+        (upper, *(name for name in ("C_sfloor", "C_sfloor1") if name in values)), key=lambda name: values[name]
+    )
     return [
-        Candidate(line.source.equation or line.source.where, values[name], "", str(line.shown), reasons[name], name == governs, line.id)
+        Candidate(
+            line.source.equation or line.source.where,
+            values[name],
+            "",
+            str(line.shown),
+            reasons[name],
+            name == governs,
+            line.id,
+        )
         for name, line in lines
         if line.source
     ]
@@ -119,13 +143,21 @@ def vertical_distribution(scope: Scope) -> Handle:
         raise InputError("asce7.vertical_distribution", faults)
     with scope.step():
         T = scope.number("T", "s") or 0.0
-        reason = "T not above 0.5 s" if T <= 0.5 else "T not below 2.5 s" if T >= 2.5 else "linear between 0.5 and 2.5 s"
+        reason = (
+            "T not above 0.5 s" if T <= 0.5 else "T not below 2.5 s" if T >= 2.5 else "linear between 0.5 and 2.5 s"
+        )
         scope.compute(formulas.K, detail=reason)
         for formula in (formulas.WH_X, formulas.SUM_WH, formulas.C_VX, formulas.F_X, formulas.V_X, formulas.M_X):
             made = scope.compute(formula)
-        scope.table("forces", "Lateral forces, story shears and overturning moments", ["h_x", "w_x", "wh_x", "C_vx", "F_x", "V_x", "h_sx", "M_x"])
+        scope.table(
+            "forces",
+            "Lateral forces, story shears and overturning moments",
+            ["h_x", "w_x", "wh_x", "C_vx", "F_x", "V_x", "h_sx", "M_x"],
+        )
         scope.compute(formulas.SUM_F)
-        scope.require("abs(sum_F/V - 1) <= 0.001", title="Sum of lateral forces equals base shear", source=formulas.F_X.source)
+        scope.require(
+            "abs(sum_F/V - 1) <= 0.001", title="Sum of lateral forces equals base shear", source=formulas.F_X.source
+        )
         return made
 
 
@@ -150,8 +182,15 @@ def drift(scope: Scope) -> Handle:
         for each in (formulas.DELTA_X, formulas.DELTA):
             scope.compute(each)
         scope.compute(formula)
-        scope.table("drift", "Displacements and story drifts", ["delta_xe", "delta_x", "Delta", "h_sx", "Delta_a"], head="Story below")
-        return scope.require("Delta <= Delta_a", title=title, source=rule("12.12.1"), id_="drift", flags=_edge_flags(scope))
+        scope.table(
+            "drift",
+            "Displacements and story drifts",
+            ["delta_xe", "delta_x", "Delta", "h_sx", "Delta_a"],
+            head="Story below",
+        )
+        return scope.require(
+            "Delta <= Delta_a", title=title, source=rule("12.12.1"), id_="drift", flags=_edge_flags(scope)
+        )
 
 
 def _divided_by_rho(scope: Scope) -> bool:
@@ -165,7 +204,13 @@ def _edge_flags(scope: Scope) -> list[Flag]:
         return []
     answers = {name: scope.word(name) for name in ("H1a", "H1b")}
     if "yes" in answers.values():
-        return [Flag("torsional irregularity: drift is to be taken along the edges (12.12.1), not at the centers of mass", True, "originator")]
+        return [
+            Flag(
+                "torsional irregularity: drift is to be taken along the edges (12.12.1), not at the centers of mass",
+                True,
+                "originator",
+            )
+        ]
     return []
 
 
@@ -183,7 +228,13 @@ def stability(scope: Scope) -> Handle:
             return scope.verdict("stability", title, NOT_CHECKED, rule("12.8.7"), missing=missing)
         theta = scope.compute(formulas.THETA)
         scope.table("stability", "Stability coefficients", [*lists, "theta"], head="Story below")
-        return scope.require("theta <= theta_max", title=title, source=formulas.THETA.source, id_="stability", flags=_amplify(scope, theta))
+        return scope.require(
+            "theta <= theta_max",
+            title=title,
+            source=formulas.THETA.source,
+            id_="stability",
+            flags=_amplify(scope, theta),
+        )
 
 
 def _amplify(scope: Scope, theta: Handle) -> list[Flag]:
@@ -191,7 +242,13 @@ def _amplify(scope: Scope, theta: Handle) -> list[Flag]:
     over = [row for row, value in zip(theta.line.rows, values, strict=True) if value > THRESHOLD]
     if not over:
         return [Flag(f"theta is not above {THRESHOLD:.2f} in any story: P-delta effects need not be considered")]
-    return [Flag(f"theta is above {THRESHOLD:.2f} at {', '.join(over)}: multiply drifts and forces by 1/(1 - theta) there", True, "originator")]
+    return [
+        Flag(
+            f"theta is above {THRESHOLD:.2f} at {', '.join(over)}: multiply drifts and forces by 1/(1 - theta) there",
+            True,
+            "originator",
+        )
+    ]
 
 
 def heights(scope: Scope) -> list[float]:

@@ -46,9 +46,7 @@ T_DRIFT_APPROXIMATE = Formula("T_drift", "T_a", rule("12.8.6.2"))
 # 12.8.1 base shear
 _SECONDS = {"T": ("s", "s"), "T_L": ("s", "s")}
 C_S_BASIC = Formula("C_sbasic", "S_DS/(R/I_e)", rule("12.8.1.1", "12.8-2", "found"))
-C_S_CAP = Formula(
-    "C_scap", "S_D1/(T*(R/I_e))", rule("12.8.1.1", "12.8-3", "found"), units={"T": ("s", "s")}
-)
+C_S_CAP = Formula("C_scap", "S_D1/(T*(R/I_e))", rule("12.8.1.1", "12.8-3", "found"), units={"T": ("s", "s")})
 C_S_CAP_LONG = Formula("C_scap", "S_D1*T_L/(T**2*(R/I_e))", rule("12.8.1.1", "12.8-4", "found"), units=_SECONDS)
 C_S_CAP_INCREASED = Formula("C_scapinc", "1.5*C_scap", rule("11.4.8, exception 2", obtained="found"))
 C_S_FLOOR = Formula("C_sfloor", "max(0.044*S_DS*I_e, 0.01)", rule("12.8.1.1", "12.8-5", "found"))

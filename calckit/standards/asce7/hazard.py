@@ -7,6 +7,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import TYPE_CHECKING, Any
 
 from calckit.core.book import Entry, this_cell
@@ -61,7 +62,9 @@ def study(scope: Scope) -> Hazard:
     exception = scope.word("study_exception")
     if exception == "study made":
         cure = 'set hazard_basis to "site-specific" and give its S_DS and S_D1'
-        raise InputError("design spectrum", [Fault("study_exception", "an exception for mapped values", exception, cure)])
+        raise InputError(
+            "design spectrum", [Fault("study_exception", "an exception for mapped values", exception, cure)]
+        )
     if not triggered or letter == "E":
         return Hazard(tuple(triggered), "plain")
     if supplements is None or exception is None:
@@ -109,7 +112,11 @@ def _study_flags(scope: Scope, hazard: Hazard) -> list[Flag]:
     if hazard.reading == "both":
         text = f"11.4.8 asks for a ground motion hazard analysis ({why}): supplements in force and exception taken are not answered"
         return [Flag(text, True, "engineer of record")]
-    flags = [Flag(f"11.4.8 ({why}): {scope.word('study_exception') or 'exception'} taken in place of a ground motion hazard analysis")]
+    flags = [
+        Flag(
+            f"11.4.8 ({why}): {scope.word('study_exception') or 'exception'} taken in place of a ground motion hazard analysis"
+        )
+    ]
     if not source.strip():
         flags.append(Flag("supplements in force: no source given (supplements_source)", True, "originator"))
     return flags
@@ -117,12 +124,21 @@ def _study_flags(scope: Scope, hazard: Hazard) -> list[Flag]:
 
 def _F_a(scope: Scope, letter: str, flags: Sequence[Flag]) -> Handle:
     if scope.word("site_class") == "B assumed":
-        return scope.state("F_a", "1.0", "table", formulas.rule("11.4.3", obtained="found"), detail="class B without measured velocity", flags=flags)
+        return scope.state(
+            "F_a",
+            "1.0",
+            "table",
+            formulas.rule("11.4.3", obtained="found"),
+            detail="class B without measured velocity",
+            flags=flags,
+        )
     table, S_S = load(PACKAGE, "F_a"), scope.number("S_S") or 0.0
     if letter == "E" and S_S > 0.75:
         return _F_a_of_class_E(scope, S_S, flags)
     found = table.along(letter, "S_S", S_S)
-    value = Formula("F_a", found.expression, found.source).value({"S_S": S_S}) if found.expression else float(found.text)
+    value = (
+        Formula("F_a", found.expression, found.source).value({"S_S": S_S}) if found.expression else float(found.text)
+    )
     if scope.word("site_class") == "D default" and value < 1.2:
         detail = f"default class D: not less than 1.2 ({found.detail})"
         return scope.state("F_a", "1.2", "table", formulas.rule("11.4.4"), detail=detail, flags=flags)
@@ -131,16 +147,22 @@ def _F_a(scope: Scope, letter: str, flags: Sequence[Flag]) -> Handle:
 
 def _F_a_of_class_E(scope: Scope, S_S: float, flags: Sequence[Flag]) -> Handle:
     if S_S < 1.0:
-        raise ScopeError("site class E with S_S between 0.75 and 1.0: Table 11.4-1 gives no entry to interpolate to; see 11.4.8")
+        raise ScopeError(
+            "site class E with S_S between 0.75 and 1.0: Table 11.4-1 gives no entry to interpolate to; see 11.4.8"
+        )
     if scope.word("study_exception") != "exception 1":
-        raise ScopeError('site class E with S_S not less than 1.0: 11.4.8 asks for a study; answer study_exception "exception 1" to take F_a as for class C')
+        raise ScopeError(
+            'site class E with S_S not less than 1.0: 11.4.8 asks for a study; answer study_exception "exception 1" to take F_a as for class C'
+        )
     found = load(PACKAGE, "F_a").along("C", "S_S", S_S)
     return scope.look_up("F_a", found, [*flags, Flag("F_a taken as for class C by exception 1 of 11.4.8")])
 
 
 def _F_v(scope: Scope, letter: str, hazard: Hazard) -> Handle:
     if scope.word("site_class") == "B assumed":
-        return scope.state("F_v", "1.0", "table", formulas.rule("11.4.3", obtained="found"), detail="class B without measured velocity")
+        return scope.state(
+            "F_v", "1.0", "table", formulas.rule("11.4.3", obtained="found"), detail="class B without measured velocity"
+        )
     S_1, row = scope.number("S_1") or 0.0, letter
     if letter == "E" and S_1 > 0.1:
         supplements = scope.calc.title_block["supplements"]
@@ -148,7 +170,9 @@ def _F_v(scope: Scope, letter: str, hazard: Hazard) -> Handle:
             state = "not answered" if supplements is None else "without Supplement 1"
             raise ScopeError(f"site class E with S_1 above 0.1, supplements {state}: F_v is undefined (11.4.8)")
         if S_1 >= 0.2 and scope.word("study_exception") != "exception 3":
-            raise ScopeError('site class E with S_1 not less than 0.2: 11.4.8 asks for a study; answer study_exception "exception 3" if T is not above T_S')
+            raise ScopeError(
+                'site class E with S_1 not less than 0.2: 11.4.8 asks for a study; answer study_exception "exception 3" if T is not above T_S'
+            )
         row = "E, Supplement 1"
     return scope.look_up("F_v", load(PACKAGE, "F_v").along(row, "S_1", S_1))
 
@@ -167,7 +191,13 @@ def site_specific_values(scope: Scope, S_DS: Any, S_D1: Any, source: str) -> lis
 def spectrum_ordinates(scope: Scope, periods: Sequence[float]) -> Handle:
     """S_a at the given periods in seconds: one list line and its table."""
     faults = [
-        Fault("T_r", "a period not below 0, in seconds", repr(period), "correct the list", "period at which the spectrum is read")
+        Fault(
+            "T_r",
+            "a period not below 0, in seconds",
+            repr(period),
+            "correct the list",
+            "period at which the spectrum is read",
+        )
         for period in periods
         if isinstance(period, bool) or not isinstance(period, int | float) or not 0 <= period < 1e3
     ]
@@ -216,14 +246,18 @@ def _by_table(scope: Scope, name: str, ordinate: str, risk: str) -> Handle:
     table = load(PACKAGE, f"category_{ordinate}")
     value = scope.number(ordinate) or 0.0
     found = table.band(risk, value, ordinate)
-    entry = scope._stated(scope.symbol(name), scope._read(scope.symbol(name), found.text), "table", found.source, detail=found.detail)  # type: ignore[arg-type]
+    entry = scope._stated(
+        scope.symbol(name), scope._read(scope.symbol(name), found.text), "table", found.source, detail=found.detail
+    )  # type: ignore[arg-type]
     entry.line.margin = _nearest_edge(table, risk, value, ordinate)
     return scope.write(entry)
 
 
 def _nearest_edge(table: Any, risk: str, value: float, ordinate: str) -> Margin | None:
     edges = [(float(low), table.row(low)[risk]) for low in table.rows]
-    changes = [(low, before, after) for (_, before), (low, after) in zip(edges, edges[1:], strict=False) if before != after]
+    changes = [
+        (low, before, after) for (_, before), (low, after) in pairwise(edges) if before != after
+    ]
     if not changes:
         return None
     edge, before, after = min(changes, key=lambda change: abs(change[0] - value))
@@ -242,13 +276,28 @@ def _governing_category(scope: Scope, risk: str, made: Sequence[Handle]) -> Hand
         word, detail = "A", "S_1 not above 0.04 and S_S not above 0.15"
     flags = []
     if word == "A":
-        flags.append(Flag("design category A: the forces of 1.4.2 apply in place of 12.8, with the dead load and not W", True, "originator"))
+        flags.append(
+            Flag(
+                "design category A: the forces of 1.4.2 apply in place of 12.8, with the dead load and not W",
+                True,
+                "originator",
+            )
+        )
     rule = formulas.rule("11.6", obtained="memory, high")
     symbol = scope.symbol("SDC")
     reading = scope._read(symbol, word)
     assert reading is not None
     entry = scope._stated(symbol, reading, "table", rule, detail=detail, flags=flags)
     entry.line.candidates = [
-        Candidate(str(h.line.source.where if h.line.source else ""), None, "", str(h.value), h.line.detail, h.value == word, h.id) for h in made
+        Candidate(
+            str(h.line.source.where if h.line.source else ""),
+            None,
+            "",
+            str(h.value),
+            h.line.detail,
+            h.value == word,
+            h.id,
+        )
+        for h in made
     ]
     return scope.write(entry)

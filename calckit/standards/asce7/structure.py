@@ -37,12 +37,16 @@ def system_row(scope: Scope) -> tuple[str, dict[str, str], Table]:
     typed = " ".join(typed.split())
     matching = [key for key in table.rows if typed in (key, key.partition(": ")[2])]
     if len(matching) > 1:
-        raise InputError("asce7.system", [Fault("system", "one row of Table 12.2-1", typed, f"write one of {'; '.join(matching)}")])
+        raise InputError(
+            "asce7.system", [Fault("system", "one row of Table 12.2-1", typed, f"write one of {'; '.join(matching)}")]
+        )
     if not matching:
         known = [key for key in table.rows if not typed.partition(":")[0] or True]
         near = UnknownNameError("system", typed, known).known[:6]
         cure = f"near names: {'; '.join(near)}"
-        raise InputError("asce7.system", [Fault("system", "a row of Table 12.2-1", typed, cure, "seismic force-resisting system")])
+        raise InputError(
+            "asce7.system", [Fault("system", "a row of Table 12.2-1", typed, cure, "seismic force-resisting system")]
+        )
     return matching[0], table.row(matching[0]), table
 
 
@@ -63,10 +67,20 @@ def _permitted(scope: Scope, key: str, row: Mapping[str, str], table: Table, cat
         return scope.verdict("system_permitted", title, NOT_CHECKED, source, missing="SDC (seismic design category)")
     limit = "NL" if category == "A" else row[category]
     if limit == "NP":
-        return scope.verdict("system_permitted", title, NOT_OK, source, detail=f"{key} is not permitted in design category {category}")
+        return scope.verdict(
+            "system_permitted", title, NOT_OK, source, detail=f"{key} is not permitted in design category {category}"
+        )
     if limit == "NL":
-        return scope.verdict("system_permitted", title, OK, source, detail=f"{key}: no height limit in design category {category}")
-    scope.state("h_limit", f"{limit} ft", "table", source, detail=f"{table.name}, row {key}, category {category}: {limit} ft; increases of 12.2.5.4 not taken")
+        return scope.verdict(
+            "system_permitted", title, OK, source, detail=f"{key}: no height limit in design category {category}"
+        )
+    scope.state(
+        "h_limit",
+        f"{limit} ft",
+        "table",
+        source,
+        detail=f"{table.name}, row {key}, category {category}: {limit} ft; increases of 12.2.5.4 not taken",
+    )
     return scope.require("h_n <= h_limit", title=title, source=source, id_="system_permitted")
 
 
@@ -130,7 +144,9 @@ def period(scope: Scope) -> Handle:
         formula, reason, flags = _choice(scope)
         T = scope.compute(formula, detail=reason, flags=flags, candidates=_candidates(scope, formula, reason))
         made = scope.number("T_analysis") is not None
-        scope.compute(formulas.T_DRIFT_ANALYSIS if made else formulas.T_DRIFT_APPROXIMATE, detail="no upper limit for drift")
+        scope.compute(
+            formulas.T_DRIFT_ANALYSIS if made else formulas.T_DRIFT_APPROXIMATE, detail="no upper limit for drift"
+        )
         return T
 
 
@@ -145,22 +161,35 @@ def _choice(scope: Scope) -> tuple[Any, str, list[Flag]]:
         return formulas.T_ANALYSIS, "analysis shorter than T_a, taken by the engineer's choice", []
     if choice == "approximate":
         return formulas.T_APPROXIMATE, "T_a taken over a shorter analysis by the engineer's choice", []
-    flag = Flag(f"{scope.id_of('T_analysis')} is shorter than T_a; T = T_a is used until T_choice is answered", True, "engineer of record")
+    flag = Flag(
+        f"{scope.id_of('T_analysis')} is shorter than T_a; T = T_a is used until T_choice is answered",
+        True,
+        "engineer of record",
+    )
     return formulas.T_APPROXIMATE, "T_a is permitted in place of an analysis; the choice is open", [flag]
 
 
 def _candidates(scope: Scope, formula: Any, reason: str) -> list[Candidate]:
     listed = []
     T_max, T_analysis = scope.number("T_max"), scope.number("T_analysis")
-    governs = {formulas.T_APPROXIMATE: "T_a", formulas.T_ANALYSIS: "T_analysis"}.get(formula) if formula is not formulas.T_CAPPED else None
-    if formula is formulas.T_CAPPED:
-        governs = "T_analysis" if (T_analysis or 0) <= (T_max or 0) else "T_max"
+    capped = "T_analysis" if (T_analysis or 0) <= (T_max or 0) else "T_max"
+    governs = {formulas.T_APPROXIMATE: "T_a", formulas.T_ANALYSIS: "T_analysis"}.get(formula, capped)
     words = {"T_a": "approximate period", "T_analysis": "analysis", "T_max": "upper limit C_u T_a"}
     for name, word in words.items():
         entry = scope.find(name)
         number = scope.number(name)
         shown = str(entry.line.shown) if entry and number is not None else NONE
-        listed.append(Candidate(word, number, "s", shown, reason if governs == name else word, governs == name, entry.line.id if entry else ""))
+        listed.append(
+            Candidate(
+                word,
+                number,
+                "s",
+                shown,
+                reason if governs == name else word,
+                governs == name,
+                entry.line.id if entry else "",
+            )
+        )
     return listed
 
 
@@ -175,7 +204,14 @@ def procedure(scope: Scope) -> Handle:
     with scope.step():
         _prohibited(scope)
         verdict, detail, missing = _table_12_6_1(scope)
-        return scope.verdict("procedure", "Equivalent lateral force procedure permitted", verdict, rule("Table 12.6-1", obtained="found"), detail=detail, missing=missing)
+        return scope.verdict(
+            "procedure",
+            "Equivalent lateral force procedure permitted",
+            verdict,
+            rule("Table 12.6-1", obtained="found"),
+            detail=detail,
+            missing=missing,
+        )
 
 
 def _answered(scope: Scope) -> tuple[set[str], list[str]]:
@@ -192,13 +228,31 @@ def _prohibited(scope: Scope) -> None:
     if not category:
         scope.verdict("prohibited", title, NOT_CHECKED, source, missing="SDC (seismic design category)")
     elif found := sorted(wanted & present):
-        scope.verdict("prohibited", title, NOT_OK, source, detail=f"{', '.join(found)} is prohibited in design category {category}")
+        scope.verdict(
+            "prohibited",
+            title,
+            NOT_OK,
+            source,
+            detail=f"{', '.join(found)} is prohibited in design category {category}",
+        )
     elif waiting := sorted(wanted & set(unanswered)):
         scope.verdict("prohibited", title, NOT_CHECKED, source, missing=f"answers {', '.join(waiting)}")
     elif category in "BC" and "V5b" in present:
-        scope.verdict("prohibited", title, NOT_CHECKED, source, missing="the limits of 12.3.3.2 for type V5b (two stories or 30 ft)")
+        scope.verdict(
+            "prohibited",
+            title,
+            NOT_CHECKED,
+            source,
+            missing="the limits of 12.3.3.2 for type V5b (two stories or 30 ft)",
+        )
     else:
-        scope.verdict("prohibited", title, OK, source, detail=f"design category {category}: none of {', '.join(sorted(wanted)) or 'the types'} present")
+        scope.verdict(
+            "prohibited",
+            title,
+            OK,
+            source,
+            detail=f"design category {category}: none of {', '.join(sorted(wanted)) or 'the types'} present",
+        )
 
 
 def _table_12_6_1(scope: Scope) -> tuple[str, str, str]:
@@ -216,7 +270,11 @@ def _table_12_6_1(scope: Scope) -> tuple[str, str, str]:
     if h_n <= 160 and present <= TOLERATED:
         return OK, f"h_n not above 160 ft, irregularities: {', '.join(sorted(present)) or 'none'}", ""
     if present:
-        return NOT_OK, f"design category {category} with irregularities {', '.join(sorted(present))} and h_n = {h_n:g} ft", ""
+        return (
+            NOT_OK,
+            f"design category {category} with irregularities {', '.join(sorted(present))} and h_n = {h_n:g} ft",
+            "",
+        )
     return _long_period(scope, category, h_n)
 
 

@@ -58,7 +58,13 @@ def summaries(calc: Calc) -> list[Summary]:
     answer = [SummaryRow(label, *_row(parts, (name,))) for label, name in _ANSWER]
     governing = SummaryRow("Governing equation of C_s", *_governing(parts))
     answer.insert([name for _, name in _ANSWER].index("C_s") + 1, governing)
-    common = [("Design category", "SDC"), ("S_DS", "S_DS"), ("S_D1", "S_D1"), ("I_e", "I_e"), ("Effective seismic weight W", "W")]
+    common = [
+        ("Design category", "SDC"),
+        ("S_DS", "S_DS"),
+        ("S_D1", "S_D1"),
+        ("I_e", "I_e"),
+        ("Effective seismic weight W", "W"),
+    ]
     head = [SummaryRow(label, *_row(parts, (name,))) for label, name in common]
     drawings = [SummaryRow(label, *_row(parts, names)) for label, names in _DRAWINGS]
     drawings.append(SummaryRow("Analysis procedure", ["equivalent lateral force"] * len(parts), [""] * len(parts)))
@@ -70,7 +76,9 @@ def summaries(calc: Calc) -> list[Summary]:
 
 
 def _row(parts: list[Scope], names: tuple[str, ...]) -> tuple[list[str], list[str]]:
-    return [", ".join(_shown(part, name) for name in names) for part in parts], [_line(part, names[0]) for part in parts]
+    return [", ".join(_shown(part, name) for name in names) for part in parts], [
+        _line(part, names[0]) for part in parts
+    ]
 
 
 def _line(part: Scope, name: str) -> str:

@@ -2,7 +2,6 @@
 
 from itertools import accumulate
 
-import pytest
 from matplotlib.figure import Figure
 
 from calckit import plots
@@ -50,9 +49,3 @@ DRAWINGS: dict[str, Figure] = {
     **{f"{name}, crowded": figure for name, figure in _all(CROWDED, CROWDED_H).items()},
     **{f"{name}, one level": figure for name, figure in _all(["Roof"], [4.25]).items()},
 }
-
-
-@pytest.fixture(params=DRAWINGS)
-def drawing(request: pytest.FixtureRequest) -> Figure:
-    """Each drawing in turn."""
-    return DRAWINGS[request.param]

@@ -1,0 +1,1 @@
+"""Tests of calckit; the folders mirror the package."""
