@@ -148,8 +148,9 @@ class Book:
 
     def remade(self, entry: Entry) -> None:
         """Put a line worked again with other decimals in place of itself."""
-        old = self.entries[entry.line.id].line
-        entry.line = replace(entry.line, section=old.section, content=old.content)
+        old = self.entries[entry.line.id]
+        kept = {name: getattr(old.line, name) for name in ("section", "content", "source", "candidates", "margin")}
+        entry.line, entry.cell = replace(entry.line, **kept), old.cell
         self.entries[entry.line.id] = entry
 
     def find(self, part: str, name: str) -> Entry | None:

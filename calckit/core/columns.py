@@ -26,41 +26,45 @@ if TYPE_CHECKING:
 
 
 def tabulate(scope: Scope, id_: str, title: str, names: Sequence[str], head: str = "Level") -> Table:
-    """A table of the list lines `names` (written already), their decimals settled."""
+    """A table of the list lines `names` (written already), their decimals settled.
+
+    In the first table that prints a column its decimals are free; a later table may print more, if rounding them gives
+    the first ones. Lines that print entries of a settled column are worked again, so that none prints fewer digits.
+    """
     entries = {entry.line.id: entry for name in names if (entry := scope.find(name))}
-    grids = {id_: _grid(entry) for id_, entry in entries.items()}
-    while failing := _failing(entries, grids):
-        if not any(_finer(entries, grids, id_) for id_ in failing):
-            raise DigitsError(f"table {title!r}: rows do not follow from {digits.MOST_IN_TABLE} printed digits")
     others = [table for table in scope.book.tables.values() if table.id != scope.id_of(id_)]
-    elsewhere = {key for table in others for key in table.lines}
-    for key, places in grids.items():
-        entry = entries[key]
-        if entry.remake and places != entry.decimals and key not in elsewhere:
-            scope.book.remade(entry.remake(places))
+    settled = {key for table in others for key in table.lines} & set(entries)
+    columns = {key: _column(entry, key in settled) for key, entry in entries.items()}
+    grids = {key: column.least for key, column in columns.items()}
+    while failing := _failing(entries, grids):
+        if not any([_finer(columns, grids, key, key in settled) for key in failing]):
+            raise DigitsError(f"table {title!r}: rows do not follow from {digits.MOST_IN_TABLE} printed digits")
+    _coarsen(entries, columns, grids, settled)
+    printed = [columns[key].numerals(places) for key, places in grids.items()]
+    _work_again(scope, {key: places for key, places in grids.items() if key not in settled})
     lines = [entry.line for entry in entries.values()]
-    columns = [Column(line.symbol, line.unit, line.id, line.typeset) for line in lines]
-    printed = [_texts(entries[key], places) for key, places in grids.items()]
+    heads = [Column(line.symbol, line.unit, line.id, line.typeset) for line in lines]
     rows = lines[0].rows
     shown = [[column[i] for column in printed] for i in range(len(rows))]
-    return Table(scope.id_of(id_), scope.id, title, head, columns, list(rows), shown, list(entries))
+    return Table(scope.id_of(id_), scope.id, title, head, heads, list(rows), shown, list(entries))
 
 
-def _grid(entry: Entry) -> int:
+def _column(entry: Entry, settled: bool) -> digits.Operand:
     values = entry.line.value if isinstance(entry.line.value, list) else []
-    exact = [digits.carried(v) for v in values]
-    return entry.decimals if entry.numerals else digits.decimals_for(exact, 4)
+    exact = tuple(digits.carried(v) for v in values)
+    least = entry.decimals if settled or entry.numerals else digits.decimals_for(exact, 4)
+    return digits.Operand(exact, least, entry.numerals)
 
 
-def _texts(entry: Entry, places: int) -> list[str]:
-    if entry.numerals:
-        return list(entry.numerals)
-    values = entry.line.value if isinstance(entry.line.value, list) else []
-    return [digits.numeral(digits.carried(v), places) for v in values]
+def _work_again(scope: Scope, grids: dict[str, int]) -> None:
+    for key, entry in list(scope.book.entries.items()):
+        rests = key in grids or not grids.keys().isdisjoint(entry.line.inputs)
+        if entry.remake and rests and not entry.line.override:
+            scope.book.remade(entry.remake(grids.get(key, entry.decimals)))
 
 
 def _numbers(entry: Entry, places: int) -> list[Decimal]:
-    return [Decimal(text) for text in _texts(entry, places)]
+    return [Decimal(text) for text in _column(entry, settled=False).numerals(places)]
 
 
 def _failing(entries: dict[str, Entry], grids: dict[str, int]) -> list[str]:
@@ -107,13 +111,23 @@ def _last_number(shown: str) -> Decimal:
     return Decimal(found[0]) if found else Decimal(0)
 
 
-def _finer(entries: dict[str, Entry], grids: dict[str, int], id_: str) -> bool:
-    """Print one more digit in a column, or the next number of digits that rounds back to every shorter one."""
-    values = entries[id_].line.value
-    exact = tuple(digits.carried(v) for v in values) if isinstance(values, list) else ()
-    most = digits.decimals_for(exact, digits.MOST_IN_TABLE)
-    column = digits.Operand(exact, digits.decimals_for(exact, 4))
-    finer = [places for places in range(grids[id_] + 1, most + 1) if column.admissible(places)]
+def _finer(columns: dict[str, digits.Operand], grids: dict[str, int], key: str, settled: bool) -> bool:
+    """Print one more digit in a column; in a settled one, the next number of digits that rounds back to the first."""
+    column = columns[key]
+    most = digits.decimals_for(column.values, digits.MOST_IN_TABLE)
+    finer = [places for places in range(grids[key] + 1, most + 1) if not settled or column.admissible(places)]
     if finer:
-        grids[id_] = finer[0]
+        grids[key] = finer[0]
     return bool(finer)
+
+
+def _coarsen(
+    entries: dict[str, Entry], columns: dict[str, digits.Operand], grids: dict[str, int], settled: set[str]
+) -> None:
+    """Take back digits that no row needs."""
+    for key, column in columns.items():
+        for places in range(column.least, grids[key]):
+            admissible = key not in settled or column.admissible(places)
+            if admissible and not _failing(entries, grids | {key: places}):
+                grids[key] = places
+                break

@@ -47,6 +47,16 @@ class Handle:
         return self.line.unit
 
     @property
+    def rows(self) -> list[str]:
+        """The row names of a list, roof first; empty for a single value."""
+        return self.line.rows
+
+    @property
+    def shown(self) -> str | list[str]:
+        """The printed result: with its unit for a single value, the printed entries for a list."""
+        return self.line.shown
+
+    @property
     def quantity(self) -> Quantity:
         """The value with its unit, for a single number."""
         return Quantity(float(self), self.unit)

@@ -143,7 +143,7 @@ def compute(
             decimals=places, symbol=symbol,
         )  # fmt: skip
 
-    return Entry(line, this_cell(), None, places, remake if listed else None)
+    return Entry(line, this_cell(), None, places, remake)
 
 
 def _in_domain(formula: Formula, inputs: Inputs) -> None:

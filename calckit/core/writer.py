@@ -28,7 +28,13 @@ _ID = re.compile(r"[\w.\-]+\Z")
 
 
 class Writer(Scope):
-    """A scope as its user sees it."""
+    """A scope as its user sees it; `scope["F_x"]` reads a line by symbol."""
+
+    def __getitem__(self, name: str) -> Handle:
+        entry = self.find(name)
+        if entry is None:
+            raise UnknownNameError("line", name, self.book.entries)
+        return Handle(self, entry.line.id)
 
     def given(self, name: str, value: Any, source: str = "", *, meaning: str = "", unit: str = "") -> Handle:
         """An input with its source.

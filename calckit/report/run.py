@@ -152,6 +152,7 @@ async def _execute_cells(notebook: Notebook, folder: Path) -> tuple[Any, str, st
         await _start(client, notebook, folder)
         running = [(index, cell) for index, cell in enumerate(notebook.cells) if cell.runs]
         for (index, cell), heading in zip(running, notebook.headings(), strict=True):
+            (folder / "cell").write_text(str(len(replies) + 1))  # versions of IPython count differently inside a cell
             await client.async_execute_cell(node.cells[index], index, execution_count=len(replies) + 1)
             if replies[-1]["status"] != "ok":
                 failure = _failure(cell, len(replies), heading, replies[-1])

@@ -37,7 +37,7 @@ def test_nothing_leaves_the_sheet(drawing: Figure) -> None:
 
 
 def test_size_on_paper(drawing: Figure) -> None:
-    # Letter and A4 sheets with 1 in margins leave 6.5 in and 6.27 in; title block and caption take the rest of the height
+    # Letter and A4 sheets with 1 in margins leave 6.5 in and 6.27 in; the title block and the caption need height too
     width, height = drawing.get_size_inches()
     assert width == 6.5
     assert height <= 7.5

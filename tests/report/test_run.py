@@ -90,6 +90,11 @@ def test_every_cell_runs_once_in_order_and_clean(write_notebook: WriteNotebook) 
     assert outcome.executed.cells[4].outputs == []
 
 
+def test_each_cell_can_read_its_number(write_notebook: WriteNotebook) -> None:
+    path = write_notebook("# Title", KERNEL, "  ", 'keep(cell=(folder / "cell").read_text())', "1")
+    assert kept(run(notebook.read(path), Settings())) == {"cell": "2"}
+
+
 def test_two_runs_give_the_same_executed_notebook(write_notebook: WriteNotebook) -> None:
     source = notebook.read(write_notebook(KERNEL, "1 + 1", "print({'b', 'a', 'c'})"))
     assert run(source, Settings()).executed == run(source, Settings()).executed

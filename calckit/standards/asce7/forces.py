@@ -7,7 +7,6 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from calckit import units
 from calckit.core.formula import Formula
 from calckit.core.handle import Handle
 from calckit.core.record import NOT_CHECKED, Candidate, Flag
@@ -250,11 +249,3 @@ def _amplify(scope: Scope, theta: Handle) -> list[Flag]:
         )
     ]
 
-
-def heights(scope: Scope) -> list[float]:
-    """h_x in the display unit, roof first, for a figure."""
-    entry = scope.find("h_x")
-    if entry is None or not isinstance(entry.line.value, list):
-        raise InputError("asce7", [scope.missing("h_x")])
-    unit = scope.symbol("h_x").unit(scope.system)
-    return [units.convert(value, entry.line.unit, unit) for value in entry.line.value]

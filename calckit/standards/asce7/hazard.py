@@ -23,6 +23,7 @@ if TYPE_CHECKING:
     from calckit.core.scope import Scope
 
 PACKAGE = "calckit.standards.asce7"
+CURVE_POINTS = 200
 MAPPED_ONLY = ("F_a", "F_v", "S_MS", "S_M1")
 EXCEPTIONS = {"exception 1", "exception 2", "exception 3", "S_M1 increased"}
 
@@ -219,14 +220,16 @@ def spectrum_ordinates(scope: Scope, periods: Sequence[float]) -> Handle:
         return handle
 
 
-def spectrum_curve(scope: Scope, periods: Sequence[float]) -> list[float]:
-    """S_a at many periods, for a figure; writes no line."""
+def spectrum_curve(scope: Scope, longest: float) -> tuple[list[float], list[float]]:
+    """Periods up to `longest` with the corners among them, and S_a at each, for a figure; writes no line."""
     names = ("S_DS", "S_D1", "T_0", "T_S", "T_L")
     faults = [scope.missing(name) for name in names if scope.number(name) is None]
     if faults:
         raise InputError("asce7.spectrum_curve", faults)
-    values = {name: scope.number(name) for name in names}
-    return [formulas.S_A.value(values | {"T_r": period}) for period in periods]
+    values = {name: scope.number(name) or 0.0 for name in names}
+    corners = {values[name] for name in ("T_0", "T_S", "T_L") if values[name] <= longest}
+    periods = sorted({0.0, longest, *corners, *(longest * step / CURVE_POINTS for step in range(1, CURVE_POINTS))})
+    return periods, [formulas.S_A.value(values | {"T_r": period}) for period in periods]
 
 
 def design_category(scope: Scope) -> list[Handle]:

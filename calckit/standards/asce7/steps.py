@@ -47,11 +47,11 @@ class Steps:
 
         return hazard.spectrum_ordinates(self._scope, periods)
 
-    def spectrum_curve(self, periods: Sequence[float]) -> list[float]:
-        """S_a at many periods in s, for a figure; writes no line."""
+    def spectrum_curve(self, longest: float) -> tuple[list[float], list[float]]:
+        """Periods in s up to `longest`, the corners among them, and S_a at each, for a figure; writes no line."""
         from calckit.standards.asce7 import hazard
 
-        return hazard.spectrum_curve(self._scope, periods)
+        return hazard.spectrum_curve(self._scope, longest)
 
     def design_category(self) -> list[Handle]:
         """I_e (Table 1.5-2) and the seismic design category (11.6) with its margins, from risk_category."""
@@ -114,10 +114,3 @@ class Steps:
         from calckit.standards.asce7 import forces
 
         return forces.stability(self._scope)
-
-    # for figures
-    def heights(self) -> list[float]:
-        """h_x in the display unit, roof first."""
-        from calckit.standards.asce7 import forces
-
-        return forces.heights(self._scope)

@@ -36,19 +36,23 @@ SUPPLIERS = {
 }
 """What supplies a symbol that is missing."""
 
+_COMMON = (
+    ("Seismic design category", "SDC"), ("Design ordinate, short periods", "S_DS"), ("Design ordinate at 1 s", "S_D1"),
+    ("Importance factor", "I_e"), ("Effective seismic weight", "W"),
+)  # fmt: skip
 _ANSWER = (
-    ("Force-resisting system", "system"), ("R", "R"), ("Omega_0", "Omega_0"), ("C_d", "C_d"),
-    ("System and height permitted", "system_permitted"), ("Static procedure permitted", "procedure"),
-    ("Approximate period T_a", "T_a"), ("Upper limit C_u T_a", "T_max"), ("Period from analysis", "T_analysis"),
-    ("Period for strength T", "T"), ("C_s", "C_s"), ("Base shear V", "V"), ("Exponent k", "k"),
-    ("Redundancy factor rho", "rho"), ("Largest story drift over allowable", "drift"),
-    ("Largest theta over theta_max", "stability"),
+    ("Force-resisting system", "system"), ("Response modification coefficient", "R"), ("Overstrength factor", "Omega_0"),
+    ("Deflection amplification factor", "C_d"), ("System and height permitted", "system_permitted"),
+    ("Equivalent lateral forces permitted", "procedure"), ("Approximate period", "T_a"), ("Upper limit on the period", "T_max"),
+    ("Period from analysis", "T_analysis"), ("Period for strength", "T"), ("Seismic response coefficient", "C_s"),
+    ("Design base shear", "V"), ("Exponent of the distribution", "k"), ("Redundancy factor", "rho"),
+    ("Largest story drift over allowable", "drift"), ("Largest stability coefficient over its maximum", "stability"),
 )  # fmt: skip
 _DRAWINGS = (
-    ("Risk category", ("risk_category",)), ("Importance factor I_e", ("I_e",)), ("Mapped S_S, S_1", ("S_S", "S_1")),
-    ("Site class", ("site_class",)), ("Design S_DS, S_D1", ("S_DS", "S_D1")), ("Seismic design category", ("SDC",)),
-    ("Force-resisting system", ("system",)), ("Design base shear V", ("V",)), ("Response coefficient C_s", ("C_s",)),
-    ("Response modification R", ("R",)),
+    ("Risk category", ("risk_category",)), ("Importance factor", ("I_e",)), ("Mapped ordinates S_S, S_1", ("S_S", "S_1")),
+    ("Site class", ("site_class",)), ("Design ordinates S_DS, S_D1", ("S_DS", "S_D1")),
+    ("Seismic design category", ("SDC",)), ("Force-resisting system", ("system",)), ("Design base shear", ("V",)),
+    ("Seismic response coefficient", ("C_s",)), ("Response modification coefficient", ("R",)),
 )  # fmt: skip
 
 
@@ -56,16 +60,9 @@ def summaries(calc: Calc) -> list[Summary]:
     """The two tables of the first sheets, from the lines as they stand."""
     parts: list[Scope] = [*calc.parts.values()] or [calc]
     answer = [SummaryRow(label, *_row(parts, (name,))) for label, name in _ANSWER]
-    governing = SummaryRow("Governing equation of C_s", *_governing(parts))
+    governing = SummaryRow("Governing equation", *_governing(parts))
     answer.insert([name for _, name in _ANSWER].index("C_s") + 1, governing)
-    common = [
-        ("Design category", "SDC"),
-        ("S_DS", "S_DS"),
-        ("S_D1", "S_D1"),
-        ("I_e", "I_e"),
-        ("Effective seismic weight W", "W"),
-    ]
-    head = [SummaryRow(label, *_row(parts, (name,))) for label, name in common]
+    head = [SummaryRow(label, *_row(parts, (name,))) for label, name in _COMMON]
     drawings = [SummaryRow(label, *_row(parts, names)) for label, names in _DRAWINGS]
     drawings.append(SummaryRow("Analysis procedure", ["equivalent lateral force"] * len(parts), [""] * len(parts)))
     columns = [f"{part.id}: {part.title}" if part.id else "Calculation" for part in parts]

@@ -50,7 +50,7 @@ _GROUND_MOTION = (
     _ordinate("S_D1", "design spectral ordinate at 1 s"),
     _period("T_0", "period at which the flat part of the design spectrum starts"),
     _period("T_S", "period at which the flat part of the design spectrum ends"),
-    _period("T_Sinc", "period at which the flat part of the design spectrum ends, with S_D1 increased by half", sub="S,inc"),
+    _period("T_Sinc", "period at which the flat part ends with S_D1 increased by half", sub="S,inc"),
     _period("T_L", "period at which the long-period part of the design spectrum starts"),
     Symbol("T_r", "period at which the spectrum is read", "time", low=0, high=30),
     Symbol("S_a", "design spectral ordinate at the period T_r, as a fraction of g", low=0, high=5),
@@ -63,6 +63,23 @@ _CATEGORY = (
     Symbol("SDC_D1", "design category by S_D1", "words", choices=_CATEGORIES),
     Symbol("SDC", "seismic design category", "words", choices=_CATEGORIES),
 )
+
+_IRREGULARITIES = (
+    ("H1a", "with accidental torsion, a story drifts at one end more than 1.2 times the average of both ends"),
+    ("H1b", "with accidental torsion, a story drifts at one end more than 1.4 times the average of both ends"),
+    ("H2", "both wings past a re-entrant corner are longer than 15 % of the plan that way"),
+    ("H3", "a diaphragm has more than half its area open, or changes its stiffness by more than half between stories"),
+    ("H4", "an offset out of plane interrupts the path of the lateral forces"),
+    ("H5", "vertical elements of the lateral system do not run parallel to its main axes"),
+    ("V1a", "a story has less than 70 % of the stiffness of the one above, or 80 % of the mean of the three above"),
+    ("V1b", "a story has less than 60 % of the stiffness of the one above, or 70 % of the mean of the three above"),
+    ("V2", "a story has more than 1.5 times the mass of the next one, a lighter roof left out"),
+    ("V3", "the lateral system of a story is more than 1.3 times as wide as in the next one"),
+    ("V4", "an offset in plane puts overturning on the supports below"),
+    ("V5a", "a story has less than 80 % of the lateral strength of the one above"),
+    ("V5b", "a story has less than 65 % of the lateral strength of the one above"),
+)
+"""Horizontal and vertical irregularities of Tables 12.3-1 and 12.3-2, in our own words."""
 
 _STRUCTURE = (
     Symbol("system", "seismic force-resisting system, a row of Table 12.2-1", "words"),
@@ -83,34 +100,11 @@ _STRUCTURE = (
            choices=("analysis", "approximate")),
     _period("T", "period used for strength"),
     _period("T_drift", "period used for drift"),
-    *(
-        _question(name, f"{kind} irregularity, type {number}: {meaning}")
-        for kind, name, number, meaning in (
-            ("horizontal", "H1a", "1a", "with accidental torsion, the story drift at one end is more than 1.2 times the "
-             "average of both ends; diaphragm not flexible"),
-            ("horizontal", "H1b", "1b", "with accidental torsion, the story drift at one end is more than 1.4 times the "
-             "average of both ends; diaphragm not flexible"),
-            ("horizontal", "H2", "2", "both wings past a re-entrant corner are longer than 15 % of the plan that way"),
-            ("horizontal", "H3", "3", "a diaphragm has openings over more than half of its gross area, or its "
-             "stiffness changes by more than half from one story to the next"),
-            ("horizontal", "H4", "4", "the path of the lateral forces is interrupted by an offset out of plane"),
-            ("horizontal", "H5", "5", "vertical elements of the system do not run parallel to its main axes"),
-            ("vertical", "V1a", "1a", "a story is less than 70 % as stiff as the one above, or less than 80 % as stiff as "
-             "the mean of the three above"),
-            ("vertical", "V1b", "1b", "a story is less than 60 % as stiff as the one above, or less than 70 % as stiff as "
-             "the mean of the three above"),
-            ("vertical", "V2", "2", "a story has more than 1.5 times the mass of a story next to it, a lighter roof "
-             "left out of account"),
-            ("vertical", "V3", "3", "the lateral system of a story is more than 1.3 times as wide as in a story next to it"),
-            ("vertical", "V4", "4", "an offset in plane puts overturning on the supports below"),
-            ("vertical", "V5a", "5a", "a story has less than 80 % of the lateral strength of the one above"),
-            ("vertical", "V5b", "5b", "a story has less than 65 % of the lateral strength of the one above"),
-        )
-    ),
+    *(_question(name, f"irregularity {name}: {meaning}") for name, meaning in _IRREGULARITIES),
     Symbol("diaphragm", "how the diaphragms are classed", "words", choices=("flexible", "semirigid", "rigid")),
     _question("torsion", "inherent and accidental torsion are in the forces and displacements used"),
-    _question("weight_contents", "the level weights hold all that 12.7.2 counts: dead load, partitions, equipment, and the "
-              "shares of storage live load, snow and roof planting"),
+    _question("weight_contents", "the level weights hold all that 12.7.2 counts: dead load, partitions, equipment, "
+              "shares of storage live load and snow, roof planting"),
 )  # fmt: skip
 
 _FORCES = (

@@ -150,7 +150,6 @@ def test_system_factors_are_in_range_and_name_a_period_row() -> None:
         row = table("systems").row(key)
         for name in ("R", "Omega_0", "C_d"):
             assert SYMBOLS[name].fault(float(row[name]), "") is None, (key, name)
-        assert float(row["C_d"]) <= float(row["R"]), key
         assert row["period"] in table("C_t").rows, key
 
 
@@ -208,5 +207,6 @@ def test_band_takes_its_lower_bound() -> None:
 
 
 def test_unknown_system_lists_near_rows() -> None:
-    with pytest.raises(UnknownNameError, match=r"'moment frame: steel special' is not known; known: moment frame: steel"):
+    with pytest.raises(UnknownNameError, match=r"row 'moment frame: steel special' is not known") as caught:
         table("systems").row("moment frame: steel special")
+    assert "moment frame: steel special moment frame" in caught.value.known[:4]
