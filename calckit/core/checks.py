@@ -15,7 +15,7 @@ from importlib import resources
 from typing import Any
 
 from calckit.core.record import NOT_OK, OK
-from calckit.errors import CalckitError, UnknownNameError
+from calckit.errors import CalckitError, MismatchError, UnknownNameError
 
 STANDARDS = "calckit.standards"
 KINDS = {"found": "published, found", "memory": "published, from memory", "constructed": "constructed, not published"}
@@ -53,6 +53,14 @@ class Row:
     obtained: str
     tolerance: str
     verdict: str
+
+
+@dataclass(frozen=True)
+class Outcome:
+    """The rows of one check; `refusal` is the error if the kit refused its inputs."""
+
+    rows: list[Row]
+    refusal: str = ""
 
 
 def report(name: str | None = None) -> tuple[str, bool]:
@@ -96,15 +104,15 @@ def read(text: str) -> list[Check]:
     ]  # fmt: skip
 
 
-def run(check: Check, adapter: Adapter) -> list[Row]:
+def run(check: Check, adapter: Adapter) -> Outcome:
     """A row for each expectation of a check that is reached; a refusal of the kit makes every row NOT OK."""
     wanted = {name: pair for name, pair in check.expect.items() if name not in check.not_reached}
     try:
         results = adapter(check.given)
     except CalckitError as error:
-        message = f"the kit refused: {error}"
-        return [Row(name, _shown(value), message, _allowed(t), NOT_OK) for name, (value, t) in wanted.items()]
-    return [_compared(name, value, t, results.get(name), check.given) for name, (value, t) in wanted.items()]
+        rows = [Row(name, _shown(value), "nothing", _allowed(t), NOT_OK) for name, (value, t) in wanted.items()]
+        return Outcome(rows, str(error))
+    return Outcome([_compared(name, value, t, results.get(name), check.given) for name, (value, t) in wanted.items()])
 
 
 def _compared(name: str, expected: Any, tolerance: float | str, given: Any, inputs: Mapping[str, Any]) -> Row:
@@ -150,29 +158,34 @@ def _report(name: str) -> tuple[str, bool]:
     checks = read((resources.files(package) / "checks.toml").read_text(encoding="utf-8"))
     adapters: Mapping[str, Adapter] = importlib.import_module(f"{package}.verify").ADAPTERS
     reached = [check for check in checks if not check.reason]
-    results = {check.id: run(check, adapters[check.id]) for check in reached}
-    lines = [line for check in reached for line in (*_block(check, results[check.id]), "")]
-    lines += [*_counts(checks, results), "", *_left_out(checks)]
-    return "\n".join(lines), all(row.verdict == OK for rows in results.values() for row in rows)
+    unmatched = sorted({check.id for check in reached} ^ adapters.keys())
+    if unmatched:
+        raise MismatchError(f"checks of {name}: {', '.join(unmatched)} stand in checks.toml or in verify.py alone")
+    outcomes = {check.id: run(check, adapters[check.id]) for check in reached}
+    lines = [line for check in reached for line in (*_block(check, outcomes[check.id]), "")]
+    lines += [*_counts(checks, outcomes), "", *_left_out(checks)]
+    return "\n".join(lines), all(row.verdict == OK for outcome in outcomes.values() for row in outcome.rows)
 
 
-def _block(check: Check, rows: Sequence[Row]) -> Iterator[str]:
+def _block(check: Check, outcome: Outcome) -> Iterator[str]:
     yield f"{check.id}  ({check.obtained}; {check.edition})"
     yield f"  source: {check.source}"
+    if outcome.refusal:
+        yield f"  the kit refused: {outcome.refusal}"
     head = Row("quantity", "expected", "obtained", "tolerance", "verdict")
-    cells = [(r.quantity, r.expected, r.obtained, r.tolerance, r.verdict) for r in (head, *rows)]
+    cells = [(r.quantity, r.expected, r.obtained, r.tolerance, r.verdict) for r in (head, *outcome.rows)]
     widths = [max(len(row[i]) for row in cells) for i in range(5)]
     for row in cells:
         yield "  " + "  ".join(text.ljust(width) for text, width in zip(row, widths, strict=True)).rstrip()
 
 
-def _counts(checks: Sequence[Check], results: Mapping[str, Sequence[Row]]) -> Iterator[str]:
+def _counts(checks: Sequence[Check], outcomes: Mapping[str, Outcome]) -> Iterator[str]:
     for kind in KINDS.values():
         of_kind = [check for check in checks if check.kind == kind]
-        rows = [row for check in of_kind for row in results.get(check.id, ())]
+        ran = [outcomes[check.id] for check in of_kind if check.id in outcomes]
+        rows = [row for outcome in ran for row in outcome.rows]
         agreeing = sum(row.verdict == OK for row in rows)
-        run_count = sum(check.id in results for check in of_kind)
-        yield f"{kind}: {run_count} of {len(of_kind)} checks run, {agreeing} of {len(rows)} values agree"
+        yield f"{kind}: {len(ran)} of {len(of_kind)} checks run, {agreeing} of {len(rows)} values agree"
 
 
 def _left_out(checks: Sequence[Check]) -> Iterator[str]:

@@ -40,7 +40,7 @@ def tabulate(scope: Scope, id_: str, title: str, names: Sequence[str], head: str
         if not any([_finer(columns, grids, key, key in settled) for key in failing]):
             raise DigitsError(f"table {title!r}: rows do not follow from {digits.MOST_IN_TABLE} printed digits")
     _coarsen(entries, columns, grids, settled)
-    printed = [columns[key].numerals(places) for key, places in grids.items()]
+    printed = [columns[key].column(places) for key, places in grids.items()]
     _work_again(scope, {key: places for key, places in grids.items() if key not in settled})
     lines = [entry.line for entry in entries.values()]
     heads = [Column(line.symbol, line.unit, line.id, line.typeset) for line in lines]
@@ -64,7 +64,7 @@ def _work_again(scope: Scope, grids: dict[str, int]) -> None:
 
 
 def _numbers(entry: Entry, places: int) -> list[Decimal]:
-    return [Decimal(text) for text in _column(entry, settled=False).numerals(places)]
+    return [Decimal(text) for text in _column(entry, settled=False).column(places)]
 
 
 def _failing(entries: dict[str, Entry], grids: dict[str, int]) -> list[str]:

@@ -75,22 +75,29 @@ class Operand:
         object.__setattr__(self, "most", max(self.least, decimals_for(self.values, MOST)))
 
     def numerals(self, decimals: int) -> tuple[str, ...]:
-        """The printed numerals at this number of decimals."""
+        """The printed numerals at this number of decimals; an entry that would not round back prints more."""
+        return self.typed or tuple(numeral(value, self._honest(value, decimals)) for value in self.values)
+
+    def column(self, decimals: int) -> tuple[str, ...]:
+        """The printed numerals of a table column: every entry at the same number of decimals."""
         return self.typed or tuple(numeral(value, decimals) for value in self.values)
 
-    def admissible(self, decimals: int) -> bool:
-        """Whether rounding these printed digits gives every shorter form of the same values."""
-        return all(
-            numeral(Decimal(numeral(value, decimals)), fewer) == numeral(value, fewer)
-            for value in self.values
-            for fewer in range(self.least, decimals)
-        )
+    def _honest(self, value: Decimal, decimals: int) -> int:
+        most = max(decimals, decimals_for([value], MOST))
+        return next((d for d in range(decimals, most + 1) if _rounds_back(value, self.least, d)), most)
 
-    def choices(self) -> list[int]:
+    def admissible(self, decimals: int) -> bool:
+        """Whether rounding these printed digits gives every shorter form of all the values."""
+        return all(_rounds_back(value, self.least, decimals) for value in self.values)
+
+    def choices(self) -> range:
         """The numbers of decimals that may be printed, fewest first."""
-        if self.typed:
-            return [self.least]
-        return [d for d in range(self.least, self.most + 1) if self.admissible(d)]
+        return range(self.least, self.least + 1 if self.typed else self.most + 1)
+
+
+def _rounds_back(value: Decimal, least: int, decimals: int) -> bool:
+    printed = Decimal(numeral(value, decimals))
+    return all(numeral(printed, fewer) == numeral(value, fewer) for fewer in range(least, decimals))
 
 
 def fewest(

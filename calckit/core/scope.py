@@ -146,7 +146,8 @@ class Scope:
         line.shown = f"{reading.numeral or reading.value} {units.shown(reading.unit)}".rstrip()
         line.override = Override(line.value, line.shown, reason, by, document)
         entry.numerals = (reading.numeral,) if reading.numeral else None
-        line.flags.append(Flag(f"{line.id} overridden: {line.shown} in place of {line.computed.shown}; {reason}"))
+        text = f"{line.id} overridden: {line.shown} in place of {line.computed.shown}{_change(line)}; {reason}"
+        line.flags.append(Flag(text))
 
     def _read(self, symbol: Symbol, raw: Any, set_key: str | None = None) -> Reading | None:
         """A reading; a bad set value is noted and gives None, any other bad value raises."""
@@ -271,3 +272,11 @@ class Scope:
         if not name.startswith("_") and name == self.calc.standard.family:
             return self.calc.standard.steps(self)
         raise AttributeError(f"{type(self).__name__} has no attribute {name!r}")
+
+
+def _change(line: Line) -> str:
+    """How far the value in force is from the kit's own, in percent."""
+    own = line.computed.value if line.computed else None
+    if not isinstance(own, float) or not isinstance(line.value, float) or own == 0 or not line.computed:
+        return ""
+    return f" ({(units.convert(line.value, line.unit, line.computed.unit) / own - 1) * 100:+.2f} %)"
