@@ -13,7 +13,7 @@ from dataclasses import dataclass, field, replace
 from typing import Any
 
 from calckit.core.record import Figure, Line, Table, canonical, digest
-from calckit.core.settings import Settings
+from calckit.core.settings import Settings, current
 from calckit.errors import DuplicateError
 
 
@@ -38,15 +38,31 @@ class Entry:
     numerals: tuple[str, ...] | None = None
     decimals: int = 0
     remake: Callable[[int], Entry] | None = None
+    remade: dict[int, Entry] = field(default_factory=dict)
+
+
+_runs: list[str] = []
 
 
 def this_cell() -> Cell:
-    """The cell that is running; outside a notebook the whole script counts as one run."""
+    """The cell that is running; outside a notebook the whole script counts as one run.
+
+    In a clean run the issuing process says which cell it is; in a live session runs are told apart by the message that
+    asked for them, and cells by the id that the notebook sends along.
+    """
     shell = _shell()
     if shell is None:
         return Cell("script", 0)
-    metadata = shell.get_parent().get("metadata", {}) if hasattr(shell, "get_parent") else {}
-    return Cell(metadata.get("cellId") or f"run {shell.execution_count}", shell.execution_count)
+    folder = current().folder
+    marker = folder / "cell" if folder else None
+    if marker and marker.is_file():
+        number = int(marker.read_text(encoding="ascii"))
+        return Cell(f"cell {number}", number)
+    request = shell.get_parent()
+    message = request.get("header", {}).get("msg_id", "")
+    if not _runs or _runs[-1] != message:
+        _runs.append(message)
+    return Cell(request.get("metadata", {}).get("cellId") or f"run {len(_runs)}", len(_runs))
 
 
 def _shell() -> Any:

@@ -9,6 +9,7 @@ from __future__ import annotations
 import re
 from collections.abc import Sequence
 from decimal import Decimal
+from fractions import Fraction
 from functools import partial
 from typing import TYPE_CHECKING, Any
 
@@ -37,7 +38,8 @@ def tabulate(scope: Scope, id_: str, title: str, names: Sequence[str], head: str
     columns = {key: _column(entry, key in settled) for key, entry in entries.items()}
     grids = {key: column.least for key, column in columns.items()}
     while failing := _failing(entries, grids):
-        if not any([_finer(columns, grids, key, key in settled) for key in failing]):
+        finer = [_finer(columns, grids, key, key in settled) for key in failing]
+        if not any(finer):
             raise DigitsError(f"table {title!r}: rows do not follow from {digits.MOST_IN_TABLE} printed digits")
     _coarsen(entries, columns, grids, settled)
     printed = [columns[key].column(places) for key, places in grids.items()]
@@ -71,7 +73,7 @@ def _failing(entries: dict[str, Entry], grids: dict[str, int]) -> list[str]:
     """Columns that a row which does not follow rests on."""
     wanting: list[str] = []
     for id_, entry in entries.items():
-        values = _printed_operands(entry, entries, grids)
+        values = _printed_operands(_at(entry, grids[id_]), entries, grids)
         if values is None:
             continue
         line = entry.line
@@ -83,6 +85,15 @@ def _failing(entries: dict[str, Entry], grids: dict[str, int]) -> list[str]:
                 wanting += [key for key in line.inputs if key in entries and not entries[key].numerals]
                 break
     return wanting
+
+
+def _at(entry: Entry, places: int) -> Entry:
+    """The line as it prints with this number of decimals, its single operands with as many digits as that takes."""
+    if entry.remake is None or places == entry.decimals:
+        return entry
+    if places not in entry.remade:
+        entry.remade[places] = entry.remake(places)
+    return entry.remade[places]
 
 
 def _printed_operands(entry: Entry, entries: dict[str, Entry], grids: dict[str, int]) -> dict[str, Any] | None:
@@ -100,9 +111,12 @@ def _printed_operands(entry: Entry, entries: dict[str, Entry], grids: dict[str, 
             return None
         else:
             ratio = units.factor(entries[key].line.unit, operand.unit)
-            numbers = _numbers(entries[key], grids[key])
-            values[name] = [in_decimals(lambda n=n: n * ratio.numerator / ratio.denominator) for n in numbers]  # type: ignore[misc]
+            values[name] = [_times(number, ratio) for number in _numbers(entries[key], grids[key])]
     return values
+
+
+def _times(number: Decimal, ratio: Fraction) -> Decimal:
+    return in_decimals(lambda: number * ratio.numerator / ratio.denominator)
 
 
 def _last_number(shown: str) -> Decimal:

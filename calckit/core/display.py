@@ -63,11 +63,11 @@ def plain(line: Line) -> str:
 
 
 def _shown(line: Line) -> str:
-    if isinstance(line.shown, list):
-        return (
-            f"{line.shown[line.rows.index(line.row)]} {units.shown(line.unit)}".rstrip() + f" at {line.row}" if line.row else ", ".join(line.shown)
-        )
-    return line.shown
+    if not isinstance(line.shown, list):
+        return line.shown
+    if not line.row:
+        return ", ".join(line.shown)
+    return f"{line.shown[line.rows.index(line.row)]} {units.shown(line.unit)}".rstrip() + f" at {line.row}"
 
 
 def _tail(line: Line) -> list[str]:
@@ -126,8 +126,8 @@ def _escaped(text: str) -> str:
 
 
 def _grid(table: Table) -> tuple[list[str], list[list[str]]]:
-    head = [table.head, *(f"{c.typeset['plain']} [{units.shown(c.unit)}]" if c.unit else c.typeset["plain"] for c in table.columns)]
-    return head, [[name, *cells] for name, cells in zip(table.rows, table.shown, strict=True)]
+    heads = [f"{c.typeset['plain']} [{units.shown(c.unit)}]" if c.unit else c.typeset["plain"] for c in table.columns]
+    return [table.head, *heads], [[name, *cells] for name, cells in zip(table.rows, table.shown, strict=True)]
 
 
 def _plain_table(table: Table) -> str:

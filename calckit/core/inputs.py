@@ -15,6 +15,7 @@ from calckit.core.symbol import KINDS, Symbol, check_name
 from calckit.errors import Fault, UnitError, nearest_first
 
 NONE = "none"
+_SAMPLES = {"length": "62", "displacement": "1.5", "time": "0.8", "force": "450"}
 
 
 @dataclass(frozen=True)
@@ -102,7 +103,7 @@ def _needed(symbol: Symbol, system: str) -> str:
 
 def _example(symbol: Symbol, system: str) -> str:
     unit = symbol.unit(system)
-    return f'"62 {unit}"' if unit else "1.25"
+    return f'"{_SAMPLES.get(symbol.kind, "10")} {unit}"' if unit else "1.25"
 
 
 def _fault(symbol: Symbol, needed: str, given: str, cure: str) -> Fault:

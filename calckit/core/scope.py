@@ -39,9 +39,8 @@ class Scope:
     def book(self) -> Book:
         """The lines; refuses if the calculation has been started afresh."""
         if self.calc.superseded:
-            raise StaleObjectError(
-                f"this object belongs to a calculation that was started afresh; run again the cell that makes {self._maker()}"
-            )
+            afresh = "this object belongs to a calculation that was started afresh"
+            raise StaleObjectError(f"{afresh}; run again the cell that makes {self._maker()}")
         return self.calc.lines
 
     def _maker(self) -> str:
@@ -200,10 +199,11 @@ class Scope:
         flags: Sequence[Flag] = (), meaning: str = "", owner: str = "",
     ) -> Entry:  # fmt: skip
         shown = f"{reading.numeral or reading.value} {units.shown(reading.unit)}".rstrip()
+        shown = f"{reading.value}: {reading.text}" if reading.text else shown
         line = Line(
             self.id_of(symbol.name), kind, symbol.name, meaning or symbol.meaning, reading.value, reading.unit, shown,
             part=self.id, typeset=self.typeset(symbol) if symbol.kind != "words" else {}, source=source,
-            text=reading.text or text, detail=detail, flags=list(flags), owner=owner,
+            text=text, detail=detail, flags=list(flags), owner=owner,
         )  # fmt: skip
         places = len(reading.numeral.partition(".")[2])
         return Entry(line, this_cell(), (reading.numeral,) if reading.numeral else None, places)

@@ -9,6 +9,7 @@ import math
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field
 from decimal import Decimal
+from functools import partial
 from typing import TYPE_CHECKING, Any
 
 from calckit import units
@@ -122,7 +123,12 @@ def compute(
     places = digits.decimals_for(values, symbol.digits) if decimals is None else decimals
     worked = _worked_row(formula, inputs.rows, values, row) if listed else None
     target = digits.numeral(values[worked or 0], places)
-    printed = _printed(formula, inputs, worked, lambda result: digits.numeral(digits.carried(result), places) == target)
+    half = Decimal(5).scaleb(-places - 1)
+
+    def gives_target(result: Decimal) -> bool:
+        return digits.numeral(digits.carried(result), places) == target
+
+    printed = _printed(formula, inputs, worked, gives_target, values if listed else (), half)
     if printed is None:
         raise DigitsError(f"{formula.result} = {formula.text}: 10 printed digits do not give {target}")
     shown = [digits.numeral(v, places) for v in values]
@@ -197,9 +203,17 @@ def _worked_row(formula: Formula, rows: Sequence[str], values: Sequence[Decimal]
 
 
 def _printed(
-    formula: Formula, inputs: Inputs, row: int | None, accept: Callable[[Any], bool]
+    formula: Formula,
+    inputs: Inputs,
+    row: int | None,
+    accept: Callable[[Any], bool],
+    results: Sequence[Decimal] = (),
+    half: Decimal = Decimal(0),
 ) -> dict[str, tuple[str, ...]] | None:
-    """The numerals of every operand with which decimal arithmetic gives what `accept` takes."""
+    """The numerals of every operand with which decimal arithmetic gives what `accept` takes.
+
+    `results` are the values of all rows, which the printed single operands must give within `half` a unit.
+    """
     whole = any(word in formula.text for word in ("total(", "above(", "below(", "level("))
     narrowed = dict(inputs.operands)
     if row is not None and not whole:
@@ -216,7 +230,19 @@ def _printed(
             for name in numbers
         }
         env = formula.env(values, DECIMALS, inputs.rows, row)
-        return accept(in_decimals(lambda: formula.node.value(env)))
+        return accept(in_decimals(lambda: formula.node.value(env))) and others(numbers)
+
+    def others(numbers: Mapping[str, Sequence[Decimal]]) -> bool:
+        """Whether the printed single operands serve the rows that are not worked in full, to half a unit."""
+        exact = {
+            name: list(operand.values) if inputs.listed(name) else numbers[name][0]
+            for name, operand in inputs.operands.items()
+        }
+        return all(
+            abs(in_decimals(partial(formula.node.value, formula.env(exact, DECIMALS, inputs.rows, i))) - value) <= half
+            for i, value in enumerate(results)
+            if i != row
+        )
 
     found = digits.fewest(narrowed, tried)
     if found is not None and row is not None and not whole:
@@ -330,7 +356,7 @@ def check(scope: Scope, id_: str, relation: Formula, *, title: str, flags: Seque
         rows=list(inputs.rows) if listed else [], row=inputs.rows[worst] if listed else "", formula=relation.text,
         inputs=_recorded(inputs, printed), forms=forms, source=relation.source,
         detail="; ".join(part for part in (over, _conversions(scope, inputs, printed)) if part), verdict=verdict,
-        flags=[*flags, *([Flag(f"{title}: {over or 'not met'}", open=True, owner="originator")] if verdict == NOT_OK else [])],
+        flags=list(flags) if verdict == OK else [*flags, Flag(f"{title}: {over or 'not met'}", True, "originator")],
     )  # fmt: skip
     return Entry(line, this_cell())
 
@@ -376,8 +402,9 @@ def _reversed(
 
 def not_checked(scope: Scope, id_: str, title: str, missing: str, source: Any, formula: str | None = None) -> Entry:
     """A check that could not be made, with what it is waiting for."""
+    flag = Flag(f"{title}: NOT CHECKED, missing {missing}", True, "originator")
     line = Line(
         scope.id_of(id_), "check", "", title, None, "", "", part=scope.id, formula=formula, source=source,
-        verdict=NOT_CHECKED, missing=missing, flags=[Flag(f"{title}: NOT CHECKED, missing {missing}", True, "originator")],
+        verdict=NOT_CHECKED, missing=missing, flags=[flag],
     )  # fmt: skip
     return Entry(line, this_cell())

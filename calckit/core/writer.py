@@ -24,6 +24,7 @@ from calckit.core.scope import OPEN_ANSWER, Scope
 from calckit.core.symbol import Symbol
 from calckit.errors import CalckitError, Fault, InputError, UnknownNameError
 
+NO_MODEL = "none: no model yet"
 _ID = re.compile(r"[\w.\-]+\Z")
 
 
@@ -296,7 +297,7 @@ class Writer(Scope):
         return data
 
     def analysis(
-        self, *, document: str = "", run_date: str = "", V_applied: Any = "none: no model yet", W_model: Any = "none: no model yet",  # noqa: N803
+        self, *, document: str = "", run_date: str = "", V_applied: Any = NO_MODEL, W_model: Any = NO_MODEL,  # noqa: N803
         with_P_delta: str = "", base: str = "", stiffness: str = "", diaphragm: str = "",  # noqa: N803
     ) -> list[Handle]:  # fmt: skip
         """The model that displacements and T_analysis of this part come from: document, date, shear applied, weight."""

@@ -11,6 +11,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from datetime import UTC, date, datetime
 from pathlib import Path
+from typing import Literal
 
 from calckit.core.record import (
     NOT_CHECKED,
@@ -26,7 +27,9 @@ from calckit.errors import CommandError, MismatchError, NotebookError
 from calckit.report import html, pdf, seal, view
 from calckit.report.attachments import Parcel, inputs_hash
 from calckit.report.files import replace_together, report_name
+from calckit.report.model import Block, Content
 from calckit.report.notebook import Notebook
+from calckit.report.prose import blocks
 from calckit.report.recheck import RECORD_ENDING, kind_of, record_of, title
 from calckit.report.run import Outcome, Problem, Settings, run
 
@@ -110,7 +113,7 @@ def produce(notebook: Notebook, settings: Settings, formats: Sequence[str] = FOR
     record.lines_hash = lines_hash(record.lines)
     record.seals = None
     parcel = Parcel(notebook.stem, notebook.bare(), given, outcome.files, record.to_json().encode())
-    model = view.build(record, notebook)
+    model = view.build(record, _content(notebook, record))
     attached = parcel.pack()
     files: dict[str, bytes] = {}
     if "html" in formats:
@@ -158,6 +161,20 @@ def account(record: Record) -> list[str]:
     lines += [f"  {item.text}" + (f" ({item.owner})" if item.owner else "") for item in still_open]
     lines.append(f"{TO_BE_CONFIRMED}: {len(confirm) or 'none'}")
     return lines
+
+
+def _content(notebook: Notebook, record: Record) -> Content:
+    """The notebook in order: the text of Markdown cells, and where each code cell wrote its lines."""
+    content: list[tuple[Literal["prose"], Sequence[Block]] | tuple[Literal["cell"], int]] = []
+    place = 0
+    for cell in notebook.cells:
+        if cell.kind == "markdown":
+            content.append(("prose", blocks(cell.text)))
+        elif cell.runs:
+            if place < len(record.cells):
+                content.append(("cell", place))
+            place += 1
+    return content
 
 
 def _check(line: Line) -> str:

@@ -163,8 +163,8 @@ def shown(unit: str) -> str:
 def coherent(unit: str, force: str, length: str, time: str = "s") -> str:
     """The unit of the same kind built only from `force`, `length` and `time`.
 
-    >>> coherent("kN*m", "kip", "ft"), coherent("in", "kip", "ft"), coherent("psf", "kip", "ft"), coherent("kg", "kip", "in")
-    ('kip*ft', 'ft', 'kip/ft**2', 'kip*s**2/in')
+    >>> [coherent(unit, "kip", "ft") for unit in ("kN*m", "in", "psf")], coherent("kg", "kip", "in")
+    (['kip*ft', 'ft', 'kip/ft**2'], 'kip*s**2/in')
     """
     mass, distance, duration = powers(unit)
     found = {force: mass, length: distance - mass, time: duration + 2 * mass}

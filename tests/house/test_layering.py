@@ -1,5 +1,6 @@
 """Who may import whom. The table is the one in DEVELOPERS.md."""
 
+import ast
 import subprocess
 import sys
 
@@ -123,10 +124,25 @@ def test_families_of_standards_do_not_know_each_other() -> None:
         ("calckit.report.issue", {"sympy", "nbconvert", "matplotlib"}),
         ("calckit.report.recheck", {"sympy", "nbconvert", "matplotlib"}),
         ("calckit.report.exporters", {"sympy", "typst", "matplotlib"}),
-        ("calckit.plots", {"sympy", "pint", "matplotlib.pyplot"}),
+        ("calckit.plots", {"sympy", "pint", "numpy", "matplotlib"}),
     ],
 )
 def test_importing_stays_light(module: str, absent: set[str]) -> None:
     code = f"import sys, {module}; print(*sorted(set({sorted(absent)!r}) & set(sys.modules)))"
     run = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True, cwd=source.ROOT)
     assert run.stdout.split() == []
+
+
+BY_NAME = {"calckit.core.standard", "calckit.core.checks"}
+"""Modules that find standards by name, so that none has to be registered."""
+
+
+def test_only_the_finders_import_by_name() -> None:
+    found = {
+        name
+        for name, tree in source.modules().items()
+        for node in ast.walk(tree)
+        if isinstance(node, ast.Attribute | ast.Name)
+        and (node.attr if isinstance(node, ast.Attribute) else node.id) in {"import_module", "__import__"}
+    }
+    assert found <= BY_NAME

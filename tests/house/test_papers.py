@@ -62,10 +62,9 @@ def commands() -> Iterator[tuple[str, list[str]]]:
                 yield name, [each.option_strings[0] if each.option_strings else str(each.metavar) for each in own]
 
 
-@pytest.mark.parametrize(("name", "words"), commands())
+@pytest.mark.parametrize(("name", "words"), list(commands()))
 def test_commands_are_described(name: str, words: list[str]) -> None:
     (row,) = re.findall(rf"^\| `calckit {name}\b(.*?)`", DEVELOPERS, re.MULTILINE)
-    assert sorted(re.findall(r"--\w+|(?<= )\[?[A-Z]+(?=\b)(?!=)", row)) or name
     described = set(re.findall(r"--\w+", row)) | set(re.findall(r"\b[A-Z]{4,}\b", re.sub(r"--\w+ \S+", "", row)))
     assert described == set(words)
     assert f"calckit {name}" in README

@@ -124,3 +124,11 @@ def test_of_many_levels_some_are_labeled_and_it_says_so() -> None:
     assert {"L60", "L1"} <= set(named)
     assert f"{len(named)} of 60 levels are labeled." in words
     assert len([line for line in figure.findobj(Line2D) if line.get_linewidth() == 1.7]) == 60
+
+
+def test_a_drawing_of_the_users_own_is_saved_the_same_way() -> None:
+    figure = plots.Drawing(figsize=(3, 2))
+    figure.add_subplot().plot([0, 1], [0, 1])
+    assert figure._repr_svg_() == plots.svg_bytes(figure).decode()
+    assert figure._repr_png_() == plots.png_bytes(figure, 100)
+    assert "<dc:date>" not in figure._repr_svg_()

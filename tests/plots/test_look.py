@@ -74,9 +74,19 @@ def test_png_is_the_same_each_time(drawing: Figure) -> None:
 
 
 def test_no_picture_window_is_opened() -> None:
-    code = "import sys; import calckit.plots; print('matplotlib.pyplot' in sys.modules)"
+    code = (
+        "import sys; from calckit import plots; plots.svg_bytes(plots.design_spectrum([0, 1], [1, 1]));"
+        "print('matplotlib' in sys.modules, 'matplotlib.pyplot' in sys.modules)"
+    )
     run = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
-    assert run.stdout == "False\n"
+    assert run.stdout == "True False\n"
+
+
+def test_what_is_not_there_is_said_so() -> None:
+    assert set(dir(plots)) == set(plots.__all__)
+    assert all(getattr(plots, name).__name__ == name for name in plots.__all__)
+    with pytest.raises(AttributeError, match=r"module 'calckit\.plots' has no attribute 'bar_chart'"):
+        _ = plots.bar_chart
 
 
 @given(st.lists(st.floats(0.5, 400), min_size=1, max_size=50, unique_by=lambda h: round(h, 1)))

@@ -66,7 +66,7 @@ def _governing(scope: Scope) -> Handle:
         and (scope.number("T", "s") or 0) > (scope.number("T_S", "s") or 0)
     ):
         raise ScopeError(
-            f"{scope.id_of('C_s')}: exception 3 of 11.4.8 holds for T not above T_S only; a ground motion hazard analysis is needed"
+            f"{scope.id_of('C_s')}: exception 3 of 11.4.8 holds for T not above T_S only; a hazard analysis is needed"
         )
     plain = f"max(min(C_sbasic, C_scap), {_floors(scope)})"
     increased = (
@@ -79,7 +79,7 @@ def _governing(scope: Scope) -> Handle:
             detail="11.4.8 with the 50 % increase",
         )
         flag = Flag(
-            f"{scope.id_of('C_s')}: the larger of both readings of 11.4.8 is used until supplements and exception are answered"
+            f"{scope.id_of('C_s')}: the larger of both readings of 11.4.8 is used until it is answered"
         )
         text, flags = "max(C_swithout, C_swith)", [flag]
     else:
@@ -131,7 +131,8 @@ def _against_computed(scope: Scope, C_s: Handle) -> str:
         return ""
     change = (float(C_s) / line.computed.value - 1) * 100
     computed = line.computed.value * W
-    return f"with the computed C_s = {line.computed.shown}, V would be {computed:.1f}; the value in force gives {change:+.2f} %"
+    would = f"with the computed C_s = {line.computed.shown}, V would be {computed:.1f}"
+    return f"{would}; the value in force gives {change:+.2f} %"
 
 
 def vertical_distribution(scope: Scope) -> Handle:

@@ -24,6 +24,7 @@ if TYPE_CHECKING:
 
 PACKAGE = "calckit.standards.asce7"
 CURVE_POINTS = 200
+NOT_NEEDED = "not needed"
 MAPPED_ONLY = ("F_a", "F_v", "S_MS", "S_M1")
 EXCEPTIONS = {"exception 1", "exception 2", "exception 3", "S_M1 increased"}
 
@@ -68,7 +69,7 @@ def study(scope: Scope) -> Hazard:
         )
     if not triggered or letter == "E":
         return Hazard(tuple(triggered), "plain")
-    if supplements is None or exception is None:
+    if supplements is None or exception in (None, NOT_NEEDED):
         return Hazard(tuple(triggered), "both")
     wanted = "S_M1 increased" if 3 in supplements else "exception 2"
     if exception != wanted:
@@ -111,11 +112,11 @@ def _study_flags(scope: Scope, hazard: Hazard) -> list[Flag]:
     why = "; ".join(hazard.triggered)
     source = scope.calc.title_block["supplements_source"]
     if hazard.reading == "both":
-        text = f"11.4.8 asks for a ground motion hazard analysis ({why}): supplements in force and exception taken are not answered"
+        text = f"11.4.8 asks for a hazard analysis ({why}): supplements in force and exception taken are not answered"
         return [Flag(text, True, "engineer of record")]
     flags = [
         Flag(
-            f"11.4.8 ({why}): {scope.word('study_exception') or 'exception'} taken in place of a ground motion hazard analysis"
+            f"11.4.8 ({why}): {scope.word('study_exception')} taken in place of a hazard analysis"
         )
     ]
     if not source.strip():
@@ -153,7 +154,8 @@ def _F_a_of_class_E(scope: Scope, S_S: float, flags: Sequence[Flag]) -> Handle:
         )
     if scope.word("study_exception") != "exception 1":
         raise ScopeError(
-            'site class E with S_S not less than 1.0: 11.4.8 asks for a study; answer study_exception "exception 1" to take F_a as for class C'
+            "site class E with S_S not less than 1.0: 11.4.8 asks for a study; "
+            'answer study_exception "exception 1" to take F_a as for class C'
         )
     found = load(PACKAGE, "F_a").along("C", "S_S", S_S)
     return scope.look_up("F_a", found, [*flags, Flag("F_a taken as for class C by exception 1 of 11.4.8")])
@@ -172,7 +174,8 @@ def _F_v(scope: Scope, letter: str, hazard: Hazard) -> Handle:
             raise ScopeError(f"site class E with S_1 above 0.1, supplements {state}: F_v is undefined (11.4.8)")
         if S_1 >= 0.2 and scope.word("study_exception") != "exception 3":
             raise ScopeError(
-                'site class E with S_1 not less than 0.2: 11.4.8 asks for a study; answer study_exception "exception 3" if T is not above T_S'
+                "site class E with S_1 not less than 0.2: 11.4.8 asks for a study; "
+                'answer study_exception "exception 3" if T is not above T_S'
             )
         row = "E, Supplement 1"
     return scope.look_up("F_v", load(PACKAGE, "F_v").along(row, "S_1", S_1))

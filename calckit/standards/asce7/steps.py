@@ -22,7 +22,7 @@ class Steps:
     >>> calc.document("H-2", title="Hazard printout")
     >>> _ = calc.givens("S_S, 0.60, H-2 p. 1\\nS_1, 0.22, H-2 p. 1\\nT_L, 8 s, H-2 p. 1\\nsite_class, C, H-2 p. 2")
     >>> calc.asce7.design_spectrum()
-    [F_a = 1.260, F_v = 1.5, S_MS = 0.7560, S_M1 = 0.3300, S_DS = 0.5040, S_D1 = 0.2200, T_0 = 0.08730 s, T_S = 0.4365 s]
+    [F_a = 1.260, F_v = 1.5, S_MS = 0.7560, S_M1 = 0.3300, S_DS = 0.5040, S_D1 = 0.2200, T_0 = 0.08730 s, ...]
     """
 
     def __init__(self, scope: Scope) -> None:

@@ -109,7 +109,8 @@ def _height_flags(scope: Scope) -> list[Flag]:
     highest = units.convert(max(levels.line.value), levels.line.unit, entry.line.unit)
     if abs(h_n / highest - 1) <= 0.001:
         return []
-    text = f"h_n = {entry.line.shown} differs from the highest level, {max(levels.line.shown, key=float)} {levels.line.unit}"
+    top = max(levels.line.shown, key=float)
+    text = f"h_n = {entry.line.shown} differs from the highest level, {top} {levels.line.unit}"
     return [Flag(text, True, "originator")]
 
 

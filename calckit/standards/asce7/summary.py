@@ -41,16 +41,16 @@ _COMMON = (
     ("Importance factor", "I_e"), ("Effective seismic weight", "W"),
 )  # fmt: skip
 _ANSWER = (
-    ("Force-resisting system", "system"), ("Response modification coefficient", "R"), ("Overstrength factor", "Omega_0"),
-    ("Deflection amplification factor", "C_d"), ("System and height permitted", "system_permitted"),
-    ("Equivalent lateral forces permitted", "procedure"), ("Approximate period", "T_a"), ("Upper limit on the period", "T_max"),
-    ("Period from analysis", "T_analysis"), ("Period for strength", "T"), ("Seismic response coefficient", "C_s"),
+    ("Force-resisting system", "system"), ("Response modification coefficient", "R"),
+    ("Overstrength factor", "Omega_0"), ("Deflection amplification factor", "C_d"), ("System and height permitted", "system_permitted"),
+    ("Equivalent lateral forces permitted", "procedure"), ("Approximate period", "T_a"),
+    ("Upper limit on the period", "T_max"), ("Period from analysis", "T_analysis"), ("Period for strength", "T"), ("Seismic response coefficient", "C_s"),
     ("Design base shear", "V"), ("Exponent of the distribution", "k"), ("Redundancy factor", "rho"),
     ("Largest story drift over allowable", "drift"), ("Largest stability coefficient over its maximum", "stability"),
 )  # fmt: skip
 _DRAWINGS = (
-    ("Risk category", ("risk_category",)), ("Importance factor", ("I_e",)), ("Mapped ordinates S_S, S_1", ("S_S", "S_1")),
-    ("Site class", ("site_class",)), ("Design ordinates S_DS, S_D1", ("S_DS", "S_D1")),
+    ("Risk category", ("risk_category",)), ("Importance factor", ("I_e",)),
+    ("Mapped ordinates S_S, S_1", ("S_S", "S_1")), ("Site class", ("site_class",)), ("Design ordinates S_DS, S_D1", ("S_DS", "S_D1")),
     ("Seismic design category", ("SDC",)), ("Force-resisting system", ("system",)), ("Design base shear", ("V",)),
     ("Seismic response coefficient", ("C_s",)), ("Response modification coefficient", ("R",)),
 )  # fmt: skip

@@ -39,7 +39,7 @@ _GROUND_MOTION = (
     Symbol("hazard_basis", "where the design ordinates come from", "words", choices=("mapped", "site-specific")),
     Symbol(
         "study_exception", "what is taken in place of the ground motion hazard analysis of 11.4.8", "words",
-        choices=("exception 1", "exception 2", "exception 3", "S_M1 increased", "study made"),
+        choices=("exception 1", "exception 2", "exception 3", "S_M1 increased", "study made", "not needed"),
     ),
     Symbol("supplements", "supplements to the standard that are in force", "words"),
     _positive("F_a", "site coefficient for short periods", high=5),
@@ -97,7 +97,7 @@ _STRUCTURE = (
     _period("T_max", "upper limit on the period for strength, C_u T_a"),
     _period("T_analysis", "period found by analysis of the structure"),
     Symbol("T_choice", "which period is taken where the analysis gives less than T_a", "words",
-           choices=("analysis", "approximate")),
+           choices=("analysis", "approximate", "not needed")),
     _period("T", "period used for strength"),
     _period("T_drift", "period used for drift"),
     *(_question(name, f"irregularity {name}: {meaning}") for name, meaning in _IRREGULARITIES),
