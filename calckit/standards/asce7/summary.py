@@ -37,23 +37,42 @@ SUPPLIERS = {
 """What supplies a symbol that is missing."""
 
 _COMMON = (
-    ("Seismic design category", "SDC"), ("Design ordinate, short periods", "S_DS"), ("Design ordinate at 1 s", "S_D1"),
-    ("Importance factor", "I_e"), ("Effective seismic weight", "W"),
-)  # fmt: skip
+    ("Seismic design category", "SDC"),
+    ("Design ordinate, short periods", "S_DS"),
+    ("Design ordinate at 1 s", "S_D1"),
+    ("Importance factor", "I_e"),
+    ("Effective seismic weight", "W"),
+)
 _ANSWER = (
-    ("Force-resisting system", "system"), ("Response modification coefficient", "R"),
-    ("Overstrength factor", "Omega_0"), ("Deflection amplification factor", "C_d"), ("System and height permitted", "system_permitted"),
-    ("Equivalent lateral forces permitted", "procedure"), ("Approximate period", "T_a"),
-    ("Upper limit on the period", "T_max"), ("Period from analysis", "T_analysis"), ("Period for strength", "T"), ("Seismic response coefficient", "C_s"),
-    ("Design base shear", "V"), ("Exponent of the distribution", "k"), ("Redundancy factor", "rho"),
-    ("Largest story drift over allowable", "drift"), ("Largest stability coefficient over its maximum", "stability"),
-)  # fmt: skip
+    ("Force-resisting system", "system"),
+    ("Response modification coefficient", "R"),
+    ("Overstrength factor", "Omega_0"),
+    ("Deflection amplification factor", "C_d"),
+    ("System and height permitted", "system_permitted"),
+    ("Equivalent lateral forces permitted", "procedure"),
+    ("Approximate period", "T_a"),
+    ("Upper limit on the period", "T_max"),
+    ("Period from analysis", "T_analysis"),
+    ("Period for strength", "T"),
+    ("Seismic response coefficient", "C_s"),
+    ("Design base shear", "V"),
+    ("Exponent of the distribution", "k"),
+    ("Redundancy factor", "rho"),
+    ("Largest story drift over allowable", "drift"),
+    ("Largest stability coefficient over its maximum", "stability"),
+)
 _DRAWINGS = (
-    ("Risk category", ("risk_category",)), ("Importance factor", ("I_e",)),
-    ("Mapped ordinates S_S, S_1", ("S_S", "S_1")), ("Site class", ("site_class",)), ("Design ordinates S_DS, S_D1", ("S_DS", "S_D1")),
-    ("Seismic design category", ("SDC",)), ("Force-resisting system", ("system",)), ("Design base shear", ("V",)),
-    ("Seismic response coefficient", ("C_s",)), ("Response modification coefficient", ("R",)),
-)  # fmt: skip
+    ("Risk category", ("risk_category",)),
+    ("Importance factor", ("I_e",)),
+    ("Mapped ordinates S_S, S_1", ("S_S", "S_1")),
+    ("Site class", ("site_class",)),
+    ("Design ordinates S_DS, S_D1", ("S_DS", "S_D1")),
+    ("Seismic design category", ("SDC",)),
+    ("Force-resisting system", ("system",)),
+    ("Design base shear", ("V",)),
+    ("Seismic response coefficient", ("C_s",)),
+    ("Response modification coefficient", ("R",)),
+)
 
 
 def summaries(calc: Calc) -> list[Summary]:

@@ -173,7 +173,7 @@ FOUND = [
     # NCSEA, "Frequently Misunderstood Seismic Provisions", slides of 18 June 2020
     ("I_e", "III", "I_e", "1.25"),
     ("I_e", "IV", "I_e", "1.50"),
-    # Extract of ASCE/SEI 7-16 section 11.4 in university lecture notes (secondary source)
+    # Extract of ASCE/SEI 7-16 section 11.4 in university course notes (secondary source)
     ("F_v", "D", "0.2", "2.2"),
     ("F_v", "C", "0.6", "1.4"),
     ("F_v", "E", "0.2", "see 11.4.8"),
