@@ -7,7 +7,8 @@ lines mean.
 from __future__ import annotations
 
 import re
-from collections.abc import Sequence
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import replace
 from decimal import Decimal
 from fractions import Fraction
 from functools import partial
@@ -29,33 +30,45 @@ if TYPE_CHECKING:
 def tabulate(scope: Scope, id_: str, title: str, names: Sequence[str], head: str = "Level") -> Table:
     """A table of the list lines `names` (written already), their decimals settled.
 
-    In the first table that prints a column its decimals are free; a later table may print more, if rounding them gives
-    the first ones. Lines that print entries of a settled column are worked again, so that none prints fewer digits.
+    A column prints the same wherever it stands: tables that share one are settled together, and every line that prints
+    an entry of a column whose digits changed is worked again.
     """
-    entries = {entry.line.id: entry for name in names if (entry := scope.find(name))}
-    others = [table for table in scope.book.tables.values() if table.id != scope.id_of(id_)]
-    settled = {key for table in others for key in table.lines} & set(entries)
-    columns = {key: _column(entry, key in settled) for key, entry in entries.items()}
-    grids = {key: column.least for key, column in columns.items()}
-    while failing := _failing(entries, grids):
-        finer = [_finer(columns, grids, key, key in settled) for key in failing]
+    book = scope.book
+    keys = [entry.line.id for name in names if (entry := scope.find(name))]
+    together = _sharing(book.tables.values(), book.entries, scope.id_of(id_), keys)
+    entries = {key: book.entries[key] for group in together.values() for key in group}
+    grids = {key: entry.decimals for key, entry in entries.items()}
+    while failing := _failing(entries, together.values(), grids):
+        finer = [_finer(entries[key], grids, key) for key in failing]
         if not any(finer):
             raise DigitsError(f"table {title!r}: rows do not follow from {digits.MOST_IN_TABLE} printed digits")
-    _coarsen(entries, columns, grids, settled)
-    printed = [columns[key].column(places) for key, places in grids.items()]
-    _work_again(scope, {key: places for key, places in grids.items() if key not in settled})
-    lines = [entry.line for entry in entries.values()]
+    _coarsen(entries, together.values(), grids)
+    changed = {key: places for key, places in grids.items() if places != entries[key].decimals}
+    _work_again(scope, changed)
+    for other in [book.tables[key] for key in together if key in book.tables]:
+        book.tables[other.id] = replace(other, shown=_shown(scope, other.lines))
+    lines = [book.entries[key].line for key in keys]
     heads = [Column(line.symbol, line.unit, line.id, line.typeset) for line in lines]
-    rows = lines[0].rows
-    shown = [[column[i] for column in printed] for i in range(len(rows))]
-    return Table(scope.id_of(id_), scope.id, title, head, heads, list(rows), shown, list(entries))
+    return Table(scope.id_of(id_), scope.id, title, head, heads, list(lines[0].rows), _shown(scope, keys), keys)
 
 
-def _column(entry: Entry, settled: bool) -> digits.Operand:
-    values = entry.line.value if isinstance(entry.line.value, list) else []
-    exact = tuple(digits.carried(v) for v in values)
-    least = entry.decimals if settled or entry.numerals else digits.decimals_for(exact, 4)
-    return digits.Operand(exact, least, entry.numerals)
+def _sharing(
+    tables: Iterable[Table], entries: Mapping[str, Entry], id_: str, keys: Sequence[str]
+) -> dict[str, Sequence[str]]:
+    """The new table's columns, and those of every table linked to it by a computed column."""
+    found: dict[str, Sequence[str]] = {id_: keys}
+    linked = {key for key in keys if not entries[key].numerals}
+    waiting = [table for table in tables if table.id != id_]
+    while more := [table for table in waiting if table.id not in found and linked & set(table.lines)]:
+        for table in more:
+            found[table.id] = table.lines
+            linked |= {key for key in table.lines if not entries[key].numerals}
+    return found
+
+
+def _shown(scope: Scope, keys: Sequence[str]) -> list[list[str]]:
+    printed = [scope.book.entries[key].line.shown for key in keys]
+    return [[column[i] for column in printed] for i in range(len(printed[0]))]
 
 
 def _work_again(scope: Scope, grids: dict[str, int]) -> None:
@@ -65,26 +78,39 @@ def _work_again(scope: Scope, grids: dict[str, int]) -> None:
             scope.book.remade(entry.remake(grids.get(key, entry.decimals)))
 
 
+def _column(entry: Entry) -> digits.Operand:
+    values = entry.line.value if isinstance(entry.line.value, list) else []
+    return digits.Operand(tuple(digits.carried(v) for v in values), entry.decimals, entry.numerals)
+
+
 def _numbers(entry: Entry, places: int) -> list[Decimal]:
-    return [Decimal(text) for text in _column(entry, settled=False).column(places)]
+    return [Decimal(text) for text in _column(entry).column(places)]
 
 
-def _failing(entries: dict[str, Entry], grids: dict[str, int]) -> list[str]:
+def _failing(entries: dict[str, Entry], tables: Iterable[Sequence[str]], grids: dict[str, int]) -> set[str]:
     """Columns that a row which does not follow rests on."""
-    wanting: list[str] = []
-    for id_, entry in entries.items():
-        values = _printed_operands(_at(entry, grids[id_]), entries, grids)
-        if values is None:
-            continue
-        line = entry.line
-        formula = Formula(line.symbol, line.formula or "", line.source or Source(""))
-        unit = Decimal(1).scaleb(-grids[id_])
-        for row, result in enumerate(_numbers(entry, grids[id_])):
-            env = formula.env(values, DECIMALS, line.rows, row)
-            if abs(in_decimals(partial(formula.node.value, env)) - result) > unit:
-                wanting += [key for key in line.inputs if key in entries and not entries[key].numerals]
-                break
+    wanting: set[str] = set()
+    for keys in tables:
+        here = {key: entries[key] for key in keys}
+        for key in keys:
+            if not _follows(key, here, grids):
+                wanting |= {name for name in here[key].line.inputs if name in here and not here[name].numerals}
     return wanting
+
+
+def _follows(key: str, here: dict[str, Entry], grids: dict[str, int]) -> bool:
+    """Whether every row of a column follows from the printed columns beside it, within one unit of the last digit."""
+    entry = here[key]
+    values = _printed_operands(_at(entry, grids[key]), here, grids)
+    if values is None:
+        return True
+    line = entry.line
+    formula = Formula(line.symbol, line.formula or "", line.source or Source(""))
+    unit = Decimal(1).scaleb(-grids[key])
+    return all(
+        abs(in_decimals(partial(formula.node.value, formula.env(values, DECIMALS, line.rows, row))) - result) <= unit
+        for row, result in enumerate(_numbers(entry, grids[key]))
+    )
 
 
 def _at(entry: Entry, places: int) -> Entry:
@@ -125,23 +151,17 @@ def _last_number(shown: str) -> Decimal:
     return Decimal(found[0]) if found else Decimal(0)
 
 
-def _finer(columns: dict[str, digits.Operand], grids: dict[str, int], key: str, settled: bool) -> bool:
-    """Print one more digit in a column; in a settled one, the next number of digits that rounds back to the first."""
-    column = columns[key]
-    most = digits.decimals_for(column.values, digits.MOST_IN_TABLE)
-    finer = [places for places in range(grids[key] + 1, most + 1) if not settled or column.admissible(places)]
-    if finer:
-        grids[key] = finer[0]
-    return bool(finer)
+def _finer(entry: Entry, grids: dict[str, int], key: str) -> bool:
+    """Print one more digit in a column, up to the most a table may print."""
+    more = grids[key] < digits.decimals_for(_column(entry).values, digits.MOST_IN_TABLE)
+    grids[key] += more
+    return more
 
 
-def _coarsen(
-    entries: dict[str, Entry], columns: dict[str, digits.Operand], grids: dict[str, int], settled: set[str]
-) -> None:
+def _coarsen(entries: dict[str, Entry], tables: Iterable[Sequence[str]], grids: dict[str, int]) -> None:
     """Take back digits that no row needs."""
-    for key, column in columns.items():
-        for places in range(column.least, grids[key]):
-            admissible = key not in settled or column.admissible(places)
-            if admissible and not _failing(entries, grids | {key: places}):
+    for key, entry in entries.items():
+        for places in range(entry.decimals, grids[key]):
+            if not _failing(entries, tables, grids | {key: places}):
                 grids[key] = places
                 break

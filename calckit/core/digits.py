@@ -3,8 +3,9 @@
 Knows decimal rounding and the search for the fewest digits. Must not know expressions, lines or units.
 
 Values are rounded to 12 significant digits, then half up, in decimal. A result is shown to its symbol's significant
-digits, whole numbers never rounded to tens. Each operand is printed with the fewest digits, up to 10 significant, for
-which decimal arithmetic on the printed numerals gives the shown result; what was typed prints as typed.
+digits, whole numbers of up to seven digits in full. Each operand is printed with the fewest digits, up to 10
+significant, for which decimal arithmetic on the printed numerals gives the shown result; what was typed prints as
+typed.
 """
 
 from __future__ import annotations
@@ -18,6 +19,7 @@ from calckit.core.numbers import DECIMAL
 CARRIED = 12
 MOST = 10
 MOST_IN_TABLE = 7
+WHOLE = 7
 
 
 def carried(value: float | Decimal) -> Decimal:
@@ -33,13 +35,18 @@ def carried(value: float | Decimal) -> Decimal:
 
 
 def decimals_for(values: Iterable[Decimal], digits: int) -> int:
-    """Number of decimals at which the largest of `values` has `digits` significant digits; never negative.
+    """Number of decimals at which the largest of `values` has `digits` significant digits.
 
-    >>> decimals_for([Decimal("0.76045")], 4), decimals_for([Decimal(30394)], 4), decimals_for([Decimal(0)], 4)
-    (4, 0, 0)
+    A whole number of up to 7 digits is printed in full; a longer one is rounded to 7 significant digits, which gives a
+    negative number of decimals.
+
+    >>> [decimals_for([Decimal(text)], 4) for text in ("0.76045", "30394", "121937234", "0")]
+    [4, 0, -2, 0]
     """
     largest = max((abs(value) for value in values), default=Decimal(0))
-    return max(0, digits - 1 - largest.adjusted()) if largest else 0
+    if not largest:
+        return 0
+    return max(digits - 1 - largest.adjusted(), min(0, WHOLE - 1 - largest.adjusted()))
 
 
 def numeral(value: Decimal, decimals: int) -> str:
@@ -86,10 +93,6 @@ class Operand:
         most = max(decimals, decimals_for([value], MOST))
         return next((d for d in range(decimals, most + 1) if _rounds_back(value, self.least, d)), most)
 
-    def admissible(self, decimals: int) -> bool:
-        """Whether rounding these printed digits gives every shorter form of all the values."""
-        return all(_rounds_back(value, self.least, decimals) for value in self.values)
-
     def choices(self) -> range:
         """The numbers of decimals that may be printed, fewest first."""
         return range(self.least, self.least + 1 if self.typed else self.most + 1)
@@ -102,15 +105,13 @@ def _rounds_back(value: Decimal, least: int, decimals: int) -> bool:
 
 def fewest(
     operands: Mapping[str, Operand], accept: Callable[[Mapping[str, Sequence[Decimal]]], bool]
-) -> dict[str, tuple[str, ...]] | None:
-    """The printed numerals of every operand with the fewest digits that `accept` takes; None if there are none."""
+) -> dict[str, int] | None:
+    """The decimals of every operand with the fewest digits whose numerals `accept` takes; None if there are none."""
     choices = {name: operand.choices() for name, operand in operands.items()}
 
-    def printed(step: Mapping[str, int]) -> dict[str, tuple[str, ...]]:
-        return {name: operands[name].numerals(choices[name][step[name]]) for name in operands}
-
     def accepted(step: Mapping[str, int]) -> bool:
-        return accept({name: [Decimal(text) for text in texts] for name, texts in printed(step).items()})
+        printed = {name: operands[name].numerals(choices[name][step[name]]) for name in operands}
+        return accept({name: [Decimal(text) for text in texts] for name, texts in printed.items()})
 
     longest = max((len(options) for options in choices.values()), default=1)
     for extra in range(longest):
@@ -124,4 +125,4 @@ def fewest(
             if accepted(step | {name: fewer}):
                 step[name] = fewer
                 break
-    return printed(step)
+    return {name: choices[name][place] for name, place in step.items()}

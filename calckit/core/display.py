@@ -22,6 +22,8 @@ def show(lines: Sequence[Line], tables: Sequence[Table], notices: Sequence[str])
         from IPython.display import display
     except ImportError:
         return
+    in_tables = {id_ for table in tables for id_ in table.lines}
+    lines = [line for line in lines if not (line.kind == "given" and line.id in in_tables)]
     if get_ipython() is None or not (lines or tables or notices):
         return
     display(bundle(lines, tables, notices), raw=True)  # type: ignore[no-untyped-call]
@@ -104,7 +106,7 @@ def _markdown(line: Line) -> str:
     head = f"**{_escaped(line.meaning)}**"
     value = _shown(line)
     if line.forms:
-        body = f"$$\n{_latex(line)}\n$$"
+        body = f"$\\displaystyle {_latex(line)}$"
     elif line.typeset:
         body = f"${line.typeset['latex']}$ = {_escaped(value)}"
     else:

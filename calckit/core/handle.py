@@ -74,3 +74,10 @@ class Handle:
 
     def _ipython_display_(self) -> None:
         """Nothing: the step has shown its lines already."""
+
+
+class Handles(list[Handle]):
+    """The handles of a step that writes several lines; shows nothing of its own below a cell."""
+
+    def _ipython_display_(self) -> None:
+        """Nothing: the step has shown its lines already."""

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 
 from calckit.core.book import Entry, this_cell
 from calckit.core.formula import Formula
-from calckit.core.handle import Handle
+from calckit.core.handle import Handle, Handles
 from calckit.core.inputs import own_symbol
 from calckit.core.levels import BASE, Levels
 from calckit.core.record import Line, Source
@@ -21,9 +21,9 @@ GEOMETRY = Source("geometry of the levels")
 STATICS = Source("sum from the roof down")
 
 
-def write_levels(scope: Scope, table: Levels, source: Source) -> list[Handle]:
+def write_levels(scope: Scope, table: Levels, source: Source) -> Handles:
     """Write the columns as list lines, and what follows from them: h_x and h_sx from each other, P_x from P_level."""
-    made = []
+    made = Handles()
     if BASE in table.columns:
         base = table.columns[BASE][0]
         for name, meaning in (("z_x", "elevation of level x"), ("z_b", "elevation of the base")):

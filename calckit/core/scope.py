@@ -90,7 +90,8 @@ class Scope:
         symbol = self.symbol(name)
         supplier = self.calc.standard.suppliers.get(symbol.name, f'given("{symbol.name}", ...)')
         unit = symbol.unit(self.system)
-        needed = f"a number{' in ' + units.shown(unit) if unit else ''}"
+        words = ", ".join(symbol.choices) or "a word"
+        needed = words if symbol.kind == "words" else f"a number{' in ' + units.shown(unit) if unit else ''}"
         given = f"{line.value} ({line.text})" if line else "nothing"
         return Fault(name, needed, given, f"supply it with {supplier}", symbol.meaning)
 

@@ -107,6 +107,7 @@ def compute(
         else unit or symbol.unit(scope.system)
     )
     inputs = gather(scope, formula, unit, typed or {})
+    _no_factor(formula, unit, scope.system)
     _in_domain(formula, inputs)
     listed = _runs_over_rows(formula, inputs)
     indices = range(len(inputs.rows)) if listed else (None,)
@@ -150,6 +151,17 @@ def compute(
         )  # fmt: skip
 
     return Entry(line, this_cell(), None, places, remake)
+
+
+def _no_factor(formula: Formula, unit: str, system: str) -> None:
+    """Refuse a result unit outside the set of its operands (cm from m, g from ft/s**2): a factor would be implicit."""
+    if formula.units:
+        return
+    own = units.coherent(unit, *(formula.set_of(system) or units.homogeneous_set(unit, system)))
+    if units.factor(own, unit) != 1:
+        cure = f'write unit="{own}"' if own else "leave the unit away"
+        needed = "a unit that needs no factor beside the operands' units"
+        raise UnitError(formula.result, [Fault(formula.result, needed, units.shown(unit), cure)])
 
 
 def _in_domain(formula: Formula, inputs: Inputs) -> None:
@@ -245,12 +257,7 @@ def _printed(
         )
 
     found = digits.fewest(narrowed, tried)
-    if found is not None and row is not None and not whole:
-        for name in found:
-            if inputs.listed(name):
-                places = len(found[name][0].partition(".")[2])
-                found[name] = inputs.operands[name].numerals(places)
-    return found
+    return None if found is None else {name: inputs.operands[name].numerals(d) for name, d in found.items()}
 
 
 def _recorded(inputs: Inputs, printed: Mapping[str, tuple[str, ...]]) -> dict[str, Operand]:
@@ -358,7 +365,7 @@ def check(scope: Scope, id_: str, relation: Formula, *, title: str, flags: Seque
         detail="; ".join(part for part in (over, _conversions(scope, inputs, printed)) if part), verdict=verdict,
         flags=list(flags) if verdict == OK else [*flags, Flag(f"{title}: {over or 'not met'}", True, "originator")],
     )  # fmt: skip
-    return Entry(line, this_cell())
+    return Entry(line, this_cell(), remake=lambda _places: check(scope, id_, relation, title=title, flags=flags))
 
 
 class _Pair:

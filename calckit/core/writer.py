@@ -16,7 +16,7 @@ from calckit import units
 from calckit.core import levels, work
 from calckit.core.book import Entry, this_cell
 from calckit.core.formula import Formula
-from calckit.core.handle import Handle
+from calckit.core.handle import Handle, Handles
 from calckit.core.inputs import Reading, own_symbol
 from calckit.core.parser import parse
 from calckit.core.record import Figure, Flag, Line, Source
@@ -59,7 +59,7 @@ class Writer(Scope):
         detail = "set at issue" if was_set else ""
         return self.write(self._stated(symbol, reading, "given", origin, detail=detail))
 
-    def givens(self, text: str) -> list[Handle]:
+    def givens(self, text: str) -> Handles:
         """A pasted table of inputs: one `symbol, value, source` a row; all bad rows are reported at once."""
         rows = _pasted(text)
         faults: list[Fault] = []
@@ -71,8 +71,8 @@ class Writer(Scope):
         with self.step():
             return self._each("givens", rows, lambda row: self.given(*row))
 
-    def _each(self, where: str, rows: Sequence[Sequence[str]], make: Any) -> list[Handle]:
-        made, faults = [], []
+    def _each(self, where: str, rows: Sequence[Sequence[str]], make: Any) -> Handles:
+        made, faults = Handles(), []
         for number, row in enumerate(rows, 1):
             try:
                 made.append(make(row))
@@ -135,13 +135,13 @@ class Writer(Scope):
         detail = "set at issue" if found else ""
         return self.write(self._stated(symbol, reading, "judgment", origin, basis, detail, flags, owner=owner))
 
-    def answers(self, text: str) -> list[Handle]:
+    def answers(self, text: str) -> Handles:
         """A pasted table of answers: one `question, answer, basis[, source]` a row."""
         rows = [[*row, "", "", ""][:4] for row in _pasted(text)]
         with self.step():
             return self._each("answers", rows, lambda row: self.answer(*row))
 
-    def levels(self, text: str, source: str) -> list[Handle]:
+    def levels(self, text: str, source: str) -> Handles:
         """The pasted table of levels, or "@file.csv"; writes h_x, h_sx, w_x and, if there, delta_xe and P_x.
 
         Raises InputError naming every bad row and column at once.
@@ -299,7 +299,7 @@ class Writer(Scope):
     def analysis(
         self, *, document: str = "", run_date: str = "", V_applied: Any = NO_MODEL, W_model: Any = NO_MODEL,  # noqa: N803
         with_P_delta: str = "", base: str = "", stiffness: str = "", diaphragm: str = "",  # noqa: N803
-    ) -> list[Handle]:  # fmt: skip
+    ) -> Handles:  # fmt: skip
         """The model that displacements and T_analysis of this part come from: document, date, shear applied, weight."""
         facts = {
             "document": document, "run": run_date, "P-delta in the model": with_P_delta, "base": base,
@@ -308,7 +308,7 @@ class Writer(Scope):
         text = "; ".join(f"{name}: {fact}" for name, fact in facts.items() if fact)
         origin = self.calc.sources.read(document, "analysis") if document.strip() else None
         with self.step():
-            made = []
+            made = Handles()
             for name, raw in (("V_applied", V_applied), ("W_model", W_model)):
                 symbol = self.symbol(name)
                 reading, was_set = self._in_force(symbol, raw)

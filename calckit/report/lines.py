@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
+from functools import partial
 
 from calckit import units
 from calckit.core.record import NOT_CHECKED, NOT_OK, TO_BE_CONFIRMED, Candidate, Flag, Line, OpenItem, Record
@@ -24,6 +25,8 @@ LABELS = {
     "note": "note",
 }
 """The kinds of lines in the reader's words."""
+
+_SILENT = FlagView("", 0, "", None)
 
 
 def typeset(forms: Mapping[str, str]) -> Typeset | None:
@@ -45,9 +48,9 @@ class Lines:
         self._tables = {
             column.line: number for number, table in enumerate(self.record.tables, 1) for column in table.columns
         }
-        self._beaten = {
-            candidate.line for line in lines for candidate in line.candidates if not candidate.governs
-        } - {candidate.line for line in lines for candidate in line.candidates if candidate.governs}
+        self._beaten = {candidate.line for line in lines for candidate in line.candidates if not candidate.governs} - {
+            candidate.line for line in lines for candidate in line.candidates if candidate.governs
+        }
         self._used: dict[str, list[Line]] = {}
         for line in lines:
             for id_ in {**line.inputs, **dict.fromkeys(c.line for c in line.candidates)}:
@@ -141,7 +144,7 @@ class Lines:
             candidates=tuple(self._candidate(candidate) for candidate in line.candidates),
             minor=self._is_minor(line),
             override=self.override(line),
-            flags=tuple(self._flag(line, flag) for flag in line.flags),
+            flags=tuple(flag for flag in map(partial(self._flag, line), line.flags) if flag != _SILENT),
             inputs=self.inputs(line),
             used_in=self.used_in(line),
         )

@@ -20,7 +20,8 @@ class Span:
 
     `text` is what is printed; for "math" it is the LaTeX source, shown as it stands where `mathml` or `svg` is blank
     because the formula cannot be set. `mathml` is a fragment without the outer element, `svg` a drawing whose baseline
-    is y = 0 and whose lengths are in points at 10 pt type. `href` is the address of a "link", printed and never fetched.
+    is y = 0 and whose lengths are in points at 10 pt type. `href` is the address of a "link", which is printed and
+    never fetched.
     """
 
     kind: Literal["text", "emphasis", "strong", "code", "math", "link"]
@@ -79,7 +80,7 @@ class Ref:
 class FlagView:
     """A remark on a line. `number` is its number among the open items, 0 if it is none or is `closed_by` a line.
 
-    `text` is blank where the line itself says the same.
+    `text` is blank where the line itself says the same; then one of the other two is there.
     """
 
     text: str
@@ -207,6 +208,7 @@ class CarriedView:
     ref: Ref
     symbol: Typeset | None
     name: str
+    part: str
     shown: str
     to: tuple[Ref, ...]
 

@@ -251,8 +251,8 @@ _UNNUMBERED = re.compile(r"\\(?:begin|end)\{equation\*?\}")
 
 _CHILDREN = {"mfrac": 2, "mroot": 2, "msub": 2, "msup": 2, "munder": 2, "mover": 2, "msubsup": 3, "munderover": 3}
 _TOKENS = {"mi", "mn", "mo", "mtext"}
-_ELEMENTS = {*_CHILDREN, *_TOKENS, "math", "mrow", "mspace", "msqrt", "mstyle", "mtable", "mtr", "mtd"}
-_ATTRIBUTES = {
+ELEMENTS = {*_CHILDREN, *_TOKENS, "math", "mrow", "mspace", "msqrt", "mstyle", "mtable", "mtr", "mtd"}
+ATTRIBUTES = {
     "stretchy", "fence", "form", "accent", "displaystyle", "scriptlevel", "linethickness", "minsize", "maxsize",
     "columnalign", "columnspacing", "mathvariant", "width",
 }  # fmt: skip
@@ -290,7 +290,7 @@ def _converted(latex: str, own_row: bool) -> ET.Element:
 def _clean(element: ET.Element) -> None:
     """Bring one element to MathML Core; ValueError if that cannot be done without losing something."""
     tag, text = element.tag, element.text or ""
-    if tag not in _ELEMENTS or element.attrib.keys() - _ATTRIBUTES - {"display", "rowspacing"}:
+    if tag not in ELEMENTS or element.attrib.keys() - ATTRIBUTES - {"display", "rowspacing"}:
         raise ValueError(f"{tag} {element.attrib}")
     if len(element) != _CHILDREN.get(tag, len(element)) or (tag in _TOKENS and len(element)):
         raise ValueError(f"{tag} with {len(element)} children")

@@ -66,10 +66,6 @@ def build(record: Record, content: Content) -> View:
     `content` is the notebook in order: ("prose", blocks) for a Markdown cell, ("cell", k) for the k-th code cell that
     ran. A heading of level 1 or 2 starts a section. Raises KeyError if the record misses a field of the title block or
     a printed form.
-
-    >>> from tests.report.sample import content, record
-    >>> [section.title for section in build(record(), content()).sections][:2]
-    ['Demonstration building', 'Documents and hazard']
     """
     facts = record.calculation
     lines = Lines(record)
@@ -207,9 +203,7 @@ def _sections(record: Record, content: Content, lines: Lines) -> tuple[SectionVi
     if views:
         pieces.append(("Further lines", list(views.values())))
     pieces = [piece for piece in pieces if piece[1] or piece[0] != _FIRST]
-    home = {
-        item.id: number for number, (_, items) in enumerate(pieces) for item in items if item.type == "line"
-    }
+    home = {item.id: number for number, (_, items) in enumerate(pieces) for item in items if item.type == "line"}
     return tuple(
         SectionView(number + 1, title, tuple(items), tuple(_carried(items, home, number)))
         for number, (title, items) in enumerate(pieces)
@@ -256,7 +250,7 @@ def _carried(items: list[Item], home: dict[str, int], number: int) -> Iterator[C
         if item.type == "line" and item.kind in ("computed", "table", "analysis"):
             away = tuple(ref for ref in item.used_in if home[ref.id] != number)
             if away:
-                yield CarriedView(Ref(item.n, item.id), item.symbol, item.name, item.shown, away)
+                yield CarriedView(Ref(item.n, item.id), item.symbol, item.name, item.part, item.shown, away)
 
 
 # --- lists after the sections

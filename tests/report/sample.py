@@ -14,13 +14,32 @@ from calckit.core.formula import Formula
 from calckit.core.layout import Printed
 from calckit.core.printers import print_all, typeset
 from calckit.core.record import (
-    NOT_CHECKED, NOT_OK, OK, Candidate, Column, Figure, Flag, Line, Margin, OpenItem, Operand, Override, Record, Source,
-    Summary, SummaryRow, Table, lines_hash,
+    NOT_CHECKED,
+    NOT_OK,
+    OK,
+    Candidate,
+    Column,
+    Figure,
+    Flag,
+    Line,
+    Margin,
+    OpenItem,
+    Operand,
+    Override,
+    Record,
+    Source,
+    Summary,
+    SummaryRow,
+    Table,
+    lines_hash,
 )  # fmt: skip
 from calckit.core.symbol import Symbol
 from calckit.report.model import Block, Content, Span
 
-HOSTILE = r"""<script>alert("x")</script> $C_s$ #read("x") {{ 7*7 }} [a](b) *b* _i_ \frac{1}{2} 'q' & θ ≤ Δ @line-1 // /* `c`"""
+HOSTILE = (
+    r"""<script>alert("x")</script> $C_s$ #read("x") {{ 7*7 }} [a](b) *b* _i_ \frac{1}{2} 'q' & θ ≤ Δ @line-1 // /* """
+    r"`c` &lt; %s <line-1>"
+)
 """Text that must come out as it was typed."""
 
 LEVELS = ("Roof", "5", "4", "3", "2")
@@ -139,9 +158,7 @@ class _Notebook:
         lines = [self.lines[id_] for id_ in ids]
         columns = [Column(line.symbol, line.unit, line.id, line.typeset) for line in lines]
         shown = [[line.shown[row] for line in lines] for row in range(len(LEVELS))]
-        self.tables.append(
-            Table(id_, id_.rpartition(".")[0], title, "Level", columns, list(LEVELS), shown, list(ids))
-        )
+        self.tables.append(Table(id_, id_.rpartition(".")[0], title, "Level", columns, list(LEVELS), shown, list(ids)))
         self.cells[-1].append(["table", id_])
 
     def figure(self, id_: str, caption: str, alt: str, lines: Sequence[str]) -> None:
@@ -236,7 +253,7 @@ def _period(book: _Notebook, part: str) -> None:
         flags=[Flag(f"{part}.T_analysis is not known: model not run yet", True, "originator")],
     )  # fmt: skip
     book.worked(f"{part}.T_a", "C_t*h_n**x", "s", source=_of("12.8.2.1", "12.8-7"))
-    book.stated(f"{part}.C_u", "table", 1.44, source=_of("Table 12.8-1"), detail="between columns 0.2: 1.5 and 0.3: 1.4")
+    book.stated(f"{part}.C_u", "table", 1.44, source=_of("Table 12.8-1"), detail="columns 0.2: 1.5 and 0.3: 1.4")
     book.worked(f"{part}.T_max", "C_u*T_a", "s", source=_of("12.8.2"))
     T_a, T_max = book.lines[f"{part}.T_a"], book.lines[f"{part}.T_max"]
     book.worked(
@@ -258,20 +275,19 @@ def _base_shear(book: _Notebook, part: str) -> None:
         book.worked(f"{part}.{name}", text, source=_of("12.8.1.1", equation))
         for (name, text), equation in zip(names.items(), equations, strict=True)
     ]
-    governs = 1 if part == "X" else 0
     book.worked(
         f"{part}.C_s", "max(min(C_sbasic, C_scap), C_sfloor)", source=_of("12.8.1.1"),
         candidates=[
-            Candidate(equation, line.value, "", line.shown, reason, place == governs, line.id)
-            for place, (line, equation, reason) in enumerate(zip(made, equations, reasons, strict=True))
+            Candidate(equation, line.value, "", line.shown, reason, equation == "12.8-3", line.id)
+            for line, equation, reason in zip(made, equations, reasons, strict=True)
         ],
     )  # fmt: skip
     if part == "Y":
         line = book.lines["Y.C_s"]
         line.computed = Operand(line.value, "", line.shown)
         line.value, line.shown = 0.13, "0.13"
-        line.override = Override(0.13, "0.13", "the owner asks for a margin in this direction", "J. Doe", "B-1 section 7")
-        line.flags = [Flag("Y.C_s overridden: 0.13 in place of 0.1138; the owner asks for a margin")]
+        line.override = Override(0.13, "0.13", "the owner asks for a margin here", "J. Doe", "B-1 section 7")
+        line.flags = [Flag("Y.C_s overridden: 0.13 in place of 0.1157; the owner asks for a margin")]
     book.worked(f"{part}.V", "C_s*W", "kip", source=_of("12.8.1", "12.8-1"))
     book.add(
         Line(
@@ -298,7 +314,8 @@ def _checks(book: _Notebook) -> None:
     book.cell("Drift and stability")
     book.stated("X.theta", "given", 0.081, source=_in("M-1", "run 4"), detail="level 3")
     book.stated("X.theta_max", "given", 0.0909, source=_of("12.8.7"))
-    book.check("X.stability", "Stability, story 3", "theta <= theta_max", OK, source=_of("12.8.7"), value=0.891, shown="0.891")
+    line = book.check("X.stability", "Stability, story 3", "theta <= theta_max", OK, source=_of("12.8.7"))
+    line.value, line.shown = 0.891, "0.891"
     book.stated("Y.theta", "given", 0.112, source=_in("M-1", "run 4"), detail="level 3")
     book.stated("Y.theta_max", "given", 0.1, source=_of("12.8.7"))
     line = book.check("Y.stability", "Stability, story 3", "theta <= theta_max", NOT_OK, source=_of("12.8.7"))
@@ -435,7 +452,8 @@ def _heading(level: int, text: str) -> Block:
 
 _EQUATION = Span(
     "math", "F_x = m a", "<mrow><mi>F</mi><mo>=</mo><mi>m</mi><mi>a</mi></mrow>",
-    '<svg xmlns="http://www.w3.org/2000/svg" width="30" height="10" viewBox="0 -8 30 10"><path d="M0 0L8 -8L16 0z"/></svg>',
+    '<svg xmlns="http://www.w3.org/2000/svg" width="30" height="10" viewBox="0 -8 30 10">'
+    '<path d="M0 0L8 -8L16 0z"/></svg>',
 )  # fmt: skip
 
 
@@ -444,8 +462,8 @@ def content() -> Content:
     titles = ["Documents and hazard", "Weight", "Period", "Base shear", "Forces over the height", "Drift and stability"]
     rich = (
         _paragraph("Values of the ", Span("strong", "hazard printout"), " and the ", Span("emphasis", "soils letter"),
-                   "; see ", Span("link", "the basis", href="https://example.org/b"), " and ", Span("code", "S_S = 0.68"),
-                   ", with ", _EQUATION, " and ", Span("math", r"\unknown{x}"), "."),
+                   "; see ", Span("link", "the basis", href="https://example.org/b"), " and ",
+                   Span("code", "S_S = 0.68"), ", with ", _EQUATION, " and ", Span("math", r"\unknown{x}"), "."),
         Block("bullets", items=((_paragraph("first"),), (_paragraph("second"), _paragraph("more of it")))),
         Block("numbers", items=((_paragraph("one"),), (_paragraph("two"),))),
         Block("quote", items=((_paragraph("A remark taken from the soils letter."),),)),

@@ -13,7 +13,7 @@ from typing import TYPE_CHECKING, Any
 from calckit.core.book import Entry, this_cell
 from calckit.core.digits import typed_numeral
 from calckit.core.formula import Formula
-from calckit.core.handle import Handle
+from calckit.core.handle import Handle, Handles
 from calckit.core.record import Candidate, Flag, Line, Margin
 from calckit.core.table import load
 from calckit.errors import Fault, InputError, ScopeError
@@ -25,6 +25,7 @@ if TYPE_CHECKING:
 PACKAGE = "calckit.standards.asce7"
 CURVE_POINTS = 200
 NOT_NEEDED = "not needed"
+CLASS_E = "class E with Supplement 3: whether S_M1 is increased as for class D is not known to the kit; not increased"
 MAPPED_ONLY = ("F_a", "F_v", "S_MS", "S_M1")
 EXCEPTIONS = {"exception 1", "exception 2", "exception 3", "S_M1 increased"}
 
@@ -78,7 +79,7 @@ def study(scope: Scope) -> Hazard:
     return Hazard(tuple(triggered), "increased" if wanted == "S_M1 increased" else "exception 2")
 
 
-def design_spectrum(scope: Scope) -> list[Handle]:
+def design_spectrum(scope: Scope) -> Handles:
     """Site coefficients, S_MS, S_M1, S_DS, S_D1, T_0, T_S; from a site-specific study only the last four."""
     faults = [scope.missing(name) for name in ("S_S", "S_1", "T_L") if scope.number(name) is None]
     if scope.word("site_class") is None:
@@ -88,14 +89,14 @@ def design_spectrum(scope: Scope) -> list[Handle]:
     if faults:
         raise InputError("asce7.design_spectrum", faults)
     with scope.step():
-        made = [] if basis(scope) == "site-specific" else _mapped(scope)
+        made = Handles() if basis(scope) == "site-specific" else _mapped(scope)
         made += [scope.compute(formulas.T_0), scope.compute(formulas.T_S)]
         if study(scope).reading == "both":
             made.append(scope.compute(formulas.T_S_INCREASED))
         return made
 
 
-def _mapped(scope: Scope) -> list[Handle]:
+def _mapped(scope: Scope) -> Handles:
     letter, hazard = site_class(scope), study(scope)
     if letter == "F":
         raise ScopeError("site class F: a site response analysis is needed (11.4.8); set hazard_basis to site-specific")
@@ -103,7 +104,7 @@ def _mapped(scope: Scope) -> list[Handle]:
     made = [_F_a(scope, letter, flags), _F_v(scope, letter, hazard)]
     increased = hazard.reading == "increased"
     made += [scope.compute(formulas.S_MS), scope.compute(formulas.S_M1_INCREASED if increased else formulas.S_M1)]
-    return [*made, scope.compute(formulas.S_DS), scope.compute(formulas.S_D1)]
+    return Handles([*made, scope.compute(formulas.S_DS), scope.compute(formulas.S_D1)])
 
 
 def _study_flags(scope: Scope, hazard: Hazard) -> list[Flag]:
@@ -167,6 +168,7 @@ def _F_v(scope: Scope, letter: str, hazard: Hazard) -> Handle:
             "F_v", "1.0", "table", formulas.rule("11.4.3", obtained="found"), detail="class B without measured velocity"
         )
     S_1, row = scope.number("S_1") or 0.0, letter
+    flags: list[Flag] = []
     if letter == "E" and S_1 > 0.1:
         supplements = scope.calc.title_block["supplements"]
         if supplements is None or 1 not in supplements:
@@ -178,18 +180,19 @@ def _F_v(scope: Scope, letter: str, hazard: Hazard) -> Handle:
                 'answer study_exception "exception 3" if T is not above T_S'
             )
         row = "E, Supplement 1"
-    return scope.look_up("F_v", load(PACKAGE, "F_v").along(row, "S_1", S_1))
+        flags = [Flag(CLASS_E, True, "holder of the standard")] if 3 in supplements and S_1 >= 0.2 else []
+    return scope.look_up("F_v", load(PACKAGE, "F_v").along(row, "S_1", S_1), flags)
 
 
-def site_specific_values(scope: Scope, S_DS: Any, S_D1: Any, source: str) -> list[Handle]:
+def site_specific_values(scope: Scope, S_DS: Any, S_D1: Any, source: str) -> Handles:
     """The ordinates of a site-specific study; written only if the hazard basis is site-specific."""
     settings = scope.book.settings
     if basis(scope) == "mapped":
-        return []
+        return Handles()
     for name in MAPPED_ONLY:
         settings.unused[name] = "hazard_basis is site-specific: site coefficients are not used"
     with scope.step():
-        return [scope.given("S_DS", S_DS, source), scope.given("S_D1", S_D1, source)]
+        return Handles([scope.given("S_DS", S_DS, source), scope.given("S_D1", S_D1, source)])
 
 
 def spectrum_ordinates(scope: Scope, periods: Sequence[float]) -> Handle:
@@ -235,7 +238,7 @@ def spectrum_curve(scope: Scope, longest: float) -> tuple[list[float], list[floa
     return periods, [formulas.S_A.value(values | {"T_r": period}) for period in periods]
 
 
-def design_category(scope: Scope) -> list[Handle]:
+def design_category(scope: Scope) -> Handles:
     """I_e, the categories by S_DS and S_D1 with their margins, and the more severe of them."""
     risk = scope.word("risk_category")
     faults = [scope.missing("risk_category")] if risk is None else []
@@ -245,7 +248,7 @@ def design_category(scope: Scope) -> list[Handle]:
     with scope.step():
         I_e = scope.look_up("I_e", load(PACKAGE, "I_e").entry(risk, "I_e"))
         made = [_by_table(scope, "SDC_DS", "S_DS", risk), _by_table(scope, "SDC_D1", "S_D1", risk)]
-        return [I_e, *made, _governing_category(scope, risk, made)]
+        return Handles([I_e, *made, _governing_category(scope, risk, made)])
 
 
 def _by_table(scope: Scope, name: str, ordinate: str, risk: str) -> Handle:

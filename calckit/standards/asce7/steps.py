@@ -8,7 +8,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import TYPE_CHECKING, Any
 
-from calckit.core.handle import Handle
+from calckit.core.handle import Handle, Handles
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -29,13 +29,13 @@ class Steps:
         self._scope = scope
 
     # chapter 11
-    def site_specific_values(self, S_DS: Any, S_D1: Any, source: str) -> list[Handle]:
+    def site_specific_values(self, S_DS: Any, S_D1: Any, source: str) -> Handles:
         """S_DS and S_D1 of a site-specific study (21.4); written only under hazard_basis site-specific."""
         from calckit.standards.asce7 import hazard
 
         return hazard.site_specific_values(self._scope, S_DS, S_D1, source)
 
-    def design_spectrum(self) -> list[Handle]:
+    def design_spectrum(self) -> Handles:
         """F_a, F_v, S_MS, S_M1, S_DS, S_D1, T_0, T_S (11.4), from S_S, S_1, T_L and site_class."""
         from calckit.standards.asce7 import hazard
 
@@ -53,7 +53,7 @@ class Steps:
 
         return hazard.spectrum_curve(self._scope, longest)
 
-    def design_category(self) -> list[Handle]:
+    def design_category(self) -> Handles:
         """I_e (Table 1.5-2) and the seismic design category (11.6) with its margins, from risk_category."""
         from calckit.standards.asce7 import hazard
 
@@ -66,7 +66,7 @@ class Steps:
 
         return structure.seismic_weight(self._scope)
 
-    def system(self) -> list[Handle]:
+    def system(self) -> Handles:
         """R, Omega_0, C_d (Table 12.2-1) and whether system and height are permitted, from the part's system."""
         from calckit.standards.asce7 import structure
 

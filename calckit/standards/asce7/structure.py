@@ -9,7 +9,7 @@ from collections.abc import Mapping
 from typing import TYPE_CHECKING, Any
 
 from calckit import units
-from calckit.core.handle import Handle
+from calckit.core.handle import Handle, Handles
 from calckit.core.inputs import NONE
 from calckit.core.record import NOT_CHECKED, NOT_OK, OK, Candidate, Flag
 from calckit.core.table import Table, load
@@ -50,12 +50,12 @@ def system_row(scope: Scope) -> tuple[str, dict[str, str], Table]:
     return matching[0], table.row(matching[0]), table
 
 
-def system(scope: Scope) -> list[Handle]:
+def system(scope: Scope) -> Handles:
     """R, Omega_0, C_d of one row of Table 12.2-1, and whether the system and its height are permitted."""
     key, row, table = system_row(scope)
     category = scope.word("SDC")
     with scope.step():
-        made = [scope.look_up(name, table.entry(key, name)) for name in ("R", "Omega_0", "C_d")]
+        made = Handles(scope.look_up(name, table.entry(key, name)) for name in ("R", "Omega_0", "C_d"))
         made.append(_permitted(scope, key, row, table, category))
         return made
 
@@ -265,6 +265,8 @@ def _table_12_6_1(scope: Scope) -> tuple[str, str, str]:
         return OK, f"design category {category}: permitted for every structure", ""
     if risk in ("I", "II") and len(levels.line.rows) <= 2:
         return OK, f"risk category {risk}, not more than two stories", ""
+    if "light frame" in (scope.word("system") or ""):
+        return OK, "light frame construction", ""
     present, unanswered = _answered(scope)
     if unanswered:
         return NOT_CHECKED, "", f"answers {', '.join(unanswered)}"

@@ -147,7 +147,7 @@ _DRIFT = (
     Symbol("P_level", "vertical load of level x, no load factor above 1.0", "force", sub="level", low=0),
     _positive("P_x", "vertical load at level x and above, no load factor above 1.0", "force"),
     _positive("beta", "ratio of shear demand to shear capacity of the story", high=1),
-    Symbol("theta", "stability coefficient"),
+    Symbol("theta", "stability coefficient", digits=3),
     Symbol("theta_max", "largest stability coefficient allowed", sub="max"),
 )
 
