@@ -24,7 +24,11 @@ _current: list[Calc] = []
 
 
 class Part(Writer):
-    """A named scope with its own symbols (a direction, a component)."""
+    """A named scope with its own symbols (a direction, a component).
+
+    >>> Calc(project="Demo", number="D-1").part("Y", "North-south").title
+    'North-south'
+    """
 
 
 class Calc(Writer):
@@ -35,9 +39,11 @@ class Calc(Writer):
     not answered; () for none), with `supplements_source`. Raises InputError naming every bad field at once.
 
     >>> calc = Calc(project="Harbor Street Clinic", number="C-101", standard="ASCE 7-16")
+    >>> calc.document("S-201", title="Framing elevations", revision="2", date="2026-11-14")
+    >>> calc.revise("B", date="2026-12-08", reason="story weights", by="originator", sheets="all")
     >>> x = calc.part("X", "East-west direction")
-    >>> x is calc.part("X", "East-west direction")
-    True
+    >>> x is calc.part("X", "East-west direction"), current() is calc
+    (True, True)
     """
 
     def __init__(
@@ -120,7 +126,12 @@ class Calc(Writer):
 
 
 def current() -> Calc | None:
-    """The calculation made last in this process."""
+    """The calculation made last in this process.
+
+    >>> calc = Calc(project="Demo", number="D-1")
+    >>> current() is calc
+    True
+    """
     return _current[0] if _current else None
 
 

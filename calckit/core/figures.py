@@ -1,11 +1,12 @@
 """Drawings taken into the calculation as SVG.
 
-Knows how a matplotlib Figure becomes the same bytes every time. Must not know what is drawn.
+Knows how a drawing becomes the same bytes every time. Must not know what is drawn, nor import what draws it.
 """
 
 from __future__ import annotations
 
 import io
+import sys
 from typing import TYPE_CHECKING, Any
 
 from calckit.core.record import Figure
@@ -15,26 +16,27 @@ if TYPE_CHECKING:
     from calckit.core.scope import Scope
 
 
-def image(drawing: Any, form: str) -> bytes:
-    """A matplotlib Figure as "svg" or "png" bytes, text drawn as outlines, without a date."""
-    import matplotlib
-
+def svg(drawing: Any) -> bytes:
+    """The SVG of what `calckit.plots` returns, or of any matplotlib Figure; InputError for anything else."""
+    if hasattr(drawing, "_repr_svg_"):
+        return str(drawing._repr_svg_()).encode()
+    matplotlib = sys.modules.get("matplotlib")
+    if matplotlib is None or not hasattr(drawing, "savefig"):
+        cure = "pass what plots.* returns"
+        raise InputError("figure", [Fault("figure", "a matplotlib Figure", type(drawing).__name__, cure)])
     buffer = io.BytesIO()
     with matplotlib.rc_context({"svg.hashsalt": "calckit", "svg.fonttype": "path"}):
-        drawing.savefig(buffer, format=form, metadata={"Date": None} if form == "svg" else {"Software": None})
+        drawing.savefig(buffer, format="svg", metadata={"Date": None})
     return buffer.getvalue()
 
 
 def place(scope: Scope, drawing: Any, figure: Figure) -> None:
     """Put a drawing in its place and show it below the cell."""
-    if not hasattr(drawing, "savefig"):
-        raise InputError(
-            "figure", [Fault("figure", "a matplotlib Figure", type(drawing).__name__, "pass what plots.* returns")]
-        )
+    data = svg(drawing)
     figure.file = f"{figure.id}.svg"
-    scope.calc.figure_data[figure.file] = image(drawing, "svg")
     with scope.step():
         scope.book.write_figure(figure)
+        scope.calc.figure_data[figure.file] = data
     _show(drawing, figure)
 
 
@@ -45,5 +47,4 @@ def _show(drawing: Any, figure: Figure) -> None:
     except ImportError:
         return
     if get_ipython() is not None:
-        data = {"image/png": image(drawing, "png"), "text/plain": f"{figure.caption}: {figure.alt}"}
-        display(data, raw=True, metadata={"image/png": {"alt": figure.alt}})  # type: ignore[no-untyped-call]
+        display(drawing, metadata={"image/png": {"alt": figure.alt}})  # type: ignore[no-untyped-call]

@@ -23,6 +23,8 @@ class Handle:
     >>> T_L = calc.assume("T_L", "8 s", basis="demo")
     >>> T_L.value, T_L.unit, float(T_L)
     (8.0, 's', 8.0)
+    >>> T_L.quantity, T_L.shown, T_L.rows, T_L.line.kind
+    (Quantity(value=8.0, unit='s', numeral=''), '8 s', [], 'assumption')
     """
 
     def __init__(self, scope: Scope, id_: str) -> None:
@@ -77,7 +79,11 @@ class Handle:
 
 
 class Handles(list[Handle]):
-    """The handles of a step that writes several lines; shows nothing of its own below a cell."""
+    """The handles of a step that writes several lines; shows nothing of its own below a cell.
+
+    >>> Handles()
+    []
+    """
 
     def _ipython_display_(self) -> None:
         """Nothing: the step has shown its lines already."""

@@ -68,6 +68,7 @@ class Form(Printer):
         self.symbols, self.operands, self.env = symbols, operands, env
 
     def emptyPrinter(self, expr: Any) -> str:
+        """Refuse what has no method here."""
         raise TypeError(f"no printed form for {type(expr).__name__}")
 
     # pieces: one set per form

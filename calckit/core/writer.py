@@ -29,7 +29,35 @@ _ID = re.compile(r"[\w.\-]+\Z")
 
 
 class Writer(Scope):
-    """A scope as its user sees it; `scope["F_x"]` reads a line by symbol."""
+    """A scope as its user sees it; `scope["F_x"]` reads a line by symbol.
+
+    >>> from calckit import Calc
+    >>> calc = Calc(project="Demo", number="D-1", standard="ASCE 7-16")
+    >>> calc.document("S-1", title="Framing elevations")
+    >>> calc.givens("h_n, 30 ft, S-1 grid A\\nrisk_category, II, S-1")
+    [h_n = 30 ft, risk_category = II]
+    >>> x = calc.part("X", "East-west")
+    >>> calc.levels("level, h_x [ft], w_x [kip]\\nRoof, 30, 310\\n2, 15, 455", source="S-1")[0]
+    h_x = 30, 15
+    >>> x.line("M_r", "total(w_x*h_x)/10", unit="kip*ft", meaning="rough overturning moment")
+    X.M_r = 1613 kip·ft
+    >>> x.check("M_r", "<=", "2*M_r", title="Demonstration").line.verdict
+    'OK'
+    >>> calc.answer("diaphragm", "rigid", basis="concrete slab", source="S-1")
+    diaphragm = rigid
+    >>> x.answers("H2, no, rectangular plan, S-1\\nH4, not answered")
+    [X.H2 = no, X.H4 = not answered]
+    >>> calc.judge("J-slab", "The slab carries the forces to the frames.", basis="no opening beside a frame")
+    J-slab = The slab carries the forces to the frames.
+    >>> calc.note("N-wind", "Wind is in another calculation.")
+    N-wind = Wind is in another calculation.
+    >>> x.assume("beta", 1.0, basis="taken as 1.0")
+    X.beta = 1.0
+    >>> x.analysis(V_applied="31 kip")
+    [X.V_applied = 31 kip, X.W_model = none: no model yet]
+    >>> x.override("C_s", 0.05, reason="demonstration", by="originator")
+    >>> calc.confirm("Table 12.2-1", document="printed standard", by="checker", date="2026-12-01")
+    """
 
     def __getitem__(self, name: str) -> Handle:
         entry = self.find(name)
@@ -270,7 +298,13 @@ class Writer(Scope):
         return self.write(Entry(line, this_cell()))
 
     def figure(self, figure: Any, *, caption: str, alt: str, id: str = "", lines: Sequence[str] = ()) -> None:
-        """A drawing (matplotlib Figure) with caption and alternative text; `lines` are the ids it is made from."""
+        """A drawing (matplotlib Figure) with caption and alternative text; `lines` are the ids it is made from.
+
+        >>> from calckit import Calc, plots
+        >>> calc = Calc(project="Demo", number="D-1")
+        >>> drawing = plots.design_spectrum([0, 0.1, 0.5, 2.0], [0.4, 1.0, 1.0, 0.25])
+        >>> calc.figure(drawing, caption="Design spectrum", alt="S_a over the period", id="spectrum")
+        """
         from calckit.core.figures import place
 
         faults = [
@@ -283,7 +317,15 @@ class Writer(Scope):
         place(self, figure, Figure(id or f"figure-{len(self.book.figures) + 1}", caption, alt, "", list(lines)))
 
     def file(self, name: str) -> bytes:
-        """The bytes of a file beside the notebook; the file travels with the report."""
+        """The bytes of a file beside the notebook; the file travels with the report.
+
+        Raises InputError if there is no such file, or if it lies outside the notebook's folder.
+
+        >>> from calckit import Calc
+        >>> Calc(project="Demo", number="D-1").file("nowhere.csv")
+        Traceback (most recent call last):
+        calckit.errors.InputError: file: nowhere.csv: needed a readable file beside the notebook; given No such file ...
+        """
         path = Path(name)
         if path.is_absolute() or ".." in path.parts:
             raise InputError("file", [Fault(name, "a path inside the notebook's folder", name)])
@@ -324,7 +366,13 @@ class Writer(Scope):
                 entry.line.source.confirmed = self.calc.sources.confirmation(entry.line.source)
 
     def summary(self) -> None:
-        """Show the governing results so far."""
+        """Show the governing results so far.
+
+        >>> from calckit import Calc
+        >>> Calc(project="Demo", number="D-1").summary()
+        <IPython.core.display.Markdown object>
+        <IPython.core.display.Markdown object>
+        """
         from calckit.core.summary import show_summary
 
         show_summary(self.calc)

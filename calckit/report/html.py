@@ -11,6 +11,7 @@ import xml.etree.ElementTree as ET
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import fields, is_dataclass
 from functools import cache
+from itertools import pairwise
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
@@ -209,25 +210,24 @@ def _sign(text: str) -> ET.Element:
 
 
 def _pieces(elements: Iterable[ET.Element]) -> list[list[ET.Element]]:
-    """Pieces that start with a sign between two operands."""
-    pieces: list[list[ET.Element]] = [[]]
-    for element in elements:
-        before = pieces[-1][-1] if pieces[-1] else None
-        if element.tag == "mo" and element.text in _SIGNS and before is not None:
-            if before.tag == "mo" and before.text != ")":
-                element.set("form", "prefix")
-            else:
-                element.set("form", "infix")
-                pieces.append([])
-        pieces[-1].append(element)
-    return pieces
+    """Pieces that start with a sign between two operands: a factor only where there are no terms."""
+    row = list(elements)
+    breaks = [
+        place
+        for place, (before, element) in enumerate(pairwise(row), 1)
+        if element.tag == "mo" and element.text in _SIGNS and (before.tag != "mo" or before.text == ")")
+    ]
+    for place in breaks:
+        row[place].set("form", "infix")
+    terms = [place for place in breaks if row[place].text != "×"] or breaks
+    return [row[start:end] for start, end in pairwise([0, *terms, len(row)])]
 
 
 def _css_text(text: str) -> Markup:
-    """A text as a CSS string: all but letters, digits and blanks as code points, so that it cannot end the string."""
+    """A text as a CSS string: all but letters and digits as code points, so that nothing in it can end the string."""
     from markupsafe import Markup
 
-    safe = "".join(c if (c.isascii() and c.isalnum()) or c == " " else f"\\{ord(c):06x}" for c in text)
+    safe = "".join(c if c.isascii() and c.isalnum() else f"\\{ord(c):06x}" for c in text)
     return Markup(f'"{safe}"')
 
 

@@ -70,7 +70,11 @@ def canonical(unit: str) -> str:
 
 @cache
 def known() -> tuple[str, ...]:
-    """The names of all units, in the order of the definition file."""
+    """The names of all units, in the order of the definition file.
+
+    >>> known()[:4]
+    ('m', 'mm', 'cm', 'ft')
+    """
     lines = (resources.files(__package__) / "units.txt").read_text(encoding="utf-8").splitlines()
     names = [line.split("=") for line in lines if "=" in line]
     return tuple(parts[2].strip() if len(parts) > 2 else parts[0].strip() for parts in names)

@@ -23,6 +23,27 @@ class Steps:
     >>> _ = calc.givens("S_S, 0.60, H-2 p. 1\\nS_1, 0.22, H-2 p. 1\\nT_L, 8 s, H-2 p. 1\\nsite_class, C, H-2 p. 2")
     >>> calc.asce7.design_spectrum()
     [F_a = 1.260, F_v = 1.5, S_MS = 0.7560, S_M1 = 0.3300, S_DS = 0.5040, S_D1 = 0.2200, T_0 = 0.08730 s, ...]
+    >>> calc.asce7.spectrum_ordinates([0.2, 1.0])
+    S_a = 0.5040, 0.2200
+    >>> T, S_a = calc.asce7.spectrum_curve(longest=2.0)
+    >>> S_a[0], calc.asce7.site_specific_values("none: mapped", "none: mapped", source="H-2")
+    (0.2016, [])
+    >>> _ = calc.givens("risk_category, II, H-2\\nh_n, 30 ft, H-2")
+    >>> calc.asce7.design_category()[-1]
+    SDC = D
+    >>> _ = calc.levels("level, h_x [ft], w_x [kip]\\nRoof, 30, 310\\n2, 15, 455", source="H-2")
+    >>> calc.asce7.seismic_weight()
+    W = 765.0 kip
+    >>> x = calc.part("X", "East-west")
+    >>> _ = x.givens("system, steel special concentrically braced frame, H-2\\ndrift_class, all other, H-2")
+    >>> x.asce7.system()
+    [X.R = 6, X.Omega_0 = 2, X.C_d = 5, X.system_permitted = 0.188]
+    >>> x.asce7.approximate_period(), x.asce7.period(), x.asce7.base_shear()
+    (X.T_a = 0.2564 s, X.T = 0.2564 s, X.V = 64.26 kip)
+    >>> x.asce7.vertical_distribution()
+    X.M_x = 555, 1519
+    >>> x.asce7.procedure(), x.asce7.drift(), x.asce7.stability()
+    (X.procedure = OK, X.drift = NOT CHECKED, X.stability = NOT CHECKED)
     """
 
     def __init__(self, scope: Scope) -> None:
