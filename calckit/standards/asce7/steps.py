@@ -41,7 +41,7 @@ class Steps:
     >>> x.asce7.approximate_period(), x.asce7.period(), x.asce7.base_shear()
     (X.T_a = 0.2564 s, X.T = 0.2564 s, X.V = 64.26 kip)
     >>> x.asce7.vertical_distribution()
-    X.M_x = 555, 1519
+    X.M_x = 556, 1520
     >>> x.asce7.procedure(), x.asce7.drift(), x.asce7.stability()
     (X.procedure = OK, X.drift = NOT CHECKED, X.stability = NOT CHECKED)
     """
