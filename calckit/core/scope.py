@@ -85,6 +85,10 @@ class Scope:
             return None
         return units.convert(float(value), entry.line.unit, unit) if unit else float(value)
 
+    def labelled(self, title: str) -> str:
+        """A title with the part it belongs to: "X: Story drift"."""
+        return f"{self.id}: {title}" if self.id else title
+
     def missing(self, name: str, line: Line | None = None) -> Fault:
         """What to say of a name that has no number here."""
         symbol = self.symbol(name)
@@ -250,9 +254,9 @@ class Scope:
             missing=missing,
         )
         if missing:
-            line.flags.append(Flag(f"{title}: NOT CHECKED, missing {missing}", True, "originator"))
+            line.flags.append(Flag(f"{self.labelled(title)}: NOT CHECKED, missing {missing}", True, "originator"))
         elif verdict == NOT_OK:
-            line.flags.append(Flag(f"{title}: {detail}", True, "originator"))
+            line.flags.append(Flag(f"{self.labelled(title)}: {detail}", True, "originator"))
         return self.write(Entry(line, this_cell()))
 
     def _has_number(self, name: str) -> bool:

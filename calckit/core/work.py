@@ -363,7 +363,7 @@ def check(scope: Scope, id_: str, relation: Formula, *, title: str, flags: Seque
         rows=list(inputs.rows) if listed else [], row=inputs.rows[worst] if listed else "", formula=relation.text,
         inputs=_recorded(inputs, printed), forms=forms, source=relation.source,
         detail="; ".join(part for part in (over, _conversions(scope, inputs, printed)) if part), verdict=verdict,
-        flags=list(flags) if verdict == OK else [*flags, Flag(f"{title}: {over or 'not met'}", True, "originator")],
+        flags=list(flags) if verdict == OK else [*flags, Flag(f"{scope.labelled(title)}: {over or 'not met'}", True, "originator")],
     )  # fmt: skip
     return Entry(line, this_cell(), remake=lambda _places: check(scope, id_, relation, title=title, flags=flags))
 
@@ -409,7 +409,7 @@ def _reversed(
 
 def not_checked(scope: Scope, id_: str, title: str, missing: str, source: Any, formula: str | None = None) -> Entry:
     """A check that could not be made, with what it is waiting for."""
-    flag = Flag(f"{title}: NOT CHECKED, missing {missing}", True, "originator")
+    flag = Flag(f"{scope.labelled(title)}: NOT CHECKED, missing {missing}", True, "originator")
     line = Line(
         scope.id_of(id_), "check", "", title, None, "", "", part=scope.id, formula=formula, source=source,
         verdict=NOT_CHECKED, missing=missing, flags=[flag],

@@ -45,9 +45,10 @@ class Lines:
         self.by_id = {line.id: line for line in lines}
         self._items = {(item.line, item.text): place for place, item in enumerate(open_items(self.record), 1)}
         self._closed = {line.closes: line.id for line in lines if line.closes}
-        self._tables = {
-            column.line: number for number, table in enumerate(self.record.tables, 1) for column in table.columns
-        }
+        self._tables: dict[str, int] = {}
+        for number, table in enumerate(self.record.tables, 1):
+            for column in table.columns:
+                self._tables.setdefault(column.line, number)
         self._beaten = {candidate.line for line in lines for candidate in line.candidates if not candidate.governs} - {
             candidate.line for line in lines for candidate in line.candidates if candidate.governs
         }

@@ -371,7 +371,7 @@ def _summaries(book: _Notebook) -> list[Summary]:
         found = []
         for label, name in table.items():
             ids = [f"{part}.{name}" if f"{part}.{name}" in book.lines else name for part in _PARTS]
-            texts = [str(line.shown) if (line := book.lines.get(id_)) else NOT_CHECKED for id_ in ids]
+            texts = [str(line.shown or line.verdict) if (line := book.lines.get(id_)) else NOT_CHECKED for id_ in ids]
             found.append(SummaryRow(label, texts, [id_ if id_ in book.lines else "" for id_ in ids]))
         return found
 

@@ -40,7 +40,7 @@ def _candidate_lines(scope: Scope) -> None:
     T, T_L, S_1 = scope.number("T", "s") or 0.0, scope.number("T_L", "s") or 0.0, scope.number("S_1") or 0.0
     scope.compute(formulas.C_S_BASIC)
     long = T > T_L
-    scope.compute(formulas.C_S_CAP_LONG if long else formulas.C_S_CAP, detail="T > T_L" if long else "T <= T_L")
+    scope.compute(formulas.C_S_CAP_LONG if long else formulas.C_S_CAP, detail="T > T_L" if long else "T ≤ T_L")
     if study(scope.calc).reading in ("both", "exception 2") and _beyond(scope):
         scope.compute(formulas.C_S_CAP_INCREASED, detail="T > 1.5 T_S")
     scope.compute(formulas.C_S_FLOOR)
@@ -91,12 +91,12 @@ def _candidates(scope: Scope, reading: str) -> list[Candidate]:
     """Every candidate in clause order with its value and reason; the one whose value is C_s governs."""
     reasons = {
         "C_sbasic": "basic value",
-        "C_scap": "upper limit for T <= T_L"
+        "C_scap": "upper limit for T ≤ T_L"
         if (scope.number("T") or 0) <= (scope.number("T_L") or 0)
         else "upper limit for T > T_L",
         "C_scapinc": "upper limit increased by 11.4.8 for T > 1.5 T_S",
         "C_sfloor": "lower limit",
-        "C_sfloor1": "lower limit where S_1 >= 0.6",
+        "C_sfloor1": "lower limit where S_1 ≥ 0.6",
     }
     lines = [(name, entry.line) for name in reasons if (entry := scope.find(name))]
     values = {name: float(line.value) for name, line in lines}  # type: ignore[arg-type]
