@@ -20,9 +20,10 @@ from calckit.core.numbers import Arithmetic
 from calckit.core.parser import COMPARISONS, Parsed, dotted, parse
 from calckit.errors import ExpressionError
 
-_COMPARE = {
+COMPARE = {
     "<": operator.lt, "<=": operator.le, ">": operator.gt, ">=": operator.ge, "==": operator.eq, "!=": operator.ne,
 }  # fmt: skip
+"""Comparison sign -> comparison."""
 
 
 @dataclass(frozen=True)
@@ -222,7 +223,7 @@ class Relation(Node):
         return str(self.args[1])
 
     def value(self, env: Env) -> bool:
-        return bool(_COMPARE[self.sign](self.args[0].value(env), self.args[2].value(env)))
+        return bool(COMPARE[self.sign](self.args[0].value(env), self.args[2].value(env)))
 
     def plain(self) -> sympy.Expr:
         return sympy.Rel(self.args[0].plain(), self.args[2].plain(), self.sign)

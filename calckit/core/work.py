@@ -308,7 +308,8 @@ def _typed_flags(scope: Scope, inputs: Inputs) -> list[Flag]:
     ]
 
 
-_TURNED = {"<=": "/", "<": "/", ">=": "\\", ">": "\\"}
+_AGAINST = {"<=": ">", "<": ">=", ">=": "<", ">": "<="}
+"""What a relation that is not met says of the numbers."""
 
 
 def check(scope: Scope, id_: str, relation: Formula, *, title: str, flags: Sequence[Flag] = ()) -> Entry:
@@ -316,8 +317,10 @@ def check(scope: Scope, id_: str, relation: Formula, *, title: str, flags: Seque
 
     Over a list the worst entry is printed and the entries that fail are named.
     """
+    from calckit.core.nodes import COMPARE
+
     left, sign, right = relation.node.args[0], relation.node.sign, relation.node.args[2]
-    if sign not in _TURNED:
+    if sign not in _AGAINST:
         raise ExpressionError(f"check {title!r}: a check takes <, <=, >= or >, not {sign}")
     first = next((name for name in relation.names if scope.find(name)), None)
     found = scope.find(first) if first else None
@@ -325,7 +328,7 @@ def check(scope: Scope, id_: str, relation: Formula, *, title: str, flags: Seque
     inputs = gather(scope, relation, unit, {})
     listed = _runs_over_rows(relation, inputs)
     rows = range(len(inputs.rows)) if listed else (None,)
-    demand, limit = (left, right) if _TURNED[sign] == "/" else (right, left)
+    demand, limit = (left, right) if sign.startswith("<") else (right, left)
 
     def ratio(env: Any) -> Any:
         return demand.value(env) / limit.value(env)
@@ -334,7 +337,8 @@ def check(scope: Scope, id_: str, relation: Formula, *, title: str, flags: Seque
         return relation.env(inputs.values, FLOATS, inputs.rows, row)
 
     _comparable(relation, inputs, 0 if listed else None)
-    holds = [bool(relation.node.value(env_at(row))) for row in rows]
+    sides = [[digits.carried(side.value(env_at(row))) for side in (left, right)] for row in rows]
+    holds = [bool(COMPARE[sign](*pair)) for pair in sides]
     safe = all(limit.value(env_at(row)) for row in rows)
     ratios = [ratio(env_at(row)) if safe else 0.0 for row in rows]
     worst = max(range(len(ratios)), key=lambda i: (not holds[i], ratios[i]))
@@ -363,9 +367,13 @@ def check(scope: Scope, id_: str, relation: Formula, *, title: str, flags: Seque
         rows=list(inputs.rows) if listed else [], row=inputs.rows[worst] if listed else "", formula=relation.text,
         inputs=_recorded(inputs, printed), forms=forms, source=relation.source,
         detail="; ".join(part for part in (over, _conversions(scope, inputs, printed)) if part), verdict=verdict,
-        flags=list(flags) if verdict == OK else [*flags, Flag(f"{scope.labelled(title)}: {over or 'not met'}", True, "originator")],
+        flags=list(flags) if verdict == OK else [*flags, Flag(_label(scope, title, over), True, "originator")],
     )  # fmt: skip
     return Entry(line, this_cell(), remake=lambda _places: check(scope, id_, relation, title=title, flags=flags))
+
+
+def _label(scope: Scope, title: str, over: str) -> str:
+    return f"{scope.labelled(title)}: {over or 'not met'}"
 
 
 class _Pair:
@@ -388,9 +396,6 @@ def _comparable(relation: Formula, inputs: Inputs, row: int | None) -> None:
         return [Dimensioned(v, powers) for v in value] if isinstance(value, list) else Dimensioned(value, powers)
 
     plain.node.value(plain.env({name: dimensioned(name) for name in inputs.values}, DIMENSIONS, inputs.rows, row))
-
-
-_AGAINST = {"<=": ">", "<": ">=", ">=": "<", ">": "<="}
 
 
 def _reversed(

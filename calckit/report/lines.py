@@ -189,4 +189,6 @@ def _said(line: Line, flag: Flag) -> bool:
         return True
     if line.override and flag.text.startswith(f"{line.id} overridden"):
         return True
+    if line.meaning and line.meaning in flag.text and str(line.shown) in flag.text:
+        return True
     return bool(line.text) and line.text in flag.text

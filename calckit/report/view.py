@@ -34,6 +34,7 @@ from calckit.report.model import (
     SymbolView,
     TableView,
     TitleBlock,
+    Typeset,
     View,
 )
 
@@ -289,17 +290,20 @@ def _assumptions(record: Record, lines: Lines) -> tuple[AssumptionView, ...]:
 
 
 def _symbols(record: Record) -> tuple[SymbolView, ...]:
-    """Every symbol once for each meaning and unit it has, in alphabetical order."""
-    found: dict[tuple[str, str, str], SymbolView] = {}
+    """Every symbol once for each meaning it has, in alphabetical order."""
+    found: dict[tuple[str, str], list[Line]] = {}
     for line in record.lines:
-        symbol = typeset(line.typeset)
-        if symbol is None:
-            continue
-        key = (line.symbol, line.meaning, line.unit)
-        earlier = found[key].refs if key in found else ()
-        unit = units.shown(line.unit) or "number"
-        found[key] = SymbolView(symbol, line.meaning, unit, (*earlier, Ref(line.n, line.id)))
-    return tuple(found[key] for key in sorted(found, key=lambda key: (key[0].casefold(), key)))
+        if line.typeset:
+            found.setdefault((line.symbol, line.meaning), []).append(line)
+    return tuple(_symbol(found[key]) for key in sorted(found, key=lambda key: (key[0].casefold(), key)))
+
+
+def _symbol(lines: list[Line]) -> SymbolView:
+    numbers = [line for line in lines if not isinstance(line.value, str | None)]
+    printed = dict.fromkeys(units.shown(line.unit) or "number" for line in numbers)
+    refs = tuple(Ref(line.n, line.id) for line in lines)
+    first = lines[0].typeset
+    return SymbolView(Typeset(**first), lines[0].meaning, ", ".join(printed), refs)
 
 
 def _references(record: Record) -> Iterator[ReferenceView]:
