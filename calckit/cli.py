@@ -7,6 +7,7 @@ loaded when its command is called.
 from __future__ import annotations
 
 import argparse
+import io
 import json
 import sys
 import threading
@@ -28,6 +29,9 @@ def main(argv: Sequence[str] | None = None) -> int:
     >>> main(["recheck", "no-such-file.pdf"])
     2
     """
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(stream, io.TextIOWrapper):
+            stream.reconfigure(errors="replace")  # a terminal without Greek letters must not stop a command
     arguments = _parser().parse_args(argv)
     try:
         code: int = arguments.command(arguments)

@@ -1,6 +1,7 @@
 """Timings of what a user waits for: `python -m tests.bench`. Ratios travel between machines, seconds do not."""
 
 import itertools
+import os
 import subprocess
 import sys
 import tempfile
@@ -24,7 +25,8 @@ def best(work: Callable[[], object], repeats: int) -> float:
 
 def fresh(*arguments: str) -> Callable[[], object]:
     """A run in a process of its own."""
-    return lambda: subprocess.run([sys.executable, *arguments], check=True, capture_output=True, cwd=ROOT)
+    source = os.environ | {"PYTHONPATH": str(ROOT)}
+    return lambda: subprocess.run([sys.executable, *arguments], check=True, capture_output=True, cwd=ROOT, env=source)
 
 
 def show(what: str, seconds: float, beside: str = "") -> None:

@@ -79,7 +79,7 @@ def _operand(shown: str | Sequence[str]) -> Decimal | list[Decimal]:
     return last_numeral(shown) if isinstance(shown, str) else [Decimal(text) for text in shown]
 
 
-_ENTRY = re.compile(r": ([^:;]+?)(?:; .*)?\Z")
+_ENTRY = re.compile(r": ([^:;]+?)(?:; .*| \(end value, .*)?\Z")
 _BETWEEN = re.compile(r"between columns ([\d.]+): ([\d.]+) and ([\d.]+): ([\d.]+)\Z")
 
 
@@ -189,14 +189,14 @@ def _conversions(found: Audit, line: Json, lines: Mapping[str, Json]) -> None:
             first, second = printed(own), printed(other)
             assert first and second, operand["shown"]
             typed = origin is None or origin["formula"] is None
-            pairs = [(first, second[0], Fraction() if typed else Fraction(1, 2 * 10 ** decimals(first[0])))]
+            pairs = [(first, second[0], Fraction() if typed else Fraction(1, 2) / Fraction(10) ** decimals(first[0]))]
         elif origin and origin["unit"] != operand["unit"] and origin["rows"]:
             exact = [(repr(value), origin["unit"]) for value in origin["value"]]
             pairs = [(first, second, Fraction()) for first, second in zip(exact, operand["shown"], strict=True)]
         for first, second, slack in pairs:
             ratio = factor(first[1], operand["unit"])
             away = abs(Fraction(first[0]) * ratio - Fraction(second))
-            good = away <= Fraction(1, 2 * 10 ** decimals(second)) + slack * ratio
+            good = away <= Fraction(1, 2) / Fraction(10) ** decimals(second) + slack * ratio
             found.item("conversion", good, f"{line['id']}, {key}: {' '.join(first)} = {second} {operand['unit']}")
 
 

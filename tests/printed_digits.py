@@ -3,9 +3,10 @@
 Knows the record as plain JSON, the plain-text forms, and decimal arithmetic. Must not know how the kit parses, works,
 rounds or prints: nothing of it is imported, so that an error there is not made here too.
 
-The rule: values are rounded to 12 significant digits, then half up. Decimal arithmetic on the numerals of a substituted
-line gives its printed result; a relation is true as printed; each row of a table follows from its printed columns within
-one unit of the last printed digit; a form printed with more digits rounds to every shorter printed form of that value.
+The rule: values are rounded to 12 significant digits, then half up; a whole number of more than 7 digits is rounded to
+7. Decimal arithmetic on the numerals of a substituted line gives its printed result; a relation is true as printed;
+each row of a table follows from its printed columns within one unit of the last printed digit; a form printed with more
+digits rounds to every shorter printed form of that value.
 """
 
 from __future__ import annotations
@@ -21,6 +22,7 @@ from typing import Any
 
 CONTEXT = Context(prec=50)
 CARRIED = 12
+WHOLE = 7
 
 _POUND = Fraction("4.4482216152605")  # newtons: international pound, standard gravity 9.80665 m/s2 (NIST SP 811)
 _FOOT = Fraction("0.3048")  # meters: international foot (NIST SP 811)
@@ -79,8 +81,14 @@ def rounded(value: Decimal, decimals: int) -> Decimal:
 
 
 def decimals(numeral: str) -> int:
-    """The decimals of a printed numeral."""
-    return len(numeral.partition(".")[2])
+    """The decimals of a printed numeral: negative for one of more than 7 whole digits that is rounded to 7.
+
+    >>> decimals("0.7605"), decimals("1134205"), decimals("121937200")
+    (4, 0, -2)
+    """
+    whole, _, places = numeral.lstrip("-").partition(".")
+    over = max(0, len(whole) - WHOLE)
+    return len(places) or (-over if whole.endswith("0" * over) else 0)
 
 
 @dataclass(frozen=True)

@@ -5,13 +5,13 @@ from __future__ import annotations
 import copy
 import json
 from collections import Counter
-from collections.abc import Callable, Iterator
+from collections.abc import Callable
 from decimal import Decimal
 from pathlib import Path
 from typing import Any
 
 import pytest
-from hypothesis import HealthCheck, given, settings
+from hypothesis import HealthCheck, Phase, given, settings
 from hypothesis import strategies as st
 
 from tests.building import GIVENS, Building
@@ -190,7 +190,7 @@ def test_failing_row_that_is_not_named(second: Json) -> None:
     ("text", "value"),
     [
         ("2 / 3 × 0.8350", "0.556666666666667"),
-        ("0.028 × (80 ft)^0.8", "0.932451914571"),
+        ("0.028 × (80 ft)^0.8", "0.932464402283"),
         ("2 - (-3 kip)", "5"),
         ("-2^2", "-4"),
         ("(-2)^2", "4"),
@@ -272,13 +272,10 @@ def buildings(draw: st.DrawFn) -> Building:
 
 
 @given(building=buildings(), system=st.sampled_from(["US", "SI"]))
-@settings(max_examples=60, deadline=None, derandomize=True, suppress_health_check=list(HealthCheck))
+@settings(
+    max_examples=300, deadline=None, derandomize=True, phases=[Phase.generate], suppress_health_check=list(HealthCheck)
+)  # fmt: skip
 def test_rule_holds_for_buildings_at_random(building: Building, system: str) -> None:
     found = audit(json.loads(building.record(units=system).to_json()))
     assert found.faults == []
     assert found.counts["computed line"] >= 38
-
-
-def lines_of(record: Json) -> Iterator[str]:
-    """The ids of all lines."""
-    yield from (line["id"] for line in record["lines"])

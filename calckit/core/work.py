@@ -124,12 +124,12 @@ def compute(
     places = digits.decimals_for(values, symbol.digits) if decimals is None else decimals
     worked = _worked_row(formula, inputs.rows, values, row) if listed else None
     target = digits.numeral(values[worked or 0], places)
-    half = Decimal(5).scaleb(-places - 1)
+    fifth = Decimal(2).scaleb(-places - 1)  # of a unit: half is lost to the rounded result, the rest is for lists
 
     def gives_target(result: Decimal) -> bool:
         return digits.numeral(digits.carried(result), places) == target
 
-    printed = _printed(formula, inputs, worked, gives_target, values if listed else (), half)
+    printed = _printed(formula, inputs, worked, gives_target, values if listed else (), fifth)
     if printed is None:
         raise DigitsError(f"{formula.result} = {formula.text}: 10 printed digits do not give {target}")
     shown = [digits.numeral(v, places) for v in values]
@@ -220,11 +220,11 @@ def _printed(
     row: int | None,
     accept: Callable[[Any], bool],
     results: Sequence[Decimal] = (),
-    half: Decimal = Decimal(0),
+    slack: Decimal = Decimal(0),
 ) -> dict[str, tuple[str, ...]] | None:
     """The numerals of every operand with which decimal arithmetic gives what `accept` takes.
 
-    `results` are the values of all rows, which the printed single operands must give within `half` a unit.
+    `results` are the values of all rows, which the printed single operands must give within `slack`.
     """
     whole = any(word in formula.text for word in ("total(", "above(", "below(", "level("))
     narrowed = dict(inputs.operands)
@@ -245,13 +245,13 @@ def _printed(
         return accept(in_decimals(lambda: formula.node.value(env))) and others(numbers)
 
     def others(numbers: Mapping[str, Sequence[Decimal]]) -> bool:
-        """Whether the printed single operands serve the rows that are not worked in full, to half a unit."""
+        """Whether the printed single operands serve the rows that are not worked in full, within `slack`."""
         exact = {
             name: list(operand.values) if inputs.listed(name) else numbers[name][0]
             for name, operand in inputs.operands.items()
         }
         return all(
-            abs(in_decimals(partial(formula.node.value, formula.env(exact, DECIMALS, inputs.rows, i))) - value) <= half
+            abs(in_decimals(partial(formula.node.value, formula.env(exact, DECIMALS, inputs.rows, i))) - value) <= slack
             for i, value in enumerate(results)
             if i != row
         )

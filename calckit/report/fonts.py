@@ -34,7 +34,7 @@ _RANGES = (
 CHARACTERS = frozenset(chr(code) for low, high in _RANGES for code in range(low, high + 1))
 """What the subset can set. Italic letters are included for every upright letter, so only the upright ones are asked."""
 
-_KEPT_NAMES = [0, 1, 2, 13, 14]  # copyright, family, style, license, address of the license
+_KEPT_NAMES = [0, 1, 2, 4, 6, 13, 14]  # copyright, the names of the font, license, address of the license
 
 
 @cache

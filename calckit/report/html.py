@@ -227,7 +227,7 @@ def _css_text(text: str) -> Markup:
     """A text as a CSS string: all but letters and digits as code points, so that nothing in it can end the string."""
     from markupsafe import Markup
 
-    safe = "".join(c if c.isascii() and c.isalnum() else f"\\{ord(c):06x}" for c in text)
+    safe = "".join(c if c.isascii() and c.isalnum() else f"\\{ord(c):06x}" for c in _present(text))
     return Markup(f'"{safe}"')
 
 

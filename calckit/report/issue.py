@@ -181,7 +181,8 @@ def _check(line: Line) -> str:
     said = line.forms.get("plain", [""])[-1]
     if line.verdict == NOT_CHECKED:
         said = f"missing {line.missing}" if line.missing else ""
-    return f"line {line.n}  {line.meaning or line.id}" + (f": {said}" if said else "")
+    place = f"line {line.n}, {line.part}" if line.part else f"line {line.n}"
+    return f"{place}  {line.meaning or line.id}" + (f": {said}" if said else "")
 
 
 def _read_text(name: str, where: str, into: dict[str, str], faults: list[str]) -> None:

@@ -7,6 +7,7 @@ counted and collected here, once, for both writers. Must not know HTML, Typst or
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
+from dataclasses import replace
 from typing import Any
 
 from calckit import units
@@ -233,13 +234,19 @@ def _table(number: int, table: Table, lines: Lines) -> TableView:
 
 
 def _split(blocks: Iterable[Block]) -> Iterator[tuple[str, list[Block]]]:
-    """The blocks between headings of level 1 and 2, each run under its heading ("" before the first)."""
-    title, run = "", list[Block]()
+    """The blocks between headings of level 1 and 2, each run under its heading ("" before the first).
+
+    Headings inside a run are of level 3 and below, none skipped.
+    """
+    title, run, level = "", list[Block](), 2
     for block in blocks:
         if block.kind == "heading" and block.level <= 2:
             if title or run:
                 yield title, run
-            title, run = "".join(span.text for span in block.spans), []
+            title, run, level = "".join(span.text for span in block.spans), [], 2
+        elif block.kind == "heading":
+            level = min(block.level, level + 1)
+            run.append(replace(block, level=level))
         else:
             run.append(block)
     yield title, run

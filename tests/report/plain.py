@@ -35,6 +35,7 @@ def record(**fields: Any) -> Record:
             Line(
                 "X.stability",
                 "check",
+                part="X",
                 meaning="Stability, story 3",
                 verdict=NOT_OK,
                 n=3,

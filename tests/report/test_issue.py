@@ -252,7 +252,7 @@ def test_what_the_terminal_says(source: Notebook, give: Give, tmp_path: Path) ->
         f"  {tmp_path}/C-101_A.pdf",
         f"  {tmp_path}/C-101_A.record.json",
         "NOT OK: 1",
-        "  line 3  Stability, story 3: 0.12 <= 0.09",
+        "  line 3, X  Stability, story 3: 0.12 <= 0.09",
         "NOT CHECKED: 1",
         "  line 4  Story drift: missing displacements of the model",
         "open items: 1",
