@@ -95,7 +95,10 @@ def _table_value(found: Audit, line: Json, lines: Mapping[str, Json]) -> None:
         found.item("table value", good, f"{line['id']}: {line['detail']} at {x} gives {value}, printed {shown}")
     elif line["candidates"]:
         governing = [c["shown"] for c in line["candidates"] if c["governs"]]
-        found.item("table value", shown in governing, f"{line['id']}: {shown} is not among {governing}")
+        if governing:
+            found.item("table value", shown in governing, f"{line['id']}: {shown} is not among {governing}")
+        else:
+            found.skipped.append(f"table value {line['id']}: decided by {line['detail']}, no candidate governs")
     elif entry := _ENTRY.search(line["detail"]):
         found.item("table value", entry[1] == shown, f"{line['id']}: {line['detail']}, printed {shown}")
     elif line["detail"].endswith(f" {shown}"):

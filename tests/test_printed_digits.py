@@ -151,17 +151,15 @@ def test_wrong_digit_in_any_cell(second: Json) -> None:
 def test_wrong_digit_in_a_form(second: Json) -> None:
     def spot(record: Json) -> None:
         (line,) = (line for line in record["lines"] if line["id"] == "X.V")
-        forms = line["forms"]["plain"]
-        assert forms[1] == "0.03386 × 6060 kip"
-        forms[1] = "0.03387 × 6060 kip"
+        line["forms"]["plain"][1] = "0.0339 × 6060 kip"
 
-    assert planted(second, spot) == ["computed line: X.V = 0.03387 × 6060 kip gives 205.3, printed 205.2"]
+    assert planted(second, spot) == ["computed line: X.V = 0.0339 × 6060 kip gives 205.4, printed 205.2"]
 
 
 def test_form_that_does_not_round_to_the_shorter_one(second: Json) -> None:
     def spot(record: Json) -> None:
         (line,) = (line for line in record["lines"] if line["id"] == "X.F_x")
-        line["inputs"]["X.V"]["shown"] = "205.19 kip".replace("205.19", "205.31")
+        line["inputs"]["X.V"]["shown"] = "205.31 kip"
 
     faults = planted(second, spot)
     assert any(fault.startswith("repeated value: X.V") and "205.31" in fault for fault in faults)
@@ -190,7 +188,7 @@ def test_failing_row_that_is_not_named(second: Json) -> None:
     ("text", "value"),
     [
         ("2 / 3 × 0.8350", "0.556666666666667"),
-        ("0.028 × (80 ft)^0.8", "0.932464402283"),
+        ("0.028 × (80 ft)^0.8", "0.932459592290"),
         ("2 - (-3 kip)", "5"),
         ("-2^2", "-4"),
         ("(-2)^2", "4"),

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 
 from calckit.core.record import Line, Value
 from calckit.errors import UnknownNameError
-from calckit.units import Quantity
+from calckit.units import Quantity, shown
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -25,6 +25,8 @@ class Handle:
     (8.0, 's', 8.0)
     >>> T_L.quantity, T_L.shown, T_L.rows, T_L.line.kind
     (Quantity(value=8.0, unit='s', numeral=''), '8 s', [], 'assumption')
+    >>> T_L.in_words
+    '8 s'
     """
 
     def __init__(self, scope: Scope, id_: str) -> None:
@@ -57,6 +59,14 @@ class Handle:
     def shown(self) -> str | list[str]:
         """The printed result: with its unit for a single value, the printed entries for a list."""
         return self.line.shown
+
+    @property
+    def in_words(self) -> str:
+        """The printed result in words: "80 ft", or for a list "Roof 80 ft, 2 15 ft"; for alternative texts."""
+        line = self.line
+        if not isinstance(line.shown, list):
+            return line.shown
+        return ", ".join(f"{row} {entry} {shown(line.unit)}" for row, entry in zip(line.rows, line.shown, strict=True))
 
     @property
     def quantity(self) -> Quantity:

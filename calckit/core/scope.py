@@ -67,6 +67,12 @@ class Scope:
 
         return typeset(symbol, self.symbol)
 
+    def plain(self, name: str) -> str:
+        """A name as its symbol prints in plain text: "δ_x", "X.ρ"."""
+        part, _, symbol = name.rpartition(".")
+        printed = self.typeset(self.symbol(symbol))["plain"]
+        return f"{part}.{printed}" if part else printed
+
     def find(self, name: str) -> Entry | None:
         """The line a name stands for here, or None."""
         return self.book.find(self.id, name)
@@ -233,7 +239,7 @@ class Scope:
             known = [*self.calc.standard.symbols, *self.book.entries]
             raise UnknownNameError(f"check {title!r}: symbol", unknown[0], known)
         if absent:
-            missing = ", ".join(f"{self.id_of(n) if '.' not in n else n} ({self.symbol(n).meaning})" for n in absent)
+            missing = ", ".join(f"{self.plain(name)} ({self.symbol(name).meaning})" for name in absent)
             return self.write(work.not_checked(self, id_, title, missing, source, relation))
         return self.write(work.check(self, id_, formula, title=title, flags=flags))
 

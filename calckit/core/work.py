@@ -292,20 +292,16 @@ def _forms(
 def _conversions(scope: Scope, inputs: Inputs, printed: Mapping[str, tuple[str, ...]]) -> str:
     parts = []
     for name, entry in inputs.entries.items():
-        if inputs.unit[name] != entry.line.unit and not inputs.listed(name):
-            plain = scope.typeset(scope.symbol(name))["plain"]
-            parts.append(f"{plain} = {entry.line.shown} = {printed[name][0]} {units.shown(inputs.unit[name])}")
-        elif inputs.unit[name] != entry.line.unit:
-            plain = scope.typeset(scope.symbol(name))["plain"]
-            parts.append(f"{plain} converted from {units.shown(entry.line.unit)} to {units.shown(inputs.unit[name])}")
+        unit, own = inputs.unit[name], entry.line.unit
+        if unit != own and inputs.listed(name):
+            parts.append(f"{scope.plain(name)} converted from {units.shown(own)} to {units.shown(unit)}")
+        elif unit != own:
+            parts.append(f"{scope.plain(name)} = {entry.line.shown} = {printed[name][0]} {units.shown(unit)}")
     return "; ".join(parts)
 
 
 def _typed_flags(scope: Scope, inputs: Inputs) -> list[Flag]:
-    return [
-        Flag(f"{scope.typeset(scope.symbol(name))['plain']} typed in place: {inputs.entries[name].line.shown}")
-        for name in inputs.typed
-    ]
+    return [Flag(f"{scope.plain(name)} typed in place: {inputs.entries[name].line.shown}") for name in inputs.typed]
 
 
 _AGAINST = {"<=": ">", "<": ">=", ">=": "<", ">": "<="}

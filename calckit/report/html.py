@@ -25,7 +25,8 @@ if TYPE_CHECKING:
     from markupsafe import Markup
 
 _ASSETS = Path(__file__).parent / "assets"
-_LONG = 52  # characters of plain text that a formula may have before it is broken
+_LONG = 36  # characters of plain text above which a formula may be broken at its signs
+_WIDE = 52  # characters above which a fraction is written on one row
 _TALL = {"mfrac", "mtable", "munder", "mover", "munderover", "msqrt", "mroot"}
 _SIGNS = {"+", "−", "×", "/", "=", "≤", "≥", "<", ">", "≠"}
 _SHEET = {"Letter": "8.5in 11in", "A4": "210mm 297mm"}
@@ -195,7 +196,7 @@ def _flat(elements: Iterable[ET.Element]) -> Iterator[ET.Element]:
     for element in elements:
         if element.tag == "mrow" and not (_is_fenced(element) and _is_tall(element)):
             yield from _flat(element)
-        elif element.tag == "mfrac" and len("".join(element.itertext())) > _LONG:
+        elif element.tag == "mfrac" and len("".join(element.itertext())) > _WIDE:
             top, bottom = element
             yield from (_sign("("), *_flat([top]), _sign(")"), _sign("/"))
             yield from (_sign("("), *_flat([bottom]), _sign(")"))

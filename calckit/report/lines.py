@@ -8,7 +8,6 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
-from functools import partial
 
 from calckit import units
 from calckit.core.record import NOT_CHECKED, NOT_OK, TO_BE_CONFIRMED, Candidate, Flag, Line, OpenItem, Record
@@ -25,9 +24,6 @@ LABELS = {
     "note": "note",
 }
 """The kinds of lines in the reader's words."""
-
-_SILENT = FlagView("", 0, "", None)
-
 
 def typeset(forms: Mapping[str, str]) -> Typeset | None:
     """The four forms of a symbol; None where the record holds none (words have no symbol)."""
@@ -118,6 +114,7 @@ class Lines:
         """
         forms = line.forms
         pairs = zip(forms["plain"], forms["latex"], forms["mathml"], forms["typst"], strict=True) if forms else ()
+        flags = [self._flag(line, flag) for flag in line.flags]
         listed = isinstance(line.shown, list)
         table = self._tables.get(line.id, 0)
         return LineView(
@@ -145,7 +142,7 @@ class Lines:
             candidates=tuple(self._candidate(candidate) for candidate in line.candidates),
             minor=self._is_minor(line),
             override=self.override(line),
-            flags=tuple(flag for flag in map(partial(self._flag, line), line.flags) if flag != _SILENT),
+            flags=tuple(flag for flag in flags if flag.text or flag.number or flag.closed_by),
             inputs=self.inputs(line),
             used_in=self.used_in(line),
         )

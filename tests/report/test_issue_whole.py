@@ -1,9 +1,12 @@
 """The whole chain with the real kernel side and the real writers, from the command line, in processes of its own."""
 
+import json
 import os
+import shutil
 import subprocess
 import sys
 from collections.abc import Callable
+from functools import partial
 from pathlib import Path
 
 import pytest
@@ -11,7 +14,7 @@ import pytest
 from calckit.core.record import from_json
 from calckit.report import seal
 from calckit.report.recheck import parcel_of, recheck
-from tests.conftest import WriteNotebook
+from tests.conftest import WriteNotebook, notebook_json
 
 ROOT = Path(__file__).parents[2]
 
@@ -51,74 +54,103 @@ datetime.datetime, datetime.date = Later, LaterDay
 Run = Callable[..., subprocess.CompletedProcess[str]]
 
 
-@pytest.fixture
-def path(write_notebook: WriteNotebook, tmp_path: Path) -> Path:
-    (tmp_path / "notes.txt").write_text("wind governs nothing here\n")
-    return write_notebook(*CELLS)
+def run_calckit(folder: Path, *arguments: object, **environment: str) -> subprocess.CompletedProcess[str]:
+    """The command in a process of its own, started in a folder."""
+    found = {name: value for name, value in os.environ.items() if name != "SOURCE_DATE_EPOCH"}
+    found["PYTHONPATH"] = os.pathsep.join(filter(None, (str(ROOT), os.environ.get("PYTHONPATH"))))
+    command = [sys.executable, "-m", "calckit", *map(str, arguments)]
+    return subprocess.run(command, capture_output=True, text=True, cwd=folder, env=found | environment)
 
 
-@pytest.fixture
-def calckit(tmp_path: Path) -> Run:
-    def run(*arguments: object, **environment: str) -> subprocess.CompletedProcess[str]:
-        found = {name: value for name, value in os.environ.items() if name != "SOURCE_DATE_EPOCH"}
-        found["PYTHONPATH"] = os.pathsep.join(filter(None, (str(ROOT), os.environ.get("PYTHONPATH"))))
-        command = [sys.executable, "-m", "calckit", *map(str, arguments)]
-        return subprocess.run(command, capture_output=True, text=True, cwd=tmp_path, env=found | environment)
-
-    return run
+def demonstration(folder: Path) -> Path:
+    """The notebook of these tests and the file it reads."""
+    (folder / "notes.txt").write_text("wind governs nothing here\n")
+    path = folder / "demo.ipynb"
+    path.write_text(json.dumps(notebook_json(CELLS)))
+    return path
 
 
 def content(folder: Path) -> dict[str, bytes]:
     return {path.name: path.read_bytes() for path in folder.iterdir()} if folder.exists() else {}
 
 
-def test_issue_and_recheck(path: Path, calckit: Run, tmp_path: Path) -> None:
-    result = calckit("issue", path, "--to", "out")
-    assert (result.returncode, result.stdout.splitlines()[:5]) == (
-        0,
-        [
-            "C-7, revision A, for check, 2026-12-01",
-            "  out/C-7_A.html",
-            "  out/C-7_A.pdf",
-            "  out/C-7_A.record.json",
-            "NOT OK: none",
-        ],
-    ), result.stderr
-    record = from_json((tmp_path / "out" / "C-7_A.record.json").read_text())
+@pytest.fixture
+def path(tmp_path: Path) -> Path:
+    return demonstration(tmp_path)
+
+
+@pytest.fixture
+def calckit(tmp_path: Path) -> Run:
+    return partial(run_calckit, tmp_path)
+
+
+@pytest.fixture(scope="module")
+def first(tmp_path_factory: pytest.TempPathFactory) -> tuple[str, Path]:
+    """One issue: what the terminal said, and the folder."""
+    folder = tmp_path_factory.mktemp("first")
+    result = run_calckit(folder, "issue", demonstration(folder), "--to", "out")
+    assert result.returncode == 0, result.stderr
+    return result.stdout, folder / "out"
+
+
+@pytest.fixture
+def issued(first: tuple[str, Path], tmp_path: Path) -> Path:
+    """A copy of that folder."""
+    return Path(shutil.copytree(first[1], tmp_path / "issued"))
+
+
+def test_what_the_terminal_says_and_the_lines(first: tuple[str, Path]) -> None:
+    said, folder = first
+    assert said.splitlines()[:5] == [
+        "C-7, revision A, for check, 2026-12-01",
+        "  out/C-7_A.html",
+        "  out/C-7_A.pdf",
+        "  out/C-7_A.record.json",
+        "NOT OK: none",
+    ]
+    record = from_json((folder / "C-7_A.record.json").read_text())
     assert [(line.id, line.n, line.section) for line in record.lines[:3]] == [
         ("h_n", 1, "Height"),
         ("p", 2, "Height"),
         ("V_w", 3, "Force"),
     ]
     assert record.line("V_w").value == 124.0
-    for form in ("html", "pdf"):
-        issued = tmp_path / "out" / f"C-7_A.{form}"
-        assert all(finding.good for finding in recheck(issued))
-        assert dict(parcel_of(issued.read_bytes()).files) == {"notes.txt": b"wind governs nothing here\n"}
-        result = calckit("recheck", issued)
-        assert (result.returncode, result.stdout.splitlines()[1]) == (0, "  seal              intact")
-        issued.write_bytes(issued.read_bytes() + b"\n")
-        code, words = (4, "altered or re-saved after issue") if form == "html" else (0, "1 byte added after issue")
-        result = calckit("recheck", issued)
-        assert (result.returncode, result.stdout.splitlines()[1]) == (code, f"  seal              {words}")
 
 
-def test_the_same_bytes_a_month_later_elsewhere(path: Path, calckit: Run, tmp_path: Path) -> None:
-    ahead = tmp_path / "ahead"
+@pytest.mark.parametrize("form", ["html", "pdf"])
+def test_recheck(form: str, issued: Path, calckit: Run) -> None:
+    path = issued / f"C-7_A.{form}"
+    assert all(finding.good for finding in recheck(path))
+    assert dict(parcel_of(path.read_bytes()).files) == {"notes.txt": b"wind governs nothing here\n"}
+    result = calckit("recheck", path)
+    assert (result.returncode, result.stdout.splitlines()[1]) == (0, "  seal              intact")
+    path.write_bytes(path.read_bytes() + b"\n")
+    code, words = (4, "altered or re-saved after issue") if form == "html" else (0, "1 byte added after issue")
+    result = calckit("recheck", path)
+    assert (result.returncode, result.stdout.splitlines()[1]) == (code, f"  seal              {words}")
+
+
+@pytest.mark.parametrize(("form", "times"), [("html", 1), ("pdf", 2)])
+def test_seal_stands_in_its_places_alone(form: str, times: int, issued: Path) -> None:
+    data = (issued / f"C-7_A.{form}").read_bytes()
+    assert data.count(seal.seal_of(data).encode()) == times
+
+
+def test_the_same_bytes_a_month_later_elsewhere(first: tuple[str, Path], path: Path, calckit: Run) -> None:
+    ahead = path.parent / "ahead"
     ahead.mkdir()
     (ahead / "sitecustomize.py").write_text(CLOCK_A_MONTH_AHEAD)
-    assert calckit("issue", path, "--to", "now").returncode == 0
     other = {
         "PYTHONPATH": os.pathsep.join((str(ahead), str(ROOT))),
         "TZ": "Pacific/Kiritimati",
         "LC_ALL": "C",
-        "HOME": str(tmp_path),
+        "HOME": str(path.parent),
         "PYTHONHASHSEED": "7",
     }
     result = calckit("issue", path, "--to", "later", **other)
     assert result.returncode == 0, result.stderr
-    assert content(tmp_path / "now") == content(tmp_path / "later")
-    assert len(content(tmp_path / "now")) == 3
+    assert content(path.parent / "later") == content(first[1])
+    assert len(content(first[1])) == 3
 
 
 def test_the_clock_of_that_test_is_ahead(tmp_path: Path) -> None:
@@ -166,11 +198,10 @@ def test_the_issuing_process_loads_neither_nbconvert_nor_sympy(path: Path, tmp_p
 
 
 @pytest.mark.parametrize(("form", "name"), [("html", "HTMLReportExporter"), ("pdf", "PDFReportExporter")])
-def test_nbconvert_gives_the_same_bytes(form: str, name: str, path: Path, calckit: Run, tmp_path: Path) -> None:
-    assert calckit("issue", path, "--only", form).returncode == 0
+def test_nbconvert_gives_the_same_bytes(form: str, name: str, path: Path, issued: Path) -> None:
     command = [sys.executable, "-m", "nbconvert", "--to", f"calckit.report.exporters.{name}", str(path)]
     subprocess.run(command, check=True, capture_output=True, cwd=ROOT)
-    assert (tmp_path / f"demo.{form}").read_bytes() == (tmp_path / f"C-7_A.{form}").read_bytes()
+    assert path.with_suffix(f".{form}").read_bytes() == (issued / f"C-7_A.{form}").read_bytes()
 
 
 def test_set_values(path: Path, calckit: Run, tmp_path: Path) -> None:
@@ -195,11 +226,10 @@ def test_set_values_at_fault_write_nothing(path: Path, calckit: Run, tmp_path: P
     assert content(tmp_path / "out") == {}
 
 
-def test_a_cell_that_raises(path: Path, calckit: Run, tmp_path: Path) -> None:
-    assert calckit("issue", path, "--to", "out").returncode == 0
-    before = content(tmp_path / "out")
+def test_a_cell_that_raises(path: Path, calckit: Run, issued: Path) -> None:
+    before = content(issued)
     path.write_text(path.read_text().replace("62 ft", "62 furlong"))
-    result = calckit("issue", path, "--to", "out", "--set", "q=1")
+    result = calckit("issue", path, "--to", issued, "--set", "q=1")
     assert (result.returncode, result.stdout) == (3, "")
     said = result.stderr.splitlines()
     assert said[0].startswith('calckit: cell [2] under "Height", line 1: ')
@@ -207,7 +237,7 @@ def test_a_cell_that_raises(path: Path, calckit: Run, tmp_path: Path) -> None:
     assert said[-2] == '  1 | calc.given("h_n", "62 furlong", source="S-201 grid A")'
     assert said[-1] == "set values undecided, as the run stopped: q"
     assert "Traceback" not in result.stderr
-    assert content(tmp_path / "out") == before
+    assert content(issued) == before
 
 
 def test_a_notebook_without_a_calculation(write_notebook: WriteNotebook, calckit: Run) -> None:
@@ -228,10 +258,3 @@ def test_a_terminal_without_greek_letters(path: Path, calckit: Run) -> None:
 def test_a_word_when_it_takes_long(write_notebook: WriteNotebook, calckit: Run) -> None:
     result = calckit("issue", write_notebook("import time; time.sleep(2.5)", name="slow.ipynb"))
     assert result.stderr.splitlines()[0].endswith("slow.ipynb ...")
-
-
-def test_seal_stands_once_in_each_place(path: Path, calckit: Run, tmp_path: Path) -> None:
-    assert calckit("issue", path).returncode == 0
-    for form, times in (("html", 1), ("pdf", 2)):
-        data = (tmp_path / f"C-7_A.{form}").read_bytes()
-        assert data.count(seal.seal_of(data).encode()) == times

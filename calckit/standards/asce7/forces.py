@@ -172,7 +172,7 @@ def drift(scope: Scope) -> Handle:
         scope.look_up("r_Delta", load(PACKAGE, "drift").entry(kind, risk))
         moment_frame = _divided_by_rho(scope)
         if moment_frame and scope.number("rho") is None:
-            missing = "rho (redundancy factor; it divides the allowable drift of a moment frame)"
+            missing = f"{scope.plain('rho')} (redundancy factor; it divides the allowable drift of a moment frame)"
             return scope.verdict("drift", title, NOT_CHECKED, rule("12.12.1.1"), missing=missing)
         formula = formulas.DELTA_A_RHO if moment_frame else formulas.DELTA_A
         if scope.find("delta_xe") is None:
@@ -224,7 +224,7 @@ def stability(scope: Scope) -> Handle:
         lists = ("P_x", "Delta", "V_x", "h_sx")
         absent = [name for name in lists if scope.find(name) is None]
         if absent:
-            missing = ", ".join(f"{name} ({scope.symbol(name).meaning})" for name in absent)
+            missing = ", ".join(f"{scope.plain(name)} ({scope.symbol(name).meaning})" for name in absent)
             return scope.verdict("stability", title, NOT_CHECKED, rule("12.8.7"), missing=missing)
         theta = scope.compute(formulas.THETA)
         scope.table("stability", "Stability coefficients", [*lists, "theta"], head="Story below")

@@ -8,6 +8,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from itertools import pairwise
+from math import ceil
 from typing import TYPE_CHECKING, Any
 
 from calckit.core.book import Entry, this_cell
@@ -226,16 +227,24 @@ def spectrum_ordinates(scope: Scope, periods: Sequence[float]) -> Handle:
         return handle
 
 
-def spectrum_curve(scope: Scope, longest: float) -> tuple[list[float], list[float]]:
+def spectrum_curve(scope: Scope, longest: float | None) -> tuple[list[float], list[float]]:
     """Periods up to `longest` with the corners among them, and S_a at each, for a figure; writes no line."""
     names = ("S_DS", "S_D1", "T_0", "T_S", "T_L")
     faults = [scope.missing(name) for name in names if scope.number(name) is None]
     if faults:
         raise InputError("asce7.spectrum_curve", faults)
     values = {name: scope.number(name) or 0.0 for name in names}
+    longest = _past_all_periods(scope) if longest is None else longest
     corners = {values[name] for name in ("T_0", "T_S", "T_L") if values[name] <= longest}
     periods = sorted({0.0, longest, *corners, *(longest * step / CURVE_POINTS for step in range(1, CURVE_POINTS))})
     return periods, [formulas.S_A.value(values | {"T_r": period}) for period in periods]
+
+
+def _past_all_periods(scope: Scope) -> float:
+    """The next half second past every period of every part."""
+    parts = scope.calc.parts.values()
+    periods = [part.number(name, "s") or 0.0 for part in parts for name in ("T_a", "T_max", "T", "T_analysis")]
+    return max(2.0, 0.5 * ceil(2.2 * max(periods, default=0.0)))
 
 
 def design_category(scope: Scope) -> Handles:

@@ -68,8 +68,11 @@ class Steps:
 
         return hazard.spectrum_ordinates(self._scope, periods)
 
-    def spectrum_curve(self, longest: float) -> tuple[list[float], list[float]]:
-        """Periods in s up to `longest`, the corners among them, and S_a at each, for a figure; writes no line."""
+    def spectrum_curve(self, longest: float | None = None) -> tuple[list[float], list[float]]:
+        """Periods in s, the corners among them, and S_a at each, for a figure; writes no line.
+
+        The curve ends at `longest`; left out, it goes past the periods of all parts.
+        """
         from calckit.standards.asce7 import hazard
 
         return hazard.spectrum_curve(self._scope, longest)
