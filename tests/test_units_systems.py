@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterator
 from typing import Any
 
@@ -23,6 +24,8 @@ TWO_DECLARATIONS = 1e-3
 
 EMPIRICAL_COLUMNS = {"C_t", "wh_x", "sum_wh"}
 """Coefficients printed for feet and for meters, and sums of kip ft^k and of kN m^k: other numbers by their nature."""
+RESIDUAL = "sum_of_lateral_forces_equals_base_shear"
+"""A check whose ratio is what rounding to 12 digits leaves: nothing to compare, only to be small."""
 
 
 def results(record: Record) -> dict[str, tuple[list[float], str]]:
@@ -69,7 +72,8 @@ def test_typed_in_either_system_under_one_declaration(system: str, second: bool)
 def test_two_declarations_agree_within_a_thousandth() -> None:
     us, si = Building().record(units="US"), Building().record(units="SI")
     assert len(list(compared(us, si))) > 130
-    assert apart(us, si, TWO_DECLARATIONS) == []
+    assert [found for found in apart(us, si, TWO_DECLARATIONS) if not found[0].endswith(RESIDUAL)] == []
+    assert all(abs(float(r.line(f"{part}.{RESIDUAL}").value)) < 1e-6 for r in (us, si) for part in ("X", "Y"))
     # and they are two: the printed coefficients differ
     assert (us.line("X.C_t").value, si.line("X.C_t").value) == (0.028, 0.0724)
     assert us.line("X.T_a").value != si.line("X.T_a").value
@@ -82,7 +86,7 @@ def test_the_unit_set_picks_declaration_and_display() -> None:
     assert typed_si.line("X.T_a").detail == "h_n = 24.384 m = 80.00 ft"
     typed_us = Building().record(units="SI")
     assert (typed_us.line("X.V").unit, typed_us.line("X.Delta").unit) == ("kN", "mm")
-    assert typed_us.line("X.T_a").inputs["h_n"].shown == "80 ft = 24.38 m"
+    assert typed_us.line("X.T_a").inputs["h_n"].shown == "80 ft = 24.384 m"
 
 
 # every formula with its operands in every unit
@@ -187,8 +191,10 @@ def unit_of(name: str) -> str:
 
 @pytest.mark.parametrize("name", [name for name, formula in ALL.items() if not formula.units])
 def test_formula_is_homogeneous(name: str) -> None:
-    formula = ALL[name]
-    scales = {sympy.Symbol(n, positive=True): scale(unit_of(n)) for n in formula.names}
+    # the value one level down is another number of the same kind: a symbol of its own
+    own = ALL[name]
+    formula = Formula(own.result, re.sub(r"below\((\w+)\)", r"\1below", own.text), own.source)
+    scales = {sympy.Symbol(n, positive=True): scale(unit_of(n.removesuffix("below"))) for n in formula.names}
     factor = degrees(formula.node.plain(), scales)
     assert sympy.simplify(factor / scale(unit_of(formula.result))) == 1
 

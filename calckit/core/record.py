@@ -111,10 +111,11 @@ class Line:
     """One numbered statement of the calculation.
 
     `value` is a number, a word, or a list (one entry for each of `rows`, roof first). `shown` is the printed result
-    with its unit; for a list, the printed entries without unit. `forms` holds `[symbolic, substituted]` as complete
-    relations (`T_a = ...`) for each of plain, latex, mathml and typst; for a list they work the row `row` in full.
-    `typeset` is the symbol alone in the same four forms. `text` is the wording of a note, judgment or basis; `detail`
-    the look-up of a table value or the branch that applies; `missing` what a check that was not made is waiting for.
+    with its unit; for a list, the printed entries without unit. `forms` holds `[symbolic, substituted]`, the
+    right-hand sides (for a check the whole relation), for each of plain, latex, mathml and typst; for a list they work
+    the row `row` in full. `typeset` is the symbol alone in the same four forms. `text` is the wording of a note,
+    judgment or basis; `detail` the look-up of a table value or the branch that applies; `missing` what a check that
+    was not made is waiting for.
     """
 
     id: str

@@ -140,7 +140,9 @@ def compute(
         rows=list(inputs.rows) if listed else [], row=inputs.rows[worked] if worked is not None else "",
         formula=formula.text, inputs=_recorded(inputs, printed), forms=_forms(scope, formula, inputs, printed, worked),
         typeset=scope.typeset(symbol), source=formula.source,
-        detail="; ".join(part for part in (detail, _conversions(scope, inputs, printed)) if part),
+        detail="; ".join(
+            part for part in (detail, _declared_units(scope, formula), _conversions(scope, inputs, printed)) if part
+        ),
         flags=[*flags, *_typed_flags(scope, inputs)],
     )  # fmt: skip
 
@@ -287,6 +289,13 @@ def _forms(
     symbolic = print_all(formula.node, scope.symbol)
     substituted = print_all(formula.node, scope.symbol, shown, env)
     return {name: [symbolic[name], substituted[name]] for name in symbolic}
+
+
+def _declared_units(scope: Scope, formula: Formula) -> str:
+    """The units in which an empirical formula takes its operands: "h_n in ft"."""
+    pairs = {name: pair[scope.system == "SI"] for name, pair in (formula.units or {}).items() if name in formula.names}
+    listed = ", ".join(f"{scope.plain(name)} in {units.shown(unit)}" for name, unit in pairs.items())
+    return f"with {listed}" if listed else ""
 
 
 def _conversions(scope: Scope, inputs: Inputs, printed: Mapping[str, tuple[str, ...]]) -> str:
