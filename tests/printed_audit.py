@@ -14,7 +14,17 @@ from itertools import combinations
 from typing import Any
 
 from tests.printed_digits import (
-    UNITS, Audit, Formula, Reader, Relation, decimals, factor, inputs_of, last_numeral, printed, rounded,
+    UNITS,
+    Audit,
+    Formula,
+    Reader,
+    Relation,
+    decimals,
+    factor,
+    inputs_of,
+    last_numeral,
+    printed,
+    rounded,
 )  # fmt: skip
 
 Json = Mapping[str, Any]
@@ -57,7 +67,9 @@ def _computed(found: Audit, line: Json, lines: Mapping[str, Json]) -> None:
     found.item(kind, good, f"{line['id']} = {text} gives {rounded(value, places)}, printed {shown[0]}")
     row = line["rows"].index(line["row"]) if line["rows"] else None
     values = {name: _operand(line["inputs"][key]["shown"]) for name, key in inputs_of(line).items()}
-    rows = next((lines[key]["rows"] for key, operand in line["inputs"].items() if isinstance(operand["shown"], list)), [])
+    rows = next(
+        (lines[key]["rows"] for key, operand in line["inputs"].items() if isinstance(operand["shown"], list)), []
+    )
     again = Formula(line["formula"], values, rows).at(row)
     found.item(
         "formula with its inputs", rounded(again, places) == numeral,
@@ -216,7 +228,9 @@ def printed_forms(record: Json, lines: Mapping[str, Json]) -> Iterator[tuple[tup
         for candidate in line["candidates"]:
             if candidate["line"]:
                 origin = lines[candidate["line"]]
-                yield from _entries(candidate["line"], [], candidate["shown"], origin["unit"], f"candidate of {line['id']}")
+                yield from _entries(
+                    candidate["line"], [], candidate["shown"], origin["unit"], f"candidate of {line['id']}"
+                )
     for table in record["tables"]:
         for place, id_ in enumerate(table["lines"]):
             cells = [row[place] for row in table["shown"]]

@@ -158,3 +158,10 @@ def test_issue_refuses_before_it_runs_anything(
 def test_the_module_is_the_same_program() -> None:
     result = subprocess.run([sys.executable, "-m", "calckit", "--version"], capture_output=True, text=True, check=True)
     assert result.stdout == f"calckit {calckit.__version__}\n"
+
+
+def test_the_templates_of_the_kit_are_listed(capsys: Capture) -> None:
+    assert cli.main(["new"]) == 0
+    listed = dict(line.split(maxsplit=1) for line in capsys.readouterr().out.splitlines())
+    assert "building_lateral_force" in listed
+    assert all(listed.values())

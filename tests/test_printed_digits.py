@@ -209,7 +209,7 @@ def test_checker_reads_and_works(text: str, value: str) -> None:
 
 @pytest.mark.parametrize("text", ["2 +", "(2", "2 ? 3", "a_b + 1", "2 3", "max(1, 2", "1 < 2 < 3", ""])
 def test_checker_refuses_what_it_does_not_read(text: str) -> None:
-    with pytest.raises(ValueError, match="is not read|is missing"):
+    with pytest.raises(ValueError, match=r"is not read|is missing"):
         evaluate(text)
 
 

@@ -12,13 +12,12 @@ from typing import Any
 
 from calckit.core import settings
 from calckit.core.book import Book, _shell
+from calckit.core.record import STATUSES
 from calckit.core.sources import Document, Sources
 from calckit.core.standard import edition
 from calckit.core.symbol import Symbol
 from calckit.core.writer import Writer
 from calckit.errors import DuplicateError, Fault, InputError, UnknownNameError
-
-STATUSES = ("preliminary", "for check", "checked", "for construction", "superseded", "void")
 
 _current: list[Calc] = []
 

@@ -8,7 +8,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Sequence
-from dataclasses import asdict
+from dataclasses import asdict, replace
 from typing import Any
 
 from calckit import units
@@ -30,7 +30,7 @@ def show(lines: Sequence[Line], tables: Sequence[Table], notices: Sequence[str])
 
 
 def bundle(lines: Sequence[Line], tables: Sequence[Table], notices: Sequence[str]) -> dict[str, Any]:
-    """The output forms of these lines."""
+    """The output forms of these lines; number and section are given at issue only."""
     data: dict[str, Any] = {
         "text/plain": "\n".join([*(plain(line) for line in lines), *(_plain_table(t) for t in tables), *notices]),
         "text/markdown": "\n\n".join(
@@ -40,7 +40,7 @@ def bundle(lines: Sequence[Line], tables: Sequence[Table], notices: Sequence[str
                 *(_escaped(n) for n in notices),
             ]
         ),
-        MIME: {"lines": [asdict(line) for line in lines], "tables": [asdict(table) for table in tables]},
+        MIME: {"lines": [asdict(replace(line, n=0, section="")) for line in lines], "tables": [asdict(table) for table in tables]},
     }
     if len(lines) == 1 and not tables and not notices and lines[0].forms:
         data["text/latex"] = f"$\\displaystyle {_latex(lines[0])}$"

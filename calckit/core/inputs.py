@@ -65,6 +65,9 @@ def read(symbol: Symbol, raw: Any, system: str) -> Reading | Fault:
     limits_hold = unit == quantity.unit or not (symbol.low or symbol.high)
     number = quantity.value if limits_hold else quantity.to(unit).value
     fault = symbol.fault(number, shown)
+    if fault and unit != quantity.unit:
+        typed = f"{quantity.numeral} {shown}"
+        fault = _fault(symbol, f"{fault.needed} {units.shown(unit)}", typed, fault.cure)
     return fault or Reading(quantity.value, quantity.unit, quantity.numeral)
 
 
@@ -78,8 +81,11 @@ def own_symbol(name: str, meaning: str, unit: str, raw: Any = None, words: bool 
     if not unit and isinstance(raw, str):
         try:
             unit = units.parse(raw).unit
-        except UnitError:
-            return Symbol(name, meaning, "words")
+        except UnitError as error:
+            if not raw.strip()[:1].isdigit():
+                return Symbol(name, meaning, "words")
+            cure = error.faults[0].cure or "words start with a letter"
+            raise UnitError("value", [Fault(name, "a number and a unit the kit knows", raw, cure, meaning)]) from None
     unit = units.canonical(unit)
     kind = next((kind for kind, pair in KINDS.items() if unit and unit in pair), "other" if unit else "number")
     return Symbol(name, meaning, kind, own_unit=unit)

@@ -113,7 +113,7 @@ def _dual_call(name: str, x: Dual) -> Dual:
 DUALS = Arithmetic(lambda text: Dual(float(text)), _dual_call)
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Dimensioned:
     """A number with the powers of mass, length and time it carries; refuses sums of unlike kinds."""
 
@@ -149,6 +149,15 @@ class Dimensioned:
         other._alike(Dimensioned(0.0), "power with an exponent")
         raised = tuple(power * other.value for power in self.powers)
         return Dimensioned(self.value**other.value, raised)  # type: ignore[arg-type]
+
+    def __eq__(self, other: object) -> bool:
+        if not isinstance(other, Dimensioned):
+            return NotImplemented
+        self._alike(other, "comparison")
+        return self.value == other.value
+
+    def __hash__(self) -> int:
+        return hash((self.value, self.powers))
 
     def __lt__(self, other: Dimensioned) -> bool:
         self._alike(other, "comparison")

@@ -7,6 +7,7 @@ the issuing process reads formulas through this module alone.
 from __future__ import annotations
 
 import ast
+import re
 from dataclasses import dataclass
 from functools import cache
 
@@ -24,6 +25,7 @@ FUNCTIONS = {
 
 COMPARISONS = {ast.Lt: "<", ast.LtE: "<=", ast.Gt: ">", ast.GtE: ">=", ast.Eq: "==", ast.NotEq: "!="}
 _OPERATORS = (ast.Add, ast.Sub, ast.Mult, ast.Div, ast.Pow)
+_NUMERAL = re.compile(r"(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?")
 
 
 @dataclass(frozen=True)
@@ -54,7 +56,7 @@ def parse(text: str) -> Parsed:
     except SyntaxError as error:
         raise ExpressionError(f"expression {text!r}: {error.msg} at character {error.offset}") from None
     names: dict[str, None] = {}
-    _check(tree, source, names)
+    _check(tree, source, names, relation=True)
     return Parsed(source, tree, tuple(names))
 
 
@@ -67,7 +69,7 @@ def dotted(node: ast.expr) -> str | None:
     return None
 
 
-def _check(node: ast.AST, text: str, names: dict[str, None]) -> None:
+def _check(node: ast.AST, text: str, names: dict[str, None], relation: bool = False) -> None:
     name = dotted(node) if isinstance(node, ast.expr) else None
     if name:
         names.setdefault(name)
@@ -75,7 +77,9 @@ def _check(node: ast.AST, text: str, names: dict[str, None]) -> None:
     match node:
         case ast.Constant(value=bool() | complex() | None) | ast.Constant(value=str()):
             raise _refused(node, text, "only numbers may stand as constants")
-        case ast.Constant(value=int() | float()):
+        case ast.Constant() if not _NUMERAL.fullmatch(ast.get_source_segment(text, node) or ""):
+            raise _refused(node, text, "write numbers in plain digits, such as 1250 or 1.25e3")
+        case ast.Constant():
             return
         case ast.BinOp(op=ast.BitXor()):
             raise _refused(node, text, "write ** for a power, not ^")
@@ -84,12 +88,14 @@ def _check(node: ast.AST, text: str, names: dict[str, None]) -> None:
             _check(right, text, names)
         case ast.UnaryOp(op=ast.USub(), operand=operand):
             _check(operand, text, names)
+        case ast.Compare() if not relation:
+            raise _refused(node, text, "a comparison stands alone in a check, or between if and else")
         case ast.Compare(left=left, ops=[op], comparators=[right]) if type(op) in COMPARISONS:
             _check(left, text, names)
             _check(right, text, names)
         case ast.IfExp(test=ast.Compare() as test, body=body, orelse=orelse):
             for child in (body, test, orelse):
-                _check(child, text, names)
+                _check(child, text, names, relation=child is test)
         case ast.Call(func=ast.Name(id=function), args=args, keywords=[]):
             _check_call(node, function, args, text, names)
         case _:

@@ -14,7 +14,7 @@ from calckit.core.assemble import assemble
 from calckit.core.calc import current
 
 
-def hand_over() -> None:
+def deliver() -> None:
     """Write outcome.json, figures and files into the run folder; outside a run nothing happens."""
     run = settings.current()
     if run.folder is None:

@@ -19,7 +19,7 @@ from calckit.core.handle import Handle
 from calckit.core.inputs import NONE, Reading, read
 from calckit.core.record import NOT_OK, Flag, Line, Operand, Override, Source
 from calckit.core.symbol import Symbol
-from calckit.errors import Fault, InputError, StaleObjectError, UnknownNameError
+from calckit.errors import Fault, InputError, StaleObjectError, UnknownNameError, nearest_first
 
 if TYPE_CHECKING:
     from calckit.core.book import Book
@@ -102,8 +102,12 @@ class Scope:
         unit = symbol.unit(self.system)
         words = ", ".join(symbol.choices) or "a word"
         needed = words if symbol.kind == "words" else f"a number{' in ' + units.shown(unit) if unit else ''}"
-        given = f"{line.value} ({line.text})" if line else "nothing"
-        return Fault(name, needed, given, f"supply it with {supplier}", symbol.meaning)
+        given = str(line.shown) if line else "nothing"
+        cure = f"supply it with {supplier}"
+        known = {**self.calc.standard.symbols, **self.calc.own_symbols}
+        if symbol.name not in known:
+            cure += f", or did you mean {', '.join(nearest_first(symbol.name, known)[:4])}?"
+        return Fault(name, needed, given, cure, symbol.meaning if symbol.name in known else "")
 
     def title_of(self, symbol: str) -> str:
         """A symbol with its meaning, for messages."""

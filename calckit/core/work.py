@@ -201,7 +201,10 @@ def _same_kind(formula: Formula, inputs: Inputs, unit: str, row: int | None) -> 
         return [Dimensioned(v, powers) for v in value] if isinstance(value, list) else Dimensioned(value, powers)
 
     env = formula.env({name: dimensioned(name) for name in inputs.values}, DIMENSIONS, inputs.rows, row)
-    result = formula.node.value(env)
+    try:
+        result = formula.node.value(env)
+    except ExpressionError as error:
+        raise ExpressionError(f"{formula.result} = {formula.text}: {error}") from None
     if any(abs(a - b) > 1e-9 for a, b in zip(result.powers, units.powers(unit), strict=True)):
         given = f"{result.kind()} from {formula.text}"
         needed = f"a unit of the kind of the right-hand side, not {units.shown(unit) or 'a plain number'}"
@@ -400,7 +403,11 @@ def _comparable(relation: Formula, inputs: Inputs, row: int | None) -> None:
         value = inputs.values[name]
         return [Dimensioned(v, powers) for v in value] if isinstance(value, list) else Dimensioned(value, powers)
 
-    plain.node.value(plain.env({name: dimensioned(name) for name in inputs.values}, DIMENSIONS, inputs.rows, row))
+    env = plain.env({name: dimensioned(name) for name in inputs.values}, DIMENSIONS, inputs.rows, row)
+    try:
+        plain.node.value(env)
+    except ExpressionError as error:
+        raise ExpressionError(f"check {relation.result!r}, {relation.text}: {error}") from None
 
 
 def _reversed(

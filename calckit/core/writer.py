@@ -5,6 +5,7 @@ Knows how each kind of line is made from what is typed. Must not know any standa
 
 from __future__ import annotations
 
+import ast
 import csv
 import io
 import re
@@ -22,7 +23,7 @@ from calckit.core.parser import parse
 from calckit.core.record import Figure, Flag, Line, Source
 from calckit.core.scope import OPEN_ANSWER, Scope
 from calckit.core.symbol import Symbol
-from calckit.errors import CalckitError, Fault, InputError, UnknownNameError
+from calckit.errors import CalckitError, ExpressionError, Fault, InputError, UnknownNameError
 
 NO_MODEL = "none: no model yet"
 _ID = re.compile(r"[\w.\-]+\Z")
@@ -206,7 +207,8 @@ class Writer(Scope):
         `expression` uses symbols of this scope, `part.symbol`, + - * / **, comparisons, `a if c else b`, sqrt exp log
         sin cos tan min max abs, `total(...)`, `above(...)`, `below(...)`, `level(F_x, "5")`. Units are checked.
         """
-        parse(expression)
+        if isinstance(parse(expression).tree, ast.Compare):
+            raise ExpressionError(f"line {name!r}: {expression!r} is a relation; write it with check(...)")
         symbol = own_symbol(name, meaning or self._known_meaning(name), unit)
         if isinstance(symbol, Fault):
             raise InputError("line", [symbol])

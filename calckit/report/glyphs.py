@@ -10,15 +10,16 @@ import unicodedata
 from collections.abc import Iterable
 from pathlib import Path
 from tempfile import TemporaryDirectory
+from typing import Literal
 
 import typst
 
-STANDARDS = ["a-3a", "ua-1"]
+STANDARDS: tuple[Literal["a-3a"], Literal["ua-1"]] = ("a-3a", "ua-1")
 """What the report is held to; under these Typst refuses a character that no font holds."""
 
 _UNSEEN = ("Cc", "Cf", "Cn", "Co", "Cs")
 _LINE = re.compile(r"probe\.typ:(\d+):")
-_known: dict[str, bool] = {character: True for character in "\n\t"}
+_known: dict[str, bool] = dict.fromkeys("\n\t", True)
 
 
 def lacking(characters: Iterable[str]) -> set[str]:
@@ -55,7 +56,9 @@ def _refused(characters: list[str]) -> set[str]:
             rows = [f'#"\\u{{{ord(character):x}}}" \\' for character in left]
             probe.write_text("\n".join([*head, *rows]), encoding="utf-8")
             try:
-                typst.compile(str(probe), root=folder, ignore_system_fonts=True, pdf_standards=STANDARDS, timestamp=0)
+                typst.compile(
+                    str(probe), root=folder, ignore_system_fonts=True, pdf_standards=[*STANDARDS], timestamp=0
+                )
             except typst.TypstError as error:
                 places = {int(place) - len(head) - 1 for place in _LINE.findall(str(error.diagnostic))}
                 if not places:

@@ -25,6 +25,7 @@ LABELS = {
 }
 """The kinds of lines in the reader's words."""
 
+
 def typeset(forms: Mapping[str, str]) -> Typeset | None:
     """The four forms of a symbol; None where the record holds none (words have no symbol)."""
     return Typeset(forms["plain"], forms["latex"], forms["mathml"], forms["typst"]) if forms else None

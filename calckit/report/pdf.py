@@ -26,6 +26,7 @@ from calckit.report.glyphs import STANDARDS, code_point, lacking
 from calckit.report.model import View
 
 _ASSETS = resources.files("calckit.report").joinpath("assets")
+_TEMPLATES = ("report.typ", "pieces.typ")
 _NOT_PRINTED = ("latex", "mathml", "svg")
 _EXCERPT = 60
 _SVG = re.compile(r"<svg\b[^>]*>", re.DOTALL)
@@ -43,7 +44,7 @@ def render(view: View, *, figures: Mapping[str, bytes], attachments: Sequence[At
     """
     data = _data(view)
     data["keywords"] = [seal.PLACEHOLDER]
-    files: dict[str, bytes] = {"report.typ": _ASSETS.joinpath("report.typ").read_bytes()}
+    files = {name: _ASSETS.joinpath(name).read_bytes() for name in _TEMPLATES}
     data["attachments"] = []
     for number, attached in enumerate(attachments):
         path = f"attached-{number}"
@@ -107,7 +108,7 @@ def _compile(files: Mapping[str, bytes], day: datetime) -> bytes:
             (Path(folder) / name).write_bytes(content)
         try:
             return typst.compile(
-                str(Path(folder) / "report.typ"), root=folder, ignore_system_fonts=True, pdf_standards=STANDARDS,
+                str(Path(folder) / "report.typ"), root=folder, ignore_system_fonts=True, pdf_standards=[*STANDARDS],
                 timestamp=int(day.timestamp()),
             )  # fmt: skip
         except typst.TypstError as error:

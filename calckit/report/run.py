@@ -32,7 +32,7 @@ from calckit.core.record import Record, from_json
 from calckit.errors import NotebookError
 from calckit.report.notebook import Cell, Notebook
 
-_HAND_OVER = "from calckit.core.run import hand_over; hand_over()"
+_DELIVER = "from calckit.core.run import deliver; deliver()"
 _KERNEL_OPTIONS = ("--HistoryManager.enabled=False", "--InteractiveShellApp.exec_PYTHONSTARTUP=False")
 _QUIET = logging.getLogger("calckit.run")
 _QUIET.addHandler(logging.NullHandler())
@@ -157,7 +157,7 @@ async def _execute_cells(notebook: Notebook, folder: Path) -> tuple[Any, str, st
             if replies[-1]["status"] != "ok":
                 failure = _failure(cell, len(replies), heading, replies[-1])
                 break
-        node.cells.append(nbformat.v4.new_code_cell(_HAND_OVER))  # type: ignore[no-untyped-call]
+        node.cells.append(nbformat.v4.new_code_cell(_DELIVER))  # type: ignore[no-untyped-call]
         await client.async_execute_cell(node.cells[-1], len(node.cells) - 1)
         node.cells.pop()
         if replies[-1]["status"] != "ok":

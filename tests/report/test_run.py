@@ -160,8 +160,8 @@ def test_problems_are_handed_over_even_when_a_cell_raised(write_notebook: WriteN
     assert outcome.failure.startswith("cell [3], line 1: ZeroDivisionError")
 
 
-def test_a_hand_over_that_fails_is_said(write_notebook: WriteNotebook) -> None:
-    path = write_notebook(KERNEL, "stand_in.hand_over = lambda: 1 / 0")
+def test_a_deliver_that_fails_is_said(write_notebook: WriteNotebook) -> None:
+    path = write_notebook(KERNEL, "stand_in.deliver = lambda: 1 / 0")
     with pytest.raises(NotebookError, match="cannot be handed over to the report: ZeroDivisionError: division by zero"):
         run(notebook.read(path), Settings())
 

@@ -1,0 +1,47 @@
+"""The committed examples are what the kit gives today, and are intact."""
+
+import os
+import subprocess
+import sys
+from pathlib import Path
+
+import pytest
+
+from calckit.core.record import from_json
+from calckit.report import notebook
+from calckit.report.issue import produce
+from calckit.report.recheck import recheck
+from calckit.report.run import Settings
+
+ROOT = Path(__file__).parents[1]
+EXAMPLES = ROOT / "example_reports"
+NOTEBOOKS = sorted(EXAMPLES.glob("*.ipynb"))
+
+
+def test_there_is_an_example_of_every_template() -> None:
+    assert [path.name for path in NOTEBOOKS] == sorted(path.name for path in (ROOT / "templates").glob("*.ipynb"))
+
+
+@pytest.mark.parametrize("path", NOTEBOOKS, ids=lambda path: path.stem)
+def test_stored_outputs_are_reproduced(path: Path) -> None:
+    command = [sys.executable, "-m", "pytest", "-q", "-p", "no:cacheprovider", "--nbval-lax", str(path)]
+    environment = {**os.environ, "PYTHONPATH": str(ROOT)}
+    ran = subprocess.run(command, cwd=path.parent, env=environment, capture_output=True, text=True, check=False)
+    assert ran.returncode == 0, ran.stdout + ran.stderr
+    checked = path.read_text(encoding="utf-8").count("nbval-check-output")
+    assert checked >= 10
+
+
+@pytest.mark.parametrize("path", sorted(EXAMPLES.glob("*.record.json")), ids=lambda path: path.stem)
+def test_the_same_lines_again(path: Path) -> None:
+    stored = from_json(path.read_text(encoding="utf-8"))
+    source = notebook.read(ROOT / "templates" / f"{stored.calculation['notebook']}.ipynb")
+    again = produce(source, Settings(), formats=()).record
+    assert again.lines == stored.lines
+    assert again.tables == stored.tables
+    assert (again.source, again.lines_hash) == (stored.source, stored.lines_hash)
+
+
+@pytest.mark.parametrize("path", sorted([*EXAMPLES.glob("*.pdf"), *EXAMPLES.glob("*.html")]), ids=lambda path: path.name)
+def test_the_files_are_intact(path: Path) -> None:
+    assert [finding for finding in recheck(path) if not finding.good] == []
