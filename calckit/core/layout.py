@@ -141,17 +141,28 @@ class Form(Printer):
     def _united(self, node: sympy.Expr) -> bool:
         return isinstance(node, Ref) and self.operands is not None and bool(self._operand(node.name).unit)
 
+    def _chosen(self, node: sympy.Expr) -> sympy.Expr:
+        """With numbers, the branch that applies stands in place of its cases."""
+        while isinstance(node, Cases) and self.operands is not None:
+            assert self.env is not None
+            node = node.branch(self.env)
+        return node
+
     def _base(self, node: sympy.Expr) -> str:
+        node = self._chosen(node)
         simple = isinstance(node, Ref | Literal) and not self._signed(node) and not self._united(node)
         return self._print(node) if simple and not self._composite(node) else self.bracket(self._print(node))
 
     def _factor(self, node: sympy.Expr, first: bool = False) -> str:
+        node = self._chosen(node)
         loose = isinstance(node, Plus | Negative | Cases | Relation | Total | Below) or self._signed(node)
         slashed = isinstance(node, Quotient) and not self.stacked and not first
         return self.bracket(self._print(node)) if loose or slashed else self._print(node)
 
-    def _term(self, node: sympy.Expr) -> str:
-        loose = isinstance(node, Plus | Negative | Relation) or self._signed(node)
+    def _term(self, node: sympy.Expr, taken: bool = False) -> str:
+        node = self._chosen(node)
+        added_up = taken and isinstance(node, Total) and self.operands is not None
+        loose = isinstance(node, Plus | Negative | Cases | Relation) or self._signed(node) or added_up
         return self.bracket(self._print(node)) if loose else self._print(node)
 
     def _under(self, node: sympy.Expr) -> str:
@@ -199,10 +210,11 @@ class Form(Printer):
         return self.negated(self._factor(node.args[0]))
 
     def _print_Plus(self, node: Plus) -> str:
-        text = self._print(node.args[0])
+        first = node.args[0]
+        text = self._term(first) if isinstance(first, Cases) and self.operands is None else self._print(first)
         for term in node.args[1:]:
             taken = isinstance(term, Negative)
-            text += self.sign(self.minus if taken else "+") + self._term(term.args[0] if taken else term)
+            text += self.sign(self.minus if taken else "+") + self._term(term.args[0] if taken else term, taken)
         return text
 
     def _print_Product(self, node: Product) -> str:
@@ -227,7 +239,7 @@ class Form(Printer):
     def _print_Power(self, node: Power) -> str:
         exponent = node.args[1]
         raised = self._slash(exponent) if isinstance(exponent, Quotient) else self._print(exponent)
-        if not self.stacked and not isinstance(exponent, Ref | Literal):
+        if not self.stacked and (not isinstance(exponent, Ref | Literal) or self._composite(exponent)):
             raised = self.bracket(raised)
         return self.power(self._base(node.args[0]), raised)
 
@@ -253,8 +265,7 @@ class Form(Printer):
 
     def _print_Cases(self, node: Cases) -> str:
         if self.operands is not None:
-            assert self.env is not None
-            return self._print(node.branch(self.env))
+            return self._print(self._chosen(node))
         branches: list[tuple[str, str]] = []
         rest: sympy.Expr = node
         while isinstance(rest, Cases):

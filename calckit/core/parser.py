@@ -25,7 +25,7 @@ FUNCTIONS = {
 
 COMPARISONS = {ast.Lt: "<", ast.LtE: "<=", ast.Gt: ">", ast.GtE: ">=", ast.Eq: "==", ast.NotEq: "!="}
 _OPERATORS = (ast.Add, ast.Sub, ast.Mult, ast.Div, ast.Pow)
-_NUMERAL = re.compile(r"(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?")
+_NUMERAL = re.compile(r"\d+(?:\.\d+)?")
 
 
 @dataclass(frozen=True)
@@ -78,7 +78,7 @@ def _check(node: ast.AST, text: str, names: dict[str, None], relation: bool = Fa
         case ast.Constant(value=bool() | complex() | None) | ast.Constant(value=str()):
             raise _refused(node, text, "only numbers may stand as constants")
         case ast.Constant() if not _NUMERAL.fullmatch(ast.get_source_segment(text, node) or ""):
-            raise _refused(node, text, "write numbers in plain digits, such as 1250 or 1.25e3")
+            raise _refused(node, text, "write numbers in plain digits, such as 1250 or 0.25")
         case ast.Constant():
             return
         case ast.BinOp(op=ast.BitXor()):

@@ -56,10 +56,15 @@ class Scope:
         return f"{self.id}.{symbol}" if self.id else symbol
 
     def symbol(self, name: str) -> Symbol:
-        """The symbol a name stands for: the standard's, else the user's own, else one spelt by the name alone."""
-        plain = name.rpartition(".")[2]
-        found = self.calc.standard.symbols.get(plain) or self.calc.own_symbols.get(plain)
-        return found or Symbol(plain, plain)
+        """The symbol a name stands for: the standard's, else the user's own, else one spelt by the name alone.
+
+        The symbol of another part carries that part in its subscript.
+        """
+        part, _, plain = name.rpartition(".")
+        found = self.calc.standard.symbols.get(plain) or self.calc.own_symbols.get(plain) or Symbol(plain, plain)
+        if part in ("", self.id):
+            return found
+        return replace(found, sub=", ".join(filter(None, (found.subscript, part))), layout="")
 
     def typeset(self, symbol: Symbol) -> dict[str, str]:
         """A symbol in the four printed forms."""

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import re
 from dataclasses import dataclass
+from decimal import Decimal
 from fractions import Fraction
 from functools import cache
 from importlib import resources
@@ -82,7 +83,7 @@ def known() -> tuple[str, ...]:
 
 @cache
 def _dimension(unit: str) -> tuple[tuple[str, float], ...]:
-    dimension = _registry().Unit(canonical(unit)).dimensionality if unit else {}
+    dimension: Any = _registry().Unit(canonical(unit)).dimensionality if unit else {}
     return tuple(sorted((name.strip("[]"), float(power)) for name, power in dimension.items()))
 
 
@@ -149,8 +150,15 @@ def parse(text: str) -> Quantity:
     match = _TYPED.match(text)
     if not match:
         raise UnitError("quantity", [Fault(text, 'a number and a unit, such as "62 ft"', repr(text))])
-    numeral = match["numeral"]
+    numeral = _plain(match["numeral"])
     return Quantity(float(numeral), canonical(match["unit"] or ""), numeral)
+
+
+def _plain(numeral: str) -> str:
+    """A numeral without sign of plus, bare point or exponent, the digits as typed."""
+    if re.fullmatch(r"-?\d+(\.\d+)?", numeral):
+        return numeral
+    return format(Decimal(numeral), "f")
 
 
 def shown(unit: str) -> str:

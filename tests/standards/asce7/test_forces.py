@@ -148,7 +148,7 @@ def test_rho_does_not_touch_other_drift_limits(system: str, SDC: str) -> None:
 def test_moment_frame_without_rho_is_not_checked() -> None:
     line = drifted().lines.entries["drift"].line
     assert line.verdict == "NOT CHECKED"
-    assert line.missing.startswith("rho ")
+    assert line.missing.startswith("ρ ")
 
 
 def test_drift_without_displacements_is_not_checked() -> None:
