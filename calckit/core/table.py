@@ -81,9 +81,10 @@ class Table:
         points = [(float(column), column, row[column]) for column in axis]
         source = self.source(key)
         for position, column, text in points:
-            end = {axis[0]: value < position, axis[-1]: value > position}.get(column, False)
-            if value == position or end:
-                held = f" (end value, {symbol} beyond the last column)" if end else ""
+            below, beyond = column == axis[0] and value < position, column == axis[-1] and value > position
+            if value == position or below or beyond:
+                side = "below the first" if below else "beyond the last"
+                held = f" (end value, {symbol} {side} column)" if below or beyond else ""
                 return Found(text, "", f"{self.name}, row {key}, column {column}: {text}{held}", source)
         (_, a, low), (_, b, high) = next(
             (left, right) for left, right in pairwise(points) if left[0] < value < right[0]

@@ -224,7 +224,7 @@ def test_text_of_the_user_is_never_markup() -> None:
     odd = Symbol("Q_1", "odd", sub='#{"$<&>_^\\')
     forms = typeset(odd, symbol)
     assert ElementTree.fromstring(forms["mathml"])[0][1].text == '#{"$<&>_^\\'
-    assert forms["latex"] == r'Q_{\mathrm{\#\{"\$<\&>\_\wedge \backslash }}'
+    assert forms["latex"] == r'Q_{\mathrm{\#\{"\$<\&>\_\wedge\ \backslash\ }}'
     assert forms["typst"] == r'Q_"#{\"$<&>_^\\"'
     typst_compiler.compile(f'#eval({_quoted(forms["typst"])}, mode: "math")'.encode())
 

@@ -7,6 +7,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from calckit.core.digits import carried, decimals_for, numeral
 from calckit.core.formula import Formula
 from calckit.core.handle import Handle
 from calckit.core.record import NOT_CHECKED, Candidate, Flag
@@ -111,7 +112,7 @@ def _candidates(scope: Scope, reading: str) -> list[Candidate]:
     )
     return [
         Candidate(
-            line.source.equation or line.source.where,
+            line.source.equation or f"clause {line.source.where}",
             values[name],
             "",
             str(line.shown),
@@ -125,14 +126,14 @@ def _candidates(scope: Scope, reading: str) -> list[Candidate]:
 
 
 def _against_computed(scope: Scope, C_s: Handle) -> str:
-    line = C_s.line
-    W = scope.number("W")
+    """What V would be with the kit's own C_s, where another is in force."""
+    line, W = C_s.line, scope.find("W")
     if not line.computed or not isinstance(line.computed.value, float) or W is None:
         return ""
     change = (float(C_s) / line.computed.value - 1) * 100
-    computed = line.computed.value * W
-    would = f"with the computed C_s = {line.computed.shown}, V would be {computed:.1f}"
-    return f"{would}; the value in force gives {change:+.2f} %"
+    value = carried(line.computed.value * float(W.line.value))  # type: ignore[arg-type]
+    would = f"{numeral(value, decimals_for([value], 4))} {W.line.unit}"
+    return f"with the computed C_s = {line.computed.shown}, V would be {would}; the value in force gives {change:+.2f} %"
 
 
 def vertical_distribution(scope: Scope) -> Handle:
@@ -241,10 +242,10 @@ def _amplify(scope: Scope, theta: Handle) -> list[Flag]:
     values = theta.value if isinstance(theta.value, list) else []
     over = [row for row, value in zip(theta.line.rows, values, strict=True) if value > THRESHOLD]
     if not over:
-        return [Flag(f"theta is not above {THRESHOLD:.2f} in any story: P-delta effects need not be considered")]
+        return [Flag(f"θ is not above {THRESHOLD:.2f} in any story: P-delta effects need not be considered")]
     return [
         Flag(
-            f"theta is above {THRESHOLD:.2f} at {', '.join(over)}: multiply drifts and forces by 1/(1 - theta) there",
+            f"θ is above {THRESHOLD:.2f} at {', '.join(over)}: multiply drifts and forces by 1/(1 - θ) there",
             True,
             "originator",
         )
