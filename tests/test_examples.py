@@ -42,6 +42,9 @@ def test_the_same_lines_again(path: Path) -> None:
     assert (again.source, again.lines_hash) == (stored.source, stored.lines_hash)
 
 
-@pytest.mark.parametrize("path", sorted([*EXAMPLES.glob("*.pdf"), *EXAMPLES.glob("*.html")]), ids=lambda path: path.name)
+ISSUED = sorted([*EXAMPLES.glob("*.pdf"), *EXAMPLES.glob("*.html")])
+
+
+@pytest.mark.parametrize("path", ISSUED, ids=lambda path: path.name)
 def test_the_files_are_intact(path: Path) -> None:
     assert [finding for finding in recheck(path) if not finding.good] == []

@@ -40,7 +40,10 @@ def bundle(lines: Sequence[Line], tables: Sequence[Table], notices: Sequence[str
                 *(_escaped(n) for n in notices),
             ]
         ),
-        MIME: {"lines": [asdict(replace(line, n=0, section="")) for line in lines], "tables": [asdict(table) for table in tables]},
+        MIME: {
+            "lines": [asdict(replace(line, n=0, section="")) for line in lines],
+            "tables": [asdict(table) for table in tables],
+        },
     }
     if len(lines) == 1 and not tables and not notices and lines[0].forms:
         data["text/latex"] = f"$\\displaystyle {_latex(lines[0])}$"

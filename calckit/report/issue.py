@@ -40,11 +40,13 @@ _DAY = re.compile(r"\d{4}-\d{2}-\d{2}")
 
 @dataclass(frozen=True)
 class Report:
-    """A calculation ready to be written: its `record` without seals and the sealed files by format."""
+    """A calculation ready to be written: its `record` without seals, the sealed files by format, and `notices` of what
+    a file cannot show as it was typed."""
 
     name: str
     record: Record
     files: Mapping[str, bytes]
+    notices: Sequence[str] = ()
 
 
 @dataclass(frozen=True)
@@ -116,13 +118,16 @@ def produce(notebook: Notebook, settings: Settings, formats: Sequence[str] = FOR
     model = view.build(record, _content(notebook, record))
     attached = parcel.pack()
     files: dict[str, bytes] = {}
+    notices: list[str] = []
     if "html" in formats:
+        notices += html.missing_glyphs(model)
         files["html"] = seal.apply(html.render(model, figures=outcome.figures, attachments=attached))
     if "pdf" in formats:
         day = record.calculation["date"]
+        notices += [f"shown as a code point in the PDF: {found}" for found in pdf.missing_glyphs(model)]
         files["pdf"] = seal.apply(pdf.render(model, figures=outcome.figures, attachments=attached, date=day))
     fields = record.calculation
-    return Report(report_name(fields.get("number", ""), fields.get("revision", ""), notebook.stem), record, files)
+    return Report(report_name(fields.get("number", ""), fields.get("revision", ""), notebook.stem), record, files, notices)
 
 
 def issue(notebook: Notebook, settings: Settings, folder: Path, formats: Sequence[str] = FORMATS) -> Issued:
@@ -132,7 +137,7 @@ def issue(notebook: Notebook, settings: Settings, folder: Path, formats: Sequenc
     earlier files are then as they were.
     """
     report = produce(notebook, settings, formats)
-    notices = _earlier(folder, report.name)
+    notices = [*report.notices, *_earlier(folder, report.name)]
     seals = {form: seal.seal_of(data) for form, data in report.files.items()}
     for form in FORMATS:
         left = folder / f"{report.name}.{form}"

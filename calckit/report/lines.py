@@ -13,6 +13,7 @@ from calckit import units
 from calckit.core.record import NOT_CHECKED, NOT_OK, TO_BE_CONFIRMED, Candidate, Flag, Line, OpenItem, Record
 from calckit.report.model import CandidateView, FlagView, LineView, OverrideView, Ref, Typeset
 
+FORMS = ("plain", "latex", "mathml", "typst")
 LABELS = {
     "given": "input",
     "assumption": "assumption",
@@ -114,7 +115,9 @@ class Lines:
         Raises KeyError if one of the four printed forms is missing.
         """
         forms = line.forms
-        pairs = zip(forms["plain"], forms["latex"], forms["mathml"], forms["typst"], strict=True) if forms else ()
+        pairs = list(zip(*(forms[name] for name in FORMS), strict=True)) if forms else []
+        if pairs and pairs[0][0] == line.typeset.get("plain"):
+            del pairs[0]  # the symbol is printed as its own formula
         flags = [self._flag(line, flag) for flag in line.flags]
         listed = isinstance(line.shown, list)
         table = self._tables.get(line.id, 0)

@@ -119,8 +119,9 @@ class LineView:
     """One line as printed.
 
     `label` is the kind in the reader's words, blank for a computed line. `steps` are the symbolic and the substituted
-    form: right-hand sides to `symbol`, or complete relations where `relation` is true. `shown` is the result ("" where
-    there is none) and `at` the row of a list that it belongs to. `table` is the number of the table that holds the
+    form: right-hand sides to `symbol`, or complete relations where `relation` is true; the substituted one alone where
+    the symbol prints as its own formula. `shown` is the result ("" where there is none) and `at` the row of a list that
+    it belongs to. `table` is the number of the table that holds the
     list, `values` its entries where no table does. `minor` lines are candidates that do not govern: one row each.
     """
 

@@ -133,7 +133,8 @@ def _against_computed(scope: Scope, C_s: Handle) -> str:
     change = (float(C_s) / line.computed.value - 1) * 100
     value = carried(line.computed.value * float(W.line.value))  # type: ignore[arg-type]
     would = f"{numeral(value, decimals_for([value], 4))} {W.line.unit}"
-    return f"with the computed C_s = {line.computed.shown}, V would be {would}; the value in force gives {change:+.2f} %"
+    own = f"with the computed C_s = {line.computed.shown}, V would be {would}"
+    return f"{own}; the value in force gives {change:+.2f} %"
 
 
 def vertical_distribution(scope: Scope) -> Handle:
