@@ -78,6 +78,10 @@ def _open_items(calc: Calc, lines: list[Line]) -> Iterator[OpenItem]:
     for where, line in used.items():
         if where and where not in calc.sources.confirmed:
             yield OpenItem(f"confirm-{where}", line.id, f"{name} {where}", "holder of the standard", "confirm")
+    overridden = {line.id for line in lines if line.override}
+    for id_ in sorted(calc.overrides.keys() - overridden):
+        text = f"the override of {id_!r} meets no single value computed in this calculation"
+        yield OpenItem(f"override-{id_}", "", text, "originator", "open")
     for what in calc.sources.confirmed:
         if what not in used:
             text = f"the confirmation of {what!r} meets no line of this calculation"

@@ -7,7 +7,7 @@ computed, shown or exported.
 from __future__ import annotations
 
 import copy
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Mapping
 from contextlib import contextmanager
 from dataclasses import dataclass, field, replace
 from typing import Any
@@ -177,12 +177,20 @@ class Book:
     def stale(self) -> dict[str, list[str]]:
         """Lines whose operands are no longer what they were -> the operands; and all that rests on such lines."""
         found: dict[str, list[str]] = {}
-        for id_, entry in self.entries.items():
-            for name, operand in entry.line.inputs.items():
-                now = self.find(entry.line.part, name)
-                if now is None or now.line.content != operand.content or now.line.id in found:
-                    found.setdefault(id_, []).append(name)
-        return found
+        while True:
+            now = {id_: names for id_, entry in self.entries.items() if (names := self._outdated(entry.line, found))}
+            if now == found:
+                return found
+            found = now
+
+    def _outdated(self, line: Line, stale: Mapping[str, object]) -> list[str]:
+        """Operands that are not what they were, or are themselves stale; one typed in place has no line behind it."""
+        now = {name: self.find(line.part, name) for name, operand in line.inputs.items() if operand.content}
+        return [
+            name
+            for name, entry in now.items()
+            if entry is None or entry.line.content != line.inputs[name].content or entry.line.id in stale
+        ]
 
     def snapshot(self) -> list[Line]:
         """Copies of all lines in document order, numbered 1..n."""

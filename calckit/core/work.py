@@ -190,10 +190,8 @@ def _runs_over_rows(formula: Formula, inputs: Inputs) -> bool:
     return bool(inputs.rows) and runs(formula.node)
 
 
-def _same_kind(formula: Formula, inputs: Inputs, unit: str, row: int | None) -> None:
-    """Refuse a homogeneous formula whose sides differ in kind."""
-    if formula.units:
-        return
+def _kind(formula: Formula, inputs: Inputs, row: int | None, what: str) -> Any:
+    """The value with the kind of quantity it has; ExpressionError where unlike quantities are added or compared."""
 
     def dimensioned(name: str) -> Any:
         powers = units.powers(inputs.unit[name])
@@ -202,9 +200,16 @@ def _same_kind(formula: Formula, inputs: Inputs, unit: str, row: int | None) -> 
 
     env = formula.env({name: dimensioned(name) for name in inputs.values}, DIMENSIONS, inputs.rows, row)
     try:
-        result = formula.node.value(env)
+        return formula.node.value(env)
     except ExpressionError as error:
-        raise ExpressionError(f"{formula.result} = {formula.text}: {error}") from None
+        raise ExpressionError(f"{what}: {error}") from None
+
+
+def _same_kind(formula: Formula, inputs: Inputs, unit: str, row: int | None) -> None:
+    """Refuse a homogeneous formula whose sides differ in kind."""
+    if formula.units:
+        return
+    result = _kind(formula, inputs, row, f"{formula.result} = {formula.text}")
     if any(abs(a - b) > 1e-9 for a, b in zip(result.powers, units.powers(unit), strict=True)):
         given = f"{result.kind()} from {formula.text}"
         needed = f"a unit of the kind of the right-hand side, not {units.shown(unit) or 'a plain number'}"
@@ -344,7 +349,7 @@ def check(scope: Scope, id_: str, relation: Formula, *, title: str, flags: Seque
     def env_at(row: int | None) -> Any:
         return relation.env(inputs.values, FLOATS, inputs.rows, row)
 
-    _comparable(relation, inputs, 0 if listed else None)
+    _kind(relation, inputs, 0 if listed else None, f"check {title!r}, {relation.text}")
     sides = [[digits.carried(side.value(env_at(row))) for side in (left, right)] for row in rows]
     holds = [bool(COMPARE[sign](*pair)) for pair in sides]
     safe = all(limit.value(env_at(row)) for row in rows)
@@ -393,21 +398,6 @@ class _Pair:
     def value(self, env: Any) -> tuple[bool, Any]:
         limit = self.limit.value(env)
         return self.relation.value(env), self.demand.value(env) / limit if limit else Decimal(0)
-
-
-def _comparable(relation: Formula, inputs: Inputs, row: int | None) -> None:
-    plain = Formula(relation.result, relation.text, relation.source, relation.units)
-
-    def dimensioned(name: str) -> Any:
-        powers = units.powers(inputs.unit[name])
-        value = inputs.values[name]
-        return [Dimensioned(v, powers) for v in value] if isinstance(value, list) else Dimensioned(value, powers)
-
-    env = plain.env({name: dimensioned(name) for name in inputs.values}, DIMENSIONS, inputs.rows, row)
-    try:
-        plain.node.value(env)
-    except ExpressionError as error:
-        raise ExpressionError(f"check {relation.result!r}, {relation.text}: {error}") from None
 
 
 def _reversed(

@@ -124,7 +124,8 @@ def produce(notebook: Notebook, settings: Settings, formats: Sequence[str] = FOR
         files["html"] = seal.apply(html.render(model, figures=outcome.figures, attachments=attached))
     if "pdf" in formats:
         day = record.calculation["date"]
-        notices += [f"shown as a code point in the PDF: {found}" for found in pdf.missing_glyphs(model)]
+        lacking = pdf.missing_glyphs(model)
+        notices += [f"shown as a code point in the PDF: {found}" for found in lacking]
         files["pdf"] = seal.apply(pdf.render(model, figures=outcome.figures, attachments=attached, date=day))
     fields = record.calculation
     return Report(report_name(fields.get("number", ""), fields.get("revision", ""), notebook.stem), record, files, notices)

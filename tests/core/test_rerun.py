@@ -211,6 +211,27 @@ def test_line_is_stale_when_its_name_means_another_line(live: Session) -> None:
     assert calc.lines.stale() == {"X.V_h": ["V"]}, "X.V stands in front of V now"
 
 
+def test_what_rests_on_a_stale_line_is_found_in_any_order(live: Session) -> None:
+    calc = start(live)
+    with live.cell("in"):
+        calc.given("V", "100 kip", source="S-201")
+
+    def out(write: bool) -> None:
+        with live.cell("out"):
+            if write:
+                calc.line("V_h", "V/2", unit="kip", meaning="half the shear")
+
+    out(True)
+    with live.cell("further"):
+        calc.line("V_q", "V_h/2", unit="kip", meaning="a quarter")
+    out(False)
+    out(True)
+    assert calc.lines.stale() == {}
+    with live.cell("in"):
+        calc.given("V", "120 kip", source="S-201")
+    assert calc.lines.stale() == {"V_h": ["V"], "V_q": ["V_h"]}
+
+
 def test_line_is_stale_when_an_operand_is_gone(live: Session) -> None:
     calc = start(live)
     with live.cell("in"):

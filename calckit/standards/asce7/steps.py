@@ -9,6 +9,7 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING, Any
 
 from calckit.core.handle import Handle, Handles
+from calckit.standards.asce7 import forces, hazard, structure
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -52,20 +53,14 @@ class Steps:
     # chapter 11
     def site_specific_values(self, S_DS: Any, S_D1: Any, source: str) -> Handles:
         """S_DS and S_D1 of a site-specific study (21.4); written only under hazard_basis site-specific."""
-        from calckit.standards.asce7 import hazard
-
         return hazard.site_specific_values(self._scope, S_DS, S_D1, source)
 
     def design_spectrum(self) -> Handles:
         """F_a, F_v, S_MS, S_M1, S_DS, S_D1, T_0, T_S (11.4), from S_S, S_1, T_L and site_class."""
-        from calckit.standards.asce7 import hazard
-
         return hazard.design_spectrum(self._scope)
 
     def spectrum_ordinates(self, periods: Sequence[float]) -> Handle:
         """S_a (11.4.6), as a fraction of g, at the given periods in s: a list line and its table."""
-        from calckit.standards.asce7 import hazard
-
         return hazard.spectrum_ordinates(self._scope, periods)
 
     def spectrum_curve(self, longest: float | None = None) -> tuple[list[float], list[float]]:
@@ -73,68 +68,46 @@ class Steps:
 
         The curve ends at `longest`; left out, it goes past the periods of all parts.
         """
-        from calckit.standards.asce7 import hazard
-
         return hazard.spectrum_curve(self._scope, longest)
 
     def design_category(self) -> Handles:
         """I_e (Table 1.5-2) and the seismic design category (11.6) with its margins, from risk_category."""
-        from calckit.standards.asce7 import hazard
-
         return hazard.design_category(self._scope)
 
     # chapter 12, the structure
     def seismic_weight(self) -> Handle:
         """W (12.7.2), the sum of w_x."""
-        from calckit.standards.asce7 import structure
-
         return structure.seismic_weight(self._scope)
 
     def system(self) -> Handles:
         """R, Omega_0, C_d (Table 12.2-1) and whether system and height are permitted, from the part's system."""
-        from calckit.standards.asce7 import structure
-
         return structure.system(self._scope)
 
     def approximate_period(self, **typed: Any) -> Handle:
         """T_a (12.8.2.1), by Table 12.8-2 or 0.1 N; an operand typed here (`h_n="70 ft"`) is flagged."""
-        from calckit.standards.asce7 import structure
-
         return structure.approximate_period(self._scope, typed)
 
     def period(self) -> Handle:
         """C_u, C_u T_a, the period T for strength with its candidates, T for drift (12.8.2, 12.8.6.2)."""
-        from calckit.standards.asce7 import structure
-
         return structure.period(self._scope)
 
     def procedure(self) -> Handle:
         """Prohibited irregularities (12.3.3.1) and the permitted procedure (Table 12.6-1), from the answers."""
-        from calckit.standards.asce7 import structure
-
         return structure.procedure(self._scope)
 
     # chapter 12, forces
     def base_shear(self) -> Handle:
         """Every candidate of C_s (12.8-2 to 12.8-6), the governing one, and V (12.8-1)."""
-        from calckit.standards.asce7 import forces
-
         return forces.base_shear(self._scope)
 
     def vertical_distribution(self) -> Handle:
         """k, C_vx, F_x, V_x, M_x over the height (12.8.3 to 12.8.5), with the check of their sum."""
-        from calckit.standards.asce7 import forces
-
         return forces.vertical_distribution(self._scope)
 
     def drift(self) -> Handle:
         """delta_x, Delta and Delta_a (12.8.6, 12.12.1) and the check of each story."""
-        from calckit.standards.asce7 import forces
-
         return forces.drift(self._scope)
 
     def stability(self) -> Handle:
         """theta and theta_max (12.8.7) and the check of each story."""
-        from calckit.standards.asce7 import forces
-
         return forces.stability(self._scope)
