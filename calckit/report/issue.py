@@ -128,7 +128,8 @@ def produce(notebook: Notebook, settings: Settings, formats: Sequence[str] = FOR
         notices += [f"shown as a code point in the PDF: {found}" for found in lacking]
         files["pdf"] = seal.apply(pdf.render(model, figures=outcome.figures, attachments=attached, date=day))
     fields = record.calculation
-    return Report(report_name(fields.get("number", ""), fields.get("revision", ""), notebook.stem), record, files, notices)
+    name = report_name(fields.get("number", ""), fields.get("revision", ""), notebook.stem)
+    return Report(name, record, files, notices)
 
 
 def issue(notebook: Notebook, settings: Settings, folder: Path, formats: Sequence[str] = FORMATS) -> Issued:
