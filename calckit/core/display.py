@@ -106,7 +106,7 @@ def _text_latex(text: str) -> str:
 
 
 def _markdown(line: Line) -> str:
-    head = f"**{_escaped(line.meaning)}**"
+    head = f"**{_escaped(f'{line.part}: {line.meaning}' if line.part else line.meaning)}**"
     value = _shown(line)
     if line.forms:
         body = f"$\\displaystyle {_latex(line)}$"

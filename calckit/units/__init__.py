@@ -59,7 +59,8 @@ def canonical(unit: str) -> str:
     ('kip*ft', 'ft**2', '')
     """
     text = unit.strip().replace("·", "*").replace("^", "**").replace("²", "**2").replace("³", "**3")
-    text = re.sub(r"(?<=[A-Za-z])\s*-\s*(?=[A-Za-z])", "*", text).replace(" ", "")
+    text = re.sub(r"(?<=[A-Za-z])\s*-\s*(?=[A-Za-z])", "*", text)
+    text = re.sub(r"\s*(\*+|/)\s*", r"\1", text)
     for word in re.findall(r"[^\W\d_]+", text):
         if word not in known():
             cure = "write one of " + ", ".join(known())
