@@ -58,7 +58,8 @@ def _computed(found: Audit, line: Json, lines: Mapping[str, Json]) -> None:
     text = line["forms"]["plain"][1]
     shown = printed(own_result(line))
     assert shown, line["id"]
-    numeral, places = Decimal(shown[0]), decimals(shown[0])
+    beside = line["shown"] if isinstance(line["shown"], list) else ()
+    numeral, places = Decimal(shown[0]), decimals(shown[0], beside)
     reader = Reader(text)
     value = reader.read()
     assert isinstance(value, Decimal), text
@@ -179,7 +180,7 @@ def _rows(found: Audit, table: Json, lines: Mapping[str, Json]) -> None:
     for place, column in enumerate(table["columns"]):
         line = lines[column["line"]]
         cells = [row[place] for row in table["shown"]]
-        even = len({decimals(cell) for cell in cells}) == 1
+        even = len({decimals(cell, cells) for cell in cells}) == 1
         found.item("column", even, f"{table['id']}, {line['id']}: decimals differ: {cells}")
         if line["formula"] is None:
             continue
@@ -188,7 +189,7 @@ def _rows(found: Audit, table: Json, lines: Mapping[str, Json]) -> None:
             found.skipped.append(f"column {line['id']} of {table['id']}: {sorted(lists)} are not all in the table")
             continue
         formula = Formula(line["formula"], _columns(line, table), table["rows"])
-        unit = Decimal(1).scaleb(-decimals(cells[0]))
+        unit = Decimal(1).scaleb(-decimals(cells[0], cells))
         for row, (name, cell) in enumerate(zip(table["rows"], cells, strict=True)):
             value = formula.at(row)
             where = f"{table['id']}, {line['id']} at {name}"
@@ -208,15 +209,22 @@ def _conversions(found: Audit, line: Json, lines: Mapping[str, Json]) -> None:
         elif origin and origin["unit"] != operand["unit"] and origin["rows"]:
             exact = [(repr(value), origin["unit"]) for value in origin["value"]]
             pairs = [(first, second, Fraction()) for first, second in zip(exact, operand["shown"], strict=True)]
+        beside = operand["shown"] if isinstance(operand["shown"], list) else ()
         for first, second, slack in pairs:
             ratio = factor(first[1], operand["unit"])
             away = abs(Fraction(first[0]) * ratio - Fraction(second))
-            good = away <= Fraction(1, 2) / Fraction(10) ** decimals(second) + slack * ratio
+            good = away <= Fraction(1, 2) / Fraction(10) ** decimals(second, beside) + slack * ratio
             found.item("conversion", good, f"{line['id']}, {key}: {' '.join(first)} = {second} {operand['unit']}")
 
 
-def printed_forms(record: Json, lines: Mapping[str, Json]) -> Iterator[tuple[tuple[str, str, str], str, str]]:
-    """Every printed form of a value: (line, row, unit), the numeral, and where it stands."""
+Key = tuple[str, str, str]
+"""Line, row and unit of a value."""
+Shown = tuple[str, int]
+"""A numeral and its decimals."""
+
+
+def printed_forms(record: Json, lines: Mapping[str, Json]) -> Iterator[tuple[Key, Shown, str]]:
+    """Every printed form of a value, and where it stands."""
     for line in record["lines"]:
         yield from _entries(line["id"], line["rows"], line["shown"], line["unit"], line["id"])
         if line["computed"]:
@@ -244,33 +252,27 @@ def printed_forms(record: Json, lines: Mapping[str, Json]) -> Iterator[tuple[tup
 
 def _entries(
     id_: str, rows: Sequence[str], shown: str | Sequence[str], unit: str, where: str
-) -> Iterator[tuple[tuple[str, str, str], str, str]]:
+) -> Iterator[tuple[Key, Shown, str]]:
     if isinstance(shown, str):
         for part in shown.split(" = "):
             if form := printed(part):
-                yield (id_, "", form[1]), form[0], where
+                yield (id_, "", form[1]), (form[0], decimals(form[0])), where
     else:
         for row, text in zip(rows, shown, strict=True):
             if form := printed(text):
-                yield (id_, row, unit), form[0], where
+                yield (id_, row, unit), (form[0], decimals(form[0], shown)), where
 
 
 def _forms(found: Audit, record: Json, lines: Mapping[str, Json]) -> None:
-    groups: dict[tuple[str, str, str], dict[str, str]] = defaultdict(dict)
-    for key, numeral, where in printed_forms(record, lines):
-        groups[key].setdefault(numeral, where)
+    groups: dict[Key, dict[Shown, str]] = defaultdict(dict)
+    for key, form, where in printed_forms(record, lines):
+        groups[key].setdefault(form, where)
     for key, forms in groups.items():
         if len(forms) < 2:
             continue
-        clashing = [
-            f"{long} ({forms[long]}) against {short} ({forms[short]})"
-            for long, short in _longer_first(forms)
-            if rounded(Decimal(long), decimals(short)) != Decimal(short)
-        ]
+        clashing = []
+        for pair in combinations(forms, 2):
+            short, long = sorted(pair, key=lambda form: form[1])
+            if rounded(Decimal(long[0]), short[1]) != Decimal(short[0]):
+                clashing.append(f"{long[0]} ({forms[long]}) against {short[0]} ({forms[short]})")
         found.item("repeated value", not clashing, f"{' '.join(key)}: {'; '.join(clashing)}")
-
-
-def _longer_first(forms: Mapping[str, str]) -> Iterator[tuple[str, str]]:
-    for pair in combinations(forms, 2):
-        short, long = sorted(pair, key=decimals)
-        yield long, short

@@ -80,15 +80,18 @@ def rounded(value: Decimal, decimals: int) -> Decimal:
     return value.quantize(Decimal(1).scaleb(-decimals), ROUND_HALF_UP, CONTEXT)
 
 
-def decimals(numeral: str) -> int:
+def decimals(numeral: str, beside: Sequence[str] = ()) -> int:
     """The decimals of a printed numeral: negative for one of more than 7 whole digits that is rounded to 7.
 
-    >>> decimals("0.7605"), decimals("1134205"), decimals("121937200")
-    (4, 0, -2)
+    An entry of a list is rounded like the largest entry `beside` it.
+
+    >>> decimals("0.7605"), decimals("1134205"), decimals("121937200"), decimals("671070", ["19848140", "671070"])
+    (4, 0, -2, -1)
     """
-    whole, _, places = numeral.lstrip("-").partition(".")
-    over = max(0, len(whole) - WHOLE)
-    return len(places) or (-over if whole.endswith("0" * over) else 0)
+    if "." in numeral:
+        return len(numeral.partition(".")[2])
+    over = max(len(text.lstrip("-").partition(".")[0]) for text in (numeral, *beside)) - WHOLE
+    return -over if over > 0 and numeral.endswith("0" * over) else 0
 
 
 @dataclass(frozen=True)

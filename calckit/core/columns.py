@@ -52,6 +52,44 @@ def tabulate(scope: Scope, id_: str, title: str, names: Sequence[str], head: str
     return Table(scope.id_of(id_), scope.id, title, head, heads, list(lines[0].rows), _shown(scope, keys), keys)
 
 
+def tell_apart(scope: Scope, check: Entry) -> None:
+    """Print the columns of a check with enough digits that every row reads in its table as it was judged."""
+    book = scope.book
+    keys = [key for key, operand in check.line.inputs.items() if isinstance(operand.shown, list)]
+    table = next((table for table in book.tables.values() if set(keys) <= set(table.lines)), None)
+    if table is None:
+        return
+    here = {key: book.entries[key] for key in keys}
+    grids = {key: entry.decimals for key, entry in here.items()}
+    while not _reads_as_judged(check, here, grids):
+        finer = [_finer(entry, grids, key) for key, entry in here.items() if not entry.numerals]
+        if not any(finer):
+            break  # the worst row is worked in full, with all its digits, in the check itself
+    changed = {key: places for key, places in grids.items() if places != here[key].decimals}
+    if changed:
+        _work_again(scope, changed)
+        owner = scope.calc.parts.get(table.part, scope.calc)
+        name = table.id.removeprefix(f"{table.part}.")
+        book.tables[table.id] = tabulate(owner, name, table.title, table.lines, table.head)
+
+
+def _reads_as_judged(check: Entry, here: dict[str, Entry], grids: dict[str, int]) -> bool:
+    line = check.line
+    relation = Formula(line.meaning, line.formula or "", line.source or Source(""))
+    shown = _printed_operands(check, here, grids)
+    names = {name: f"{line.part}.{name}" if f"{line.part}.{name}" in line.inputs else name for name in shown or {}}
+    exact = {name: _carried(line.inputs[key].value) for name, key in names.items()}
+    return shown is None or all(
+        relation.node.value(relation.env(shown, DECIMALS, line.rows, row))
+        == relation.node.value(relation.env(exact, DECIMALS, line.rows, row))
+        for row in range(len(line.rows))
+    )
+
+
+def _carried(value: Any) -> Any:
+    return [digits.carried(v) for v in value] if isinstance(value, list) else digits.carried(value)
+
+
 def _sharing(
     tables: Iterable[Table], entries: Mapping[str, Entry], id_: str, keys: Sequence[str]
 ) -> dict[str, Sequence[str]]:

@@ -3,9 +3,9 @@
 Knows decimal rounding and the search for the fewest digits. Must not know expressions, lines or units.
 
 Values are rounded to 12 significant digits, then half up, in decimal. A result is shown to its symbol's significant
-digits, whole numbers of up to seven digits in full. Each operand is printed with the fewest digits, up to 10
-significant, for which decimal arithmetic on the printed numerals gives the shown result; what was typed prints as
-typed.
+digits, whole numbers of up to seven digits in full. Each operand is printed with the fewest digits, up to the 12 that
+are carried, for which decimal arithmetic on the printed numerals gives the shown result; what was typed prints as
+typed. (More than 10 are needed only where the result stands all but halfway between two printed numbers.)
 """
 
 from __future__ import annotations
@@ -17,7 +17,6 @@ from decimal import ROUND_HALF_UP, Decimal
 from calckit.core.numbers import DECIMAL
 
 CARRIED = 12
-MOST = 10
 MOST_IN_TABLE = 7
 WHOLE = 7
 
@@ -79,7 +78,7 @@ class Operand:
     most: int = field(init=False)
 
     def __post_init__(self) -> None:
-        object.__setattr__(self, "most", max(self.least, decimals_for(self.values, MOST)))
+        object.__setattr__(self, "most", max(self.least, decimals_for(self.values, CARRIED)))
 
     def numerals(self, decimals: int) -> tuple[str, ...]:
         """The printed numerals at this number of decimals; an entry that would not round back prints more."""
@@ -90,7 +89,7 @@ class Operand:
         return self.typed or tuple(numeral(value, decimals) for value in self.values)
 
     def _honest(self, value: Decimal, decimals: int) -> int:
-        most = max(decimals, decimals_for([value], MOST))
+        most = max(decimals, decimals_for([value], CARRIED))  # all that is carried always rounds back
         return next((d for d in range(decimals, most + 1) if _rounds_back(value, self.least, d)), most)
 
     def choices(self) -> range:
@@ -120,9 +119,12 @@ def fewest(
             break
     else:
         return None
-    for name in sorted(step, key=lambda name: -step[name]):
-        for fewer in range(step[name]):
-            if accepted(step | {name: fewer}):
-                step[name] = fewer
-                break
+    shortened = True
+    while shortened:  # fewer digits of one operand may leave room for fewer of another
+        shortened = False
+        for name in sorted(step, key=lambda name: -step[name]):
+            for fewer in range(step[name]):
+                if accepted(step | {name: fewer}):
+                    step[name], shortened = fewer, True
+                    break
     return {name: choices[name][place] for name, place in step.items()}

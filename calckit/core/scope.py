@@ -250,7 +250,12 @@ class Scope:
         if absent:
             missing = ", ".join(f"{self.plain(name)} ({self.symbol(name).meaning})" for name in absent)
             return self.write(work.not_checked(self, id_, title, missing, source, relation))
-        return self.write(work.check(self, id_, formula, title=title, flags=flags))
+        with self.step():
+            entry = work.check(self, id_, formula, title=title, flags=flags)
+            handle = self.write(entry)
+            if entry.line.rows:
+                columns.tell_apart(self, entry)
+            return handle
 
     def verdict(
         self, id_: str, title: str, verdict: str, source: Source, *, detail: str = "", missing: str = ""

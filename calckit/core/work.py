@@ -131,7 +131,7 @@ def compute(
 
     printed = _printed(formula, inputs, worked, gives_target, values if listed else (), fifth)
     if printed is None:
-        raise DigitsError(f"{formula.result} = {formula.text}: 10 printed digits do not give {target}")
+        raise DigitsError(f"{formula.result} = {formula.text}: {digits.CARRIED} printed digits do not give {target}")
     shown = [digits.numeral(v, places) for v in values]
     line = Line(
         scope.id_of(symbol.name), kind, symbol.name, meaning or symbol.meaning,
@@ -368,7 +368,7 @@ def check(scope: Scope, id_: str, relation: Formula, *, title: str, flags: Seque
     pair._cache["node"] = _Pair(relation.node, demand, limit)
     printed = _printed(pair, inputs, row, accepted)
     if printed is None:
-        raise DigitsError(f"check {title!r}: 10 printed digits do not show the relation")
+        raise DigitsError(f"check {title!r}: {digits.CARRIED} printed digits do not show the relation")
     forms = _forms(scope, relation, inputs, printed, row)
     if not holds[worst]:
         forms = _reversed(scope, relation, inputs, printed, row, forms)

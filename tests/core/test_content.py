@@ -1,4 +1,4 @@
-"""Content hashes, and the record: they change exactly when what they cover changes, and the record is the same twice."""
+"""Content hashes change exactly when what they cover changes; the record is the same twice."""
 
 from __future__ import annotations
 
@@ -16,9 +16,9 @@ from tests.building import Building
 
 LINE = Line(
     "X.V", "computed", "V", "base shear", 205.2, "kip", "205.2 kip", n=7, part="X", section="Base shear",
-    formula="C_s*W", inputs={"X.C_s": Operand(0.0339, "", "0.0339", "abc"), "W": Operand(6060.0, "kip", "6060 kip", "def")},
-    forms={"plain": ["C_s × W", "0.0339 × 6060 kip"]}, source=Source("ASCE/SEI 7-16", "12.8.1", "12.8-1", standard=True),
-    text="", detail="",
+    formula="C_s*W", forms={"plain": ["C_s × W", "0.0339 × 6060 kip"]},
+    inputs={"X.C_s": Operand(0.0339, "", "0.0339", "abc"), "W": Operand(6060.0, "kip", "6060 kip", "def")},
+    source=Source("ASCE/SEI 7-16", "12.8.1", "12.8-1", standard=True),
 )  # fmt: skip
 
 
@@ -30,8 +30,9 @@ def content(line: Line) -> str:
 @pytest.mark.parametrize(
     "changed",
     [
-        replace(LINE, id="Y.V"), replace(LINE, kind="analysis"), replace(LINE, symbol="V_b"), replace(LINE, meaning="shear"),
-        replace(LINE, value=205.3), replace(LINE, unit="kN"), replace(LINE, formula="W*C_s"), replace(LINE, source=None),
+        replace(LINE, id="Y.V"), replace(LINE, kind="analysis"), replace(LINE, symbol="V_b"),
+        replace(LINE, meaning="shear"), replace(LINE, value=205.3), replace(LINE, unit="kN"),
+        replace(LINE, formula="W*C_s"), replace(LINE, source=None),
         replace(LINE, source=Source("ASCE/SEI 7-16", "12.8.1", "12.8-2", standard=True)),
         replace(LINE, source=Source("H-2", "12.8.1", "12.8-1", entry="Hazard printout, revision 2")),
         replace(LINE, verdict="OK"), replace(LINE, text="a word"), replace(LINE, rows=["Roof"]),

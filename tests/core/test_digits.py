@@ -75,10 +75,7 @@ def test_printed_digits_round_to_every_shorter_form(value: Decimal, least: int) 
     one = operand(value, least)
     for places in one.choices():
         (text,) = one.numerals(places)
-        longest = len(text.partition(".")[2])
-        if longest == one.most:
-            continue  # at ten digits there is nothing further to try
-        for shorter in range(least, longest):
+        for shorter in range(least, len(text.partition(".")[2])):
             assert digits.numeral(Decimal(text), shorter) == digits.numeral(value, shorter)
 
 
@@ -87,6 +84,8 @@ def test_digits_that_would_mislead_are_not_printed() -> None:
     one = operand(Decimal("0.123449"), 4)
     assert digits.numeral(one.values[0], 4) == "0.1234"
     assert one.numerals(5) == ("0.123449",)
+    # a value that is all but a tie needs everything that is carried
+    assert operand(Decimal("468.749999999"), 1).numerals(7) == ("468.749999999",)
 
 
 def test_typed_numerals_stay_as_typed() -> None:

@@ -51,7 +51,8 @@ def printed(text: str, operands: dict[str, Any] | None = None, row: int | None =
 
 SYMBOLIC = [
     ("C_t*h_n**x", "C_t × h_n^x", r"C_{t}\,h_{n}^{x}", "C_t h_n^(x)"),
-    ("S_DS/(R/I_e)", "S_DS / (R / I_e)", r"\frac{S_{\mathrm{DS}}}{\left(R / I_{e}\right)}", r'frac(S_"DS", (R \/ I_e))'),
+    ("S_DS/(R/I_e)", "S_DS / (R / I_e)", r"\frac{S_{\mathrm{DS}}}{\left(R / I_{e}\right)}",
+     r'frac(S_"DS", (R \/ I_e))'),
     ("2/3*S_MS", "2 / 3 × S_MS", r"\frac{2}{3}\,S_{\mathrm{MS}}", 'frac(2, 3) S_"MS"'),
     ("a/b/c", "a / b / c", r"\frac{\frac{a}{b}}{c}", "frac(frac(a, b), c)"),
     ("a/(b*c)", "a / (b × c)", r"\frac{a}{b\,c}", "frac(a, b c)"),
@@ -64,7 +65,8 @@ SYMBOLIC = [
     ("(a**b)**2", "(a^b)^2", r"\left(a^{b}\right)^{2}", "(a^(b))^(2)"),
     ("a*2.50", "a × 2.50", r"a \times 2.50", "a times 2.50"),
     ("sqrt(a/b)", "sqrt(a / b)", r"\sqrt{\frac{a}{b}}", "sqrt(frac(a, b))"),
-    ("abs(sum_F/V - 1)", "|sum_F / V - 1|", r"\left|\frac{\mathrm{sum}_{F}}{V} - 1\right|", 'abs(frac("sum"_F, V) − 1)'),
+    ("abs(sum_F/V - 1)", "|sum_F / V - 1|", r"\left|\frac{\mathrm{sum}_{F}}{V} - 1\right|",
+     'abs(frac("sum"_F, V) − 1)'),
     ("max(0.044*S_DS*I_e, 0.01)", "max(0.044 × S_DS × I_e, 0.01)",
      r"\max\left(0.044\,S_{\mathrm{DS}}\,I_{e},\; 0.01\right)", 'max(0.044 S_"DS" I_e, 0.01)'),
     ("1 if T <= 0.5 else 2 if T >= 2.5 else T", "1 if T ≤ 0.5; 2 if T ≥ 2.5; T otherwise",
@@ -174,7 +176,9 @@ EVERY = [printed(text) for text, *_ in SYMBOLIC] + [printed(text, NUMBERS, 1) fo
 
 
 def test_mathml_is_well_formed() -> None:
-    known = {"mrow", "mi", "mo", "mn", "mtext", "mspace", "msub", "msup", "mfrac", "msqrt", "munder", "mtable", "mtr", "mtd"}
+    known = {
+        "mrow", "mi", "mo", "mn", "mtext", "mspace", "msub", "msup", "mfrac", "msqrt", "munder", "mtable", "mtr", "mtd",
+    }  # fmt: skip
     for forms in EVERY:
         tree = ElementTree.fromstring(forms["mathml"])
         assert {node.tag for node in tree.iter()} <= known

@@ -115,9 +115,9 @@ def test_two_cells_in_a_clean_run(live: Session, monkeypatch: pytest.MonkeyPatch
     assert calc.lines.settings.clean
     with live.cell("one"):
         calc.given("h_n", "62 ft", source="S-201")
-    with pytest.raises(DuplicateError, match="line 'h_n' is written by two cells; give one of them another id"):
-        with live.cell("two"):
-            calc.given("h_n", "64 ft", source="S-201")
+    message = "line 'h_n' is written by two cells; give one of them another id"
+    with pytest.raises(DuplicateError, match=message), live.cell("two"):
+        calc.given("h_n", "64 ft", source="S-201")
 
 
 def test_session_that_sends_no_cell_ids(monkeypatch: pytest.MonkeyPatch) -> None:
