@@ -14,6 +14,7 @@ from itertools import combinations
 from typing import Any
 
 from tests.printed_digits import (
+    CONTEXT,
     UNITS,
     Audit,
     Formula,
@@ -173,7 +174,7 @@ def _columns(line: Json, table: Json) -> dict[str, Any]:
 
 def _times(numeral: str, ratio: Fraction) -> Decimal:
     exact = Fraction(numeral) * ratio
-    return Decimal(exact.numerator) / Decimal(exact.denominator)
+    return CONTEXT.divide(Decimal(exact.numerator), Decimal(exact.denominator))
 
 
 def _rows(found: Audit, table: Json, lines: Mapping[str, Json]) -> None:
@@ -189,7 +190,7 @@ def _rows(found: Audit, table: Json, lines: Mapping[str, Json]) -> None:
             found.skipped.append(f"column {line['id']} of {table['id']}: {sorted(lists)} are not all in the table")
             continue
         formula = Formula(line["formula"], _columns(line, table), table["rows"])
-        unit = Decimal(1).scaleb(-decimals(cells[0], cells))
+        unit = Decimal(1).scaleb(-decimals(cells[0], cells)) + Decimal("1e-30")  # what 50 digits of arithmetic lose
         for row, (name, cell) in enumerate(zip(table["rows"], cells, strict=True)):
             value = formula.at(row)
             where = f"{table['id']}, {line['id']} at {name}"

@@ -230,6 +230,87 @@ def test_checker_works_rows() -> None:
     assert (at('level(a, "Roof")'), at("a*f + X.b"), at("1 if a >= 2 else 0"), at("-a**2")) == (3, 5, 1, -4)
 
 
+# buildings that are hard to print: a row close to its limit, results all but halfway between two printed numbers
+
+
+def hard(text: str, periods: str, second: bool = True, **givens: str) -> Building:
+    """A building from its table of levels, columns in the order of `Building`, heights in ft."""
+    rows = [row.split() for row in text.strip().splitlines()]
+    heads, names = rows[0], [row[0] for row in rows[1:]]
+    columns = {
+        f"{head.partition('[')[0]} [{head.partition('[')[2]}": [row[1 + place] for row in rows[1:]]
+        for place, head in enumerate(heads)
+    }
+    x, y = periods.split()
+    return Building(GIVENS | givens, names, columns, {"X": f"{x} s", "Y": f"{y} s"}, second)
+
+
+HARD = {
+    "story 7 at 0.9996 of the largest coefficient": hard(
+        """
+        h_x[ft] w_x[kip] X.delta_xe[in] Y.delta_xe[in] P_x[kip]
+        8 96   1182 3.42 2.87 1182
+        7 86.3  448 3.04 2.07 1630
+        6 70.3 1966 2.24 1.76 3596
+        5 54.9 3183 2.04 1.40 6779
+        4 37    305 1.81 1.34 7084
+        3 29   1125 1.22 1.12 8209
+        2 14.9 1350 0.51 0.68 9559
+        """,
+        "4 0.64", S_S="0.38", S_1="0.149", risk_category="IV", h_n="96 ft",
+    ),
+    "a sum of forces at 468.75 kip": hard(
+        """
+        h_x[ft] w_x[lb] X.delta_xe[mm] Y.delta_xe[mm] P_x[lb]
+        6 58.1  818000 48.75 46.5   818000
+        5 49.2  525000 30    32.5  1343000
+        4 33.4 3109000 14.25 28.25 4452000
+        3 25.7  769000 12    23    5221000
+        2 16.7 1029000 7     3     6250000
+        """,
+        "3.17 2.1", S_S="0.48", S_1="0.9", risk_category="I", h_n="58.1 ft",
+    ),
+    "equal stories and weights": hard(
+        "h_x[ft] w_x[lb] X.delta_xe[mm] Y.delta_xe[mm] P_x[lb]\n"
+        + "\n".join(f"{9 - i} {60 - 7.5 * i:g} 200000 {8 - i} {8 - i} {200000 * (i + 1)}" for i in range(8)),
+        "0.3 0.3", S_S="0.35", S_1="0.9", risk_category="IV", h_n="60 ft",
+    ),
+    "a coefficient that must be printed with more digits than its worked row needs": hard(
+        """
+        h_x[ft] w_x[kip] X.delta_xe[in] Y.delta_xe[in] P_x[kip]
+        5 47.9  200 1.30 1.10  200
+        4 39.5  200 1.04 0.99  400
+        3 23.5 4000 0.33 0.47 4400
+        2  7.5 1374 0.19 0.40 5774
+        """,
+        "2.4 3.28", second=False, S_S="1.72", S_1="0.157", site_class="B", risk_category="IV", h_n="47.9 ft",
+    ),
+    "two equal stories": hard(
+        """
+        h_x[ft] w_x[kip] X.delta_xe[in] Y.delta_xe[in] P_x[kip]
+        3 15  200 0.1  0.1  200
+        2 7.5 200 0.05 0.05 400
+        """,
+        "0.51 0.36", second=False, S_S="0.2", S_1="0.897", site_class="B", risk_category="I", h_n="15 ft",
+    ),
+}  # fmt: skip
+
+
+@pytest.mark.parametrize("name", HARD)
+def test_rule_holds_for_buildings_that_are_hard_to_print(name: str) -> None:
+    for system in ("US", "SI"):
+        assert audit(json.loads(HARD[name].record(units=system).to_json())).faults == []
+
+
+def test_rows_close_to_their_limit_read_as_they_were_judged() -> None:
+    record = HARD["story 7 at 0.9996 of the largest coefficient"].record()
+    (table,) = (table for table in record.tables if table.id == "X.stability")
+    printed = dict(zip(table.rows, (row[-1] for row in table.shown), strict=True))
+    assert record.line("X.stability").detail == "not met at 4, 3, 2"
+    assert record.line("X.theta_max").shown == "0.09091"
+    assert (printed["7"], printed["2"]) == ("0.0909", "0.1312")
+
+
 # buildings made at random
 
 
@@ -271,7 +352,7 @@ def buildings(draw: st.DrawFn) -> Building:
 
 @given(building=buildings(), system=st.sampled_from(["US", "SI"]))
 @settings(
-    max_examples=300, deadline=None, derandomize=True, phases=[Phase.generate], suppress_health_check=list(HealthCheck)
+    max_examples=60, deadline=None, derandomize=True, phases=[Phase.generate], suppress_health_check=list(HealthCheck)
 )  # fmt: skip
 def test_rule_holds_for_buildings_at_random(building: Building, system: str) -> None:
     found = audit(json.loads(building.record(units=system).to_json()))

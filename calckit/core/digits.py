@@ -78,7 +78,8 @@ class Operand:
     most: int = field(init=False)
 
     def __post_init__(self) -> None:
-        object.__setattr__(self, "most", max(self.least, decimals_for(self.values, CARRIED)))
+        carried = (decimals_for([value], CARRIED) for value in self.values)
+        object.__setattr__(self, "most", max(self.least, *carried))
 
     def numerals(self, decimals: int) -> tuple[str, ...]:
         """The printed numerals at this number of decimals; an entry that would not round back prints more."""

@@ -192,9 +192,8 @@ class Scope:
     def compute(self, formula: Formula, **how: Any) -> Handle:
         """Work a formula in this scope and write the line; see `work.compute` for the words of `how`."""
         candidates = how.pop("candidates", [])
-        margin = how.pop("margin", None)
         entry = work.compute(self, formula, **how)
-        entry.line.candidates, entry.line.margin = list(candidates), margin
+        entry.line.candidates = list(candidates)
         return self.write(entry)
 
     def look_up(self, symbol: str, found: Any, flags: Sequence[Flag] = ()) -> Handle:

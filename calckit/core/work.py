@@ -252,10 +252,10 @@ def _printed(
             for name in numbers
         }
         env = formula.env(values, DECIMALS, inputs.rows, row)
-        return accept(in_decimals(lambda: formula.node.value(env))) and others(numbers)
+        return accept(in_decimals(lambda: formula.node.value(env))) and serve_all(numbers)
 
-    def others(numbers: Mapping[str, Sequence[Decimal]]) -> bool:
-        """Whether the printed single operands serve the rows that are not worked in full, within `slack`."""
+    def serve_all(numbers: Mapping[str, Sequence[Decimal]]) -> bool:
+        """Whether the printed single operands serve every row, the lists at all their digits, within `slack`."""
         exact = {
             name: list(operand.values) if inputs.listed(name) else numbers[name][0]
             for name, operand in inputs.operands.items()
@@ -263,7 +263,6 @@ def _printed(
         return all(
             abs(in_decimals(partial(formula.node.value, formula.env(exact, DECIMALS, inputs.rows, i))) - value) <= slack
             for i, value in enumerate(results)
-            if i != row
         )
 
     found = digits.fewest(narrowed, tried)

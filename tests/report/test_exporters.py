@@ -31,6 +31,8 @@ def path(write_notebook: WriteNotebook, monkeypatch: pytest.MonkeyPatch) -> Path
     monkeypatch.setattr(issue.view, "build", lambda *_: None)
     monkeypatch.setattr(issue.html, "render", plain.html_file)
     monkeypatch.setattr(issue.pdf, "render", plain.pdf_file)
+    for writer in (issue.html, issue.pdf):
+        monkeypatch.setattr(writer, "missing_glyphs", lambda _view: [])
     return write_notebook("# Demo", KERNEL, RECORD)
 
 

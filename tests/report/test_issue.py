@@ -46,6 +46,8 @@ def give(monkeypatch: pytest.MonkeyPatch) -> Give:
     monkeypatch.setattr(issue.view, "build", lambda *_: None)
     monkeypatch.setattr(issue.html, "render", plain.html_file)
     monkeypatch.setattr(issue.pdf, "render", plain.pdf_file)
+    for writer in (issue.html, issue.pdf):
+        monkeypatch.setattr(writer, "missing_glyphs", lambda _view: [])
     set_outcome()
     return set_outcome
 

@@ -79,6 +79,11 @@ def path(tmp_path: Path) -> Path:
     return demonstration(tmp_path)
 
 
+def complaints(stderr: str) -> list[str]:
+    """What the terminal said, without the word that a slow run is still going."""
+    return [line for line in stderr.splitlines() if not line.startswith("running ")]
+
+
 @pytest.fixture
 def calckit(tmp_path: Path) -> Run:
     return partial(run_calckit, tmp_path)
@@ -218,7 +223,7 @@ def test_set_values(path: Path, calckit: Run, tmp_path: Path) -> None:
 def test_set_values_at_fault_write_nothing(path: Path, calckit: Run, tmp_path: Path) -> None:
     result = calckit("issue", path, "--to", "out", "--set", "h_m=1", "--set", "p=2 m", "--set", "h_n=70 ft")
     assert (result.returncode, result.stdout) == (2, "")
-    said = result.stderr.splitlines()
+    said = complaints(result.stderr)
     assert said[0] == "calckit: set values at fault:"
     assert said[1].startswith("  p: invalid; p (load per height): needed")
     assert said[2].startswith("  h_m: unknown; nearest known: h_")
@@ -231,7 +236,7 @@ def test_a_cell_that_raises(path: Path, calckit: Run, issued: Path) -> None:
     path.write_text(path.read_text().replace("62 ft", "62 furlong"))
     result = calckit("issue", path, "--to", issued, "--set", "q=1")
     assert (result.returncode, result.stdout) == (3, "")
-    said = result.stderr.splitlines()
+    said = complaints(result.stderr)
     assert said[0].startswith('calckit: cell [2] under "Height", line 1: ')
     assert "h_n" in said[0]
     assert said[-2] == '  1 | calc.given("h_n", "62 furlong", source="S-201 grid A")'
@@ -242,9 +247,9 @@ def test_a_cell_that_raises(path: Path, calckit: Run, issued: Path) -> None:
 
 def test_a_notebook_without_a_calculation(write_notebook: WriteNotebook, calckit: Run) -> None:
     result = calckit("issue", write_notebook("# Text", "1 + 1"))
-    assert (result.returncode, result.stderr) == (
+    assert (result.returncode, complaints(result.stderr)) == (
         3,
-        "calckit: the notebook starts no calculation; cure: write calc = Calc(...) in its first code cell\n",
+        ["calckit: the notebook starts no calculation; cure: write calc = Calc(...) in its first code cell"],
     )
 
 
