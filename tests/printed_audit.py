@@ -101,8 +101,8 @@ def _table_value(found: Audit, line: Json, lines: Mapping[str, Json]) -> None:
     shown = line["computed"]["shown"] if line["computed"] else line["shown"]
     if between := _BETWEEN.search(line["detail"]):
         a, low, b, high = map(Decimal, between.groups())
-        # equal neighbors need no operand: any place between them gives the entry
-        x = last_numeral(next(iter(line["inputs"].values()))["shown"]) if line["inputs"] or low != high else a
+        place = next(operand["shown"] for operand in line["inputs"].values() if printed(operand["shown"]))
+        x = last_numeral(place)
         value = low + (high - low) * (x - a) / (b - a)
         numeral = printed(shown)
         good = a <= x <= b and numeral is not None and rounded(value, decimals(numeral[0])) == Decimal(numeral[0])

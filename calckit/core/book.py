@@ -167,6 +167,7 @@ class Book:
         old = self.entries[entry.line.id]
         kept = {name: getattr(old.line, name) for name in ("section", "content", "source", "candidates", "margin")}
         entry.line, entry.cell = replace(entry.line, **kept), old.cell
+        entry.line.inputs = old.line.inputs | entry.line.inputs
         self.entries[entry.line.id] = entry
 
     def find(self, part: str, name: str) -> Entry | None:

@@ -17,7 +17,7 @@ from calckit.core.book import Entry, this_cell
 from calckit.core.formula import Formula
 from calckit.core.handle import Handle
 from calckit.core.inputs import NONE, Reading, read
-from calckit.core.record import NOT_OK, Flag, Line, Operand, Override, Source
+from calckit.core.record import NOT_OK, Candidate, Flag, Line, Margin, Operand, Override, Source
 from calckit.core.symbol import Symbol
 from calckit.errors import Fault, InputError, StaleObjectError, UnknownNameError, nearest_first
 
@@ -137,9 +137,15 @@ class Scope:
             book.fresh_tables.clear()
             display.show(ordered, tables, book.notices)
 
-    def write(self, entry: Entry) -> Handle:
-        """Write one line: the single place where set values and overrides of computed lines take effect."""
+    def write(self, entry: Entry, rests: Sequence[str] = ()) -> Handle:
+        """Write one line: the single place where set values and overrides of computed lines take effect.
+
+        `rests` are symbols that the line rests on without standing in its formula: what chose a row or a branch.
+        """
         line = entry.line
+        for found in filter(None, map(self.find, rests)):
+            chosen = found.line
+            line.inputs.setdefault(chosen.id, Operand(chosen.value, chosen.unit, chosen.shown, chosen.content))
         if line.kind in ("computed", "table", "analysis") and not isinstance(line.value, list):
             self._put_in_force(entry)
         if line.source:
@@ -191,36 +197,42 @@ class Scope:
 
     def compute(self, formula: Formula, **how: Any) -> Handle:
         """Work a formula in this scope and write the line; see `work.compute` for the words of `how`."""
-        candidates = how.pop("candidates", [])
+        candidates, rests = how.pop("candidates", []), how.pop("rests", ())
         entry = work.compute(self, formula, **how)
         entry.line.candidates = list(candidates)
-        return self.write(entry)
+        return self.write(entry, rests)
 
-    def look_up(self, symbol: str, found: Any, flags: Sequence[Flag] = ()) -> Handle:
-        """Write a table value: an exact entry, or the formula that interpolates between two."""
+    def look_up(self, symbol: str, found: Any, flags: Sequence[Flag] = (), rests: Sequence[str] = ()) -> Handle:
+        """Write a table value: an exact entry, or the formula that interpolates between two.
+
+        `rests` are the symbols that chose row and column.
+        """
         if found.expression:
             formula = Formula(symbol, found.expression, found.source)
-            return self.compute(formula, kind="table", detail=found.detail, flags=flags)
-        return self.state(symbol, found.text, "table", found.source, detail=found.detail, flags=flags)
+            return self.compute(formula, kind="table", detail=found.detail, flags=flags, rests=rests)
+        return self.state(symbol, found.text, "table", found.source, detail=found.detail, flags=flags, rests=rests)
 
     def state(
         self, symbol: str, raw: Any, kind: str, source: Source | None, *, text: str = "", detail: str = "",
-        flags: Sequence[Flag] = (), meaning: str = "", owner: str = "",
+        flags: Sequence[Flag] = (), rests: Sequence[str] = (), candidates: Sequence[Candidate] = (),
+        margin: Margin | None = None,
     ) -> Handle:  # fmt: skip
         """Write a line whose value stands as typed or as printed in a table."""
         declared = self.symbol(symbol)
         reading = self._read(declared, raw)
         assert reading is not None
-        return self.write(self._stated(declared, reading, kind, source, text, detail, flags, meaning, owner))
+        entry = self._stated(declared, reading, kind, source, text, detail, flags)
+        entry.line.candidates, entry.line.margin = list(candidates), margin
+        return self.write(entry, rests)
 
     def _stated(
         self, symbol: Symbol, reading: Reading, kind: str, source: Source | None, text: str = "", detail: str = "",
-        flags: Sequence[Flag] = (), meaning: str = "", owner: str = "",
+        flags: Sequence[Flag] = (), owner: str = "",
     ) -> Entry:  # fmt: skip
         shown = f"{reading.numeral or reading.value} {units.shown(reading.unit)}".rstrip()
         shown = f"{reading.value}: {reading.text}" if reading.text else shown
         line = Line(
-            self.id_of(symbol.name), kind, symbol.name, meaning or symbol.meaning, reading.value, reading.unit, shown,
+            self.id_of(symbol.name), kind, symbol.name, symbol.meaning, reading.value, reading.unit, shown,
             part=self.id, typeset=self.typeset(symbol) if symbol.kind != "words" else {}, source=source,
             text=text, detail=detail, flags=list(flags), owner=owner,
         )  # fmt: skip
@@ -257,8 +269,9 @@ class Scope:
             return handle
 
     def verdict(
-        self, id_: str, title: str, verdict: str, source: Source, *, detail: str = "", missing: str = ""
-    ) -> Handle:
+        self, id_: str, title: str, verdict: str, source: Source, *, detail: str = "", missing: str = "",
+        rests: Sequence[str] = (),
+    ) -> Handle:  # fmt: skip
         """A check decided by a rule that is no relation of numbers."""
         line = Line(
             self.id_of(id_),
@@ -276,7 +289,7 @@ class Scope:
             line.flags.append(Flag(f"{self.labelled(title)}: NOT CHECKED, missing {missing}", True, "originator"))
         elif verdict == NOT_OK:
             line.flags.append(Flag(f"{self.labelled(title)}: {detail}", True, "originator"))
-        return self.write(Entry(line, this_cell()))
+        return self.write(Entry(line, this_cell()), rests)
 
     def _has_number(self, name: str) -> bool:
         entry = self.find(name)

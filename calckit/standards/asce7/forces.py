@@ -171,7 +171,7 @@ def drift(scope: Scope) -> Handle:
     if faults or risk is None or kind is None:
         raise InputError("asce7.drift", faults)
     with scope.step():
-        scope.look_up("r_Delta", load(PACKAGE, "drift").entry(kind, risk))
+        scope.look_up("r_Delta", load(PACKAGE, "drift").entry(kind, risk), rests=("drift_class", "risk_category"))
         moment_frame = _divided_by_rho(scope)
         if moment_frame and scope.number("rho") is None:
             missing = f"{scope.plain('rho')} (redundancy factor; it divides the allowable drift of a moment frame)"

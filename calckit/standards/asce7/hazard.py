@@ -26,6 +26,7 @@ if TYPE_CHECKING:
 PACKAGE = "calckit.standards.asce7"
 CURVE_POINTS = 200
 NOT_NEEDED = "not needed"
+CATEGORY_A = "design category A: the forces of 1.4.2 apply in place of 12.8, with the dead load and not W"
 CLASS_E = "class E with Supplement 3: whether S_M1 is increased as for class D is not known to the kit; not increased"
 MAPPED_ONLY = ("F_a", "F_v", "S_MS", "S_M1")
 EXCEPTIONS = {"exception 1", "exception 2", "exception 3", "S_M1 increased"}
@@ -128,14 +129,7 @@ def _study_flags(scope: Scope, hazard: Hazard) -> list[Flag]:
 
 def _F_a(scope: Scope, letter: str, flags: Sequence[Flag]) -> Handle:
     if scope.word("site_class") == "B assumed":
-        return scope.state(
-            "F_a",
-            "1.0",
-            "table",
-            formulas.rule("11.4.3", obtained="found"),
-            detail="class B without measured velocity",
-            flags=flags,
-        )
+        return _without_velocity(scope, "F_a", flags)
     table, S_S = load(PACKAGE, "F_a"), scope.number("S_S") or 0.0
     if letter == "E" and S_S > 0.75:
         return _F_a_of_class_E(scope, S_S, flags)
@@ -145,8 +139,15 @@ def _F_a(scope: Scope, letter: str, flags: Sequence[Flag]) -> Handle:
     )
     if scope.word("site_class") == "D default" and value < 1.2:
         detail = f"default class D: not less than 1.2 ({found.detail})"
-        return scope.state("F_a", "1.2", "table", formulas.rule("11.4.4"), detail=detail, flags=flags)
-    return scope.look_up("F_a", found, flags)
+        return scope.state(
+            "F_a", "1.2", "table", formulas.rule("11.4.4"), detail=detail, flags=flags, rests=("site_class", "S_S")
+        )
+    return scope.look_up("F_a", found, flags, rests=("site_class", "S_S"))
+
+
+def _without_velocity(scope: Scope, name: str, flags: Sequence[Flag]) -> Handle:
+    rule, detail = formulas.rule("11.4.3", obtained="found"), "class B without measured velocity"
+    return scope.state(name, "1.0", "table", rule, detail=detail, flags=flags, rests=("site_class",))
 
 
 def _F_a_of_class_E(scope: Scope, S_S: float, flags: Sequence[Flag]) -> Handle:
@@ -160,14 +161,13 @@ def _F_a_of_class_E(scope: Scope, S_S: float, flags: Sequence[Flag]) -> Handle:
             'answer study_exception "exception 1" to take F_a as for class C'
         )
     found = load(PACKAGE, "F_a").along("C", "S_S", S_S)
-    return scope.look_up("F_a", found, [*flags, Flag("F_a taken as for class C by exception 1 of 11.4.8")])
+    taken = Flag("F_a taken as for class C by exception 1 of 11.4.8")
+    return scope.look_up("F_a", found, [*flags, taken], rests=("site_class", "S_S", "study_exception"))
 
 
 def _F_v(scope: Scope, letter: str, hazard: Hazard) -> Handle:
     if scope.word("site_class") == "B assumed":
-        return scope.state(
-            "F_v", "1.0", "table", formulas.rule("11.4.3", obtained="found"), detail="class B without measured velocity"
-        )
+        return _without_velocity(scope, "F_v", [])
     S_1, row = scope.number("S_1") or 0.0, letter
     flags: list[Flag] = []
     if letter == "E" and S_1 > 0.1:
@@ -182,7 +182,7 @@ def _F_v(scope: Scope, letter: str, hazard: Hazard) -> Handle:
             )
         row = "E, Supplement 1"
         flags = [Flag(CLASS_E, True, "holder of the standard")] if 3 in supplements and S_1 >= 0.2 else []
-    return scope.look_up("F_v", load(PACKAGE, "F_v").along(row, "S_1", S_1), flags)
+    return scope.look_up("F_v", load(PACKAGE, "F_v").along(row, "S_1", S_1), flags, rests=("site_class", "S_1"))
 
 
 def site_specific_values(scope: Scope, S_DS: Any, S_D1: Any, source: str) -> Handles:
@@ -255,7 +255,7 @@ def design_category(scope: Scope) -> Handles:
     if faults or risk is None:
         raise InputError("asce7.design_category", faults)
     with scope.step():
-        I_e = scope.look_up("I_e", load(PACKAGE, "I_e").entry(risk, "I_e"))
+        I_e = scope.look_up("I_e", load(PACKAGE, "I_e").entry(risk, "I_e"), rests=("risk_category",))
         made = [_by_table(scope, "SDC_DS", "S_DS", risk), _by_table(scope, "SDC_D1", "S_D1", risk)]
         return Handles([I_e, *made, _governing_category(scope, risk, made)])
 
@@ -264,11 +264,9 @@ def _by_table(scope: Scope, name: str, ordinate: str, risk: str) -> Handle:
     table = load(PACKAGE, f"category_{ordinate}")
     value = scope.number(ordinate) or 0.0
     found = table.band(risk, value, ordinate)
-    entry = scope._stated(
-        scope.symbol(name), scope._read(scope.symbol(name), found.text), "table", found.source, detail=found.detail
-    )  # type: ignore[arg-type]
-    entry.line.margin = _nearest_edge(table, risk, value, ordinate)
-    return scope.write(entry)
+    margin = _nearest_edge(table, risk, value, ordinate)
+    rests = (ordinate, "risk_category")
+    return scope.state(name, found.text, "table", found.source, detail=found.detail, rests=rests, margin=margin)
 
 
 def _nearest_edge(table: Any, risk: str, value: float, ordinate: str) -> Margin | None:
@@ -292,30 +290,12 @@ def _governing_category(scope: Scope, risk: str, made: Sequence[Handle]) -> Hand
         word, detail = ("F" if risk == "IV" else "E"), f"S_1 = {S_1:g} is not less than 0.75"
     elif S_1 <= 0.04 and S_S <= 0.15:
         word, detail = "A", "S_1 not above 0.04 and S_S not above 0.15"
-    flags = []
-    if word == "A":
-        flags.append(
-            Flag(
-                "design category A: the forces of 1.4.2 apply in place of 12.8, with the dead load and not W",
-                True,
-                "originator",
-            )
-        )
-    rule = formulas.rule("11.6", obtained="memory, high")
-    symbol = scope.symbol("SDC")
-    reading = scope._read(symbol, word)
-    assert reading is not None
-    entry = scope._stated(symbol, reading, "table", rule, detail=detail, flags=flags)
-    entry.line.candidates = [
-        Candidate(
-            str(h.line.source.where if h.line.source else ""),
-            None,
-            "",
-            str(h.value),
-            h.line.detail,
-            h.value == word,
-            h.id,
-        )
-        for h in made
+    flags = [Flag(CATEGORY_A, True, "originator")] if word == "A" else []
+    compared = [
+        Candidate(line.source.where, None, "", str(line.value), line.detail, line.value == word, line.id)
+        for handle in made
+        if (line := handle.line).source
     ]
-    return scope.write(entry)
+    rests = ("SDC_DS", "SDC_D1", "S_S", "S_1", "risk_category")
+    rule = formulas.rule("11.6")
+    return scope.state("SDC", word, "table", rule, detail=detail, flags=flags, rests=rests, candidates=compared)

@@ -13,7 +13,7 @@ from calckit.core.handle import Handle, Handles
 from calckit.core.inputs import NONE
 from calckit.core.record import NOT_CHECKED, NOT_OK, OK, Candidate, Flag
 from calckit.core.table import Table, load
-from calckit.errors import Fault, InputError, ScopeError, UnknownNameError
+from calckit.errors import Fault, InputError, ScopeError, nearest_first
 from calckit.standards.asce7 import formulas
 from calckit.standards.asce7.formulas import rule
 from calckit.standards.asce7.hazard import PACKAGE, study
@@ -26,6 +26,8 @@ TOLERATED = {"H2", "H3", "H4", "H5", "V4", "V5a", "V5b"}
 """Irregularities with which equivalent lateral forces stay permitted up to 160 ft (Table 12.6-1)."""
 PROHIBITED = {"D": {"V5b"}, "E": {"H1b", "V1b", "V5a", "V5b"}, "F": {"H1b", "V1b", "V5a", "V5b"}}
 """Irregularities that 12.3.3.1 prohibits, by design category."""
+RESTS = ("SDC", "risk_category", "system", "h_n", "h_x", "T", "T_S", *IRREGULARITIES)
+"""What the permitted procedure rests on."""
 
 
 def system_row(scope: Scope) -> tuple[str, dict[str, str], Table]:
@@ -41,8 +43,7 @@ def system_row(scope: Scope) -> tuple[str, dict[str, str], Table]:
             "asce7.system", [Fault("system", "one row of Table 12.2-1", typed, f"write one of {'; '.join(matching)}")]
         )
     if not matching:
-        known = [key for key in table.rows if not typed.partition(":")[0] or True]
-        near = UnknownNameError("system", typed, known).known[:6]
+        near = nearest_first(typed, table.rows)[:6]
         cure = f"near names: {'; '.join(near)}"
         raise InputError(
             "asce7.system", [Fault("system", "a row of Table 12.2-1", typed, cure, "seismic force-resisting system")]
@@ -55,32 +56,27 @@ def system(scope: Scope) -> Handles:
     key, row, table = system_row(scope)
     category = scope.word("SDC")
     with scope.step():
-        made = Handles(scope.look_up(name, table.entry(key, name)) for name in ("R", "Omega_0", "C_d"))
+        names = ("R", "Omega_0", "C_d")
+        made = Handles(scope.look_up(name, table.entry(key, name), rests=("system",)) for name in names)
         made.append(_permitted(scope, key, row, table, category))
         return made
 
 
 def _permitted(scope: Scope, key: str, row: Mapping[str, str], table: Table, category: str | None) -> Handle:
-    source = table.source(key)
-    title = "System and height permitted"
+    source, title, rests = table.source(key), "System and height permitted", ("system", "SDC")
+
+    def say(verdict: str, detail: str = "", missing: str = "") -> Handle:
+        return scope.verdict("system_permitted", title, verdict, source, detail=detail, missing=missing, rests=rests)
+
     if category is None:
-        return scope.verdict("system_permitted", title, NOT_CHECKED, source, missing="SDC (seismic design category)")
+        return say(NOT_CHECKED, missing="SDC (seismic design category)")
     limit = "NL" if category == "A" else row[category]
     if limit == "NP":
-        return scope.verdict(
-            "system_permitted", title, NOT_OK, source, detail=f"{key} is not permitted in design category {category}"
-        )
+        return say(NOT_OK, f"{key} is not permitted in design category {category}")
     if limit == "NL":
-        return scope.verdict(
-            "system_permitted", title, OK, source, detail=f"{key}: no height limit in design category {category}"
-        )
-    scope.state(
-        "h_limit",
-        f"{limit} ft",
-        "table",
-        source,
-        detail=f"{table.name}, row {key}, category {category}: {limit} ft; increases of 12.2.5.4 not taken",
-    )
+        return say(OK, f"{key}: no height limit in design category {category}")
+    detail = f"{table.name}, row {key}, category {category}: {limit} ft; increases of 12.2.5.4 not taken"
+    scope.state("h_limit", f"{limit} ft", "table", source, detail=detail, rests=rests)
     return scope.require("h_n <= h_limit", title=title, source=source, id_="system_permitted")
 
 
@@ -95,8 +91,8 @@ def approximate_period(scope: Scope, typed: Mapping[str, Any]) -> Handle:
         _, row, _ = system_row(scope)
         table = load(PACKAGE, "C_t")
         column = "C_t (m)" if scope.system == "SI" else "C_t (ft)"
-        scope.look_up("C_t", table.entry(row["period"], column))
-        scope.look_up("x", table.entry(row["period"], "x"))
+        scope.look_up("C_t", table.entry(row["period"], column), rests=("system",))
+        scope.look_up("x", table.entry(row["period"], "x"), rests=("system",))
         return scope.compute(formulas.T_A_TABLE, typed=operands, flags=flags)
 
 
@@ -130,7 +126,8 @@ def _by_stories(scope: Scope, flags: list[Flag]) -> Handle:
         broken.append(f"average story height {highest / count:.2f} ft, below 10 ft")
     if broken:
         raise ScopeError(f"{scope.id_of('T_a')} by 0.1 N (12.8.2.1): {'; '.join(broken)}; set T_a_method to table")
-    scope.state("N", str(count), "table", formulas.T_A_STORIES.source, detail="number of levels above the base")
+    source, detail = formulas.T_A_STORIES.source, "number of levels above the base"
+    scope.state("N", str(count), "table", source, detail=detail, rests=("h_x",))
     return scope.compute(formulas.T_A_STORIES, flags=flags)
 
 
@@ -140,14 +137,16 @@ def period(scope: Scope) -> Handle:
     if faults:
         raise InputError("asce7.period", faults)
     with scope.step():
-        scope.look_up("C_u", load(PACKAGE, "C_u").along("C_u", "S_D1", scope.number("S_D1") or 0.0))
+        found = load(PACKAGE, "C_u").along("C_u", "S_D1", scope.number("S_D1") or 0.0)
+        scope.look_up("C_u", found, rests=("S_D1",))
         scope.compute(formulas.T_MAX)
         formula, reason, flags = _choice(scope)
-        T = scope.compute(formula, detail=reason, flags=flags, candidates=_candidates(scope, formula, reason))
+        compared = _candidates(scope, formula, reason)
+        rests = ("T_analysis", "T_a", "T_max", "T_choice")
+        T = scope.compute(formula, detail=reason, flags=flags, candidates=compared, rests=rests)
         made = scope.number("T_analysis") is not None
-        scope.compute(
-            formulas.T_DRIFT_ANALYSIS if made else formulas.T_DRIFT_APPROXIMATE, detail="no upper limit for drift"
-        )
+        formula = formulas.T_DRIFT_ANALYSIS if made else formulas.T_DRIFT_APPROXIMATE
+        scope.compute(formula, detail="no upper limit for drift", rests=("T_analysis",))
         return T
 
 
@@ -202,17 +201,16 @@ def seismic_weight(scope: Scope) -> Handle:
 
 def procedure(scope: Scope) -> Handle:
     """Whether equivalent lateral forces are permitted (Table 12.6-1), and prohibited irregularities (12.3.3.1)."""
+    questions = (
+        ("prohibited", "No prohibited irregularity", "12.3.3.1", _prohibited),
+        ("procedure", "Equivalent lateral force procedure permitted", "Table 12.6-1", _table_12_6_1),
+    )
     with scope.step():
-        _prohibited(scope)
-        verdict, detail, missing = _table_12_6_1(scope)
-        return scope.verdict(
-            "procedure",
-            "Equivalent lateral force procedure permitted",
-            verdict,
-            rule("Table 12.6-1", obtained="found"),
-            detail=detail,
-            missing=missing,
-        )
+        for id_, title, where, decide in questions:
+            verdict, detail, missing = decide(scope)
+            source = rule(where, obtained="found")
+            made = scope.verdict(id_, title, verdict, source, detail=detail, missing=missing, rests=RESTS)
+        return made
 
 
 def _answered(scope: Scope) -> tuple[set[str], list[str]]:
@@ -220,40 +218,19 @@ def _answered(scope: Scope) -> tuple[set[str], list[str]]:
     return {n for n, word in words.items() if word == "yes"}, [n for n, word in words.items() if word is None]
 
 
-def _prohibited(scope: Scope) -> None:
-    category = scope.word("SDC") or ""
+def _prohibited(scope: Scope) -> tuple[str, str, str]:
+    category = scope.word("SDC")
+    if category is None:
+        return NOT_CHECKED, "", "SDC (seismic design category)"
     wanted = PROHIBITED.get(category, set())
     present, unanswered = _answered(scope)
-    source = rule("12.3.3.1", obtained="found")
-    title = "No prohibited irregularity"
-    if not category:
-        scope.verdict("prohibited", title, NOT_CHECKED, source, missing="SDC (seismic design category)")
-    elif found := sorted(wanted & present):
-        scope.verdict(
-            "prohibited",
-            title,
-            NOT_OK,
-            source,
-            detail=f"{', '.join(found)} is prohibited in design category {category}",
-        )
-    elif waiting := sorted(wanted & set(unanswered)):
-        scope.verdict("prohibited", title, NOT_CHECKED, source, missing=f"answers {', '.join(waiting)}")
-    elif category in "BC" and "V5b" in present:
-        scope.verdict(
-            "prohibited",
-            title,
-            NOT_CHECKED,
-            source,
-            missing="the limits of 12.3.3.2 for type V5b (two stories or 30 ft)",
-        )
-    else:
-        scope.verdict(
-            "prohibited",
-            title,
-            OK,
-            source,
-            detail=f"design category {category}: none of {', '.join(sorted(wanted)) or 'the types'} present",
-        )
+    if found := sorted(wanted & present):
+        return NOT_OK, f"{', '.join(found)} is prohibited in design category {category}", ""
+    if waiting := sorted(wanted & set(unanswered)):
+        return NOT_CHECKED, "", f"answers {', '.join(waiting)}"
+    if category in ("B", "C") and "V5b" in present:
+        return NOT_CHECKED, "", "the limits of 12.3.3.2 for type V5b (two stories or 30 ft)"
+    return OK, f"design category {category}: none of {', '.join(sorted(wanted)) or 'the types'} present", ""
 
 
 def _table_12_6_1(scope: Scope) -> tuple[str, str, str]:
@@ -273,11 +250,8 @@ def _table_12_6_1(scope: Scope) -> tuple[str, str, str]:
     if h_n <= 160 and present <= TOLERATED:
         return OK, f"h_n not above 160 ft, irregularities: {', '.join(sorted(present)) or 'none'}", ""
     if present:
-        return (
-            NOT_OK,
-            f"design category {category} with irregularities {', '.join(sorted(present))} and h_n = {h_n:g} ft",
-            "",
-        )
+        listed = ", ".join(sorted(present))
+        return NOT_OK, f"design category {category} with irregularities {listed} and h_n = {h_n:g} ft", ""
     return _long_period(scope, category, h_n)
 
 
