@@ -12,7 +12,7 @@ from dataclasses import replace
 from typing import TYPE_CHECKING, Any
 
 from calckit import units
-from calckit.core import columns, display, work
+from calckit.core import columns, work
 from calckit.core.book import Entry, this_cell
 from calckit.core.formula import Formula
 from calckit.core.handle import Handle
@@ -135,7 +135,7 @@ class Scope:
                 table for table in book.tables.values() if shown & set(table.lines) and table.id in book.fresh_tables
             ]
             book.fresh_tables.clear()
-            display.show(ordered, tables, book.notices)
+            self.calc.outputs.show(ordered, tables, book.notices)
 
     def write(self, entry: Entry) -> Handle:
         """Write one line: the single place where set values and overrides of computed lines take effect."""
