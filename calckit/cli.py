@@ -1,4 +1,4 @@
-"""The `calckit` command: new, issue, recheck, verify.
+"""The `calckit` command: new, issue, recheck, compare, verify.
 
 Knows the command line, the templates and the exit codes. Must not know how a command does its work; each part is
 loaded when its command is called.
@@ -13,10 +13,14 @@ import sys
 import threading
 from collections.abc import Sequence
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from calckit import __version__
 from calckit.core.record import STATUSES
 from calckit.errors import CalckitError, CommandError, MismatchError, NotebookError, UnknownNameError
+
+if TYPE_CHECKING:
+    from calckit.report.recheck import Finding
 
 DONE, AT_FAULT, CELL_RAISED, MISMATCH, INTERRUPTED = 0, 2, 3, 4, 130
 _PATIENCE = 2.0  # seconds
@@ -80,9 +84,39 @@ def _parser() -> argparse.ArgumentParser:
     issue.add_argument("--only", choices=("html", "pdf"), help="write this form alone")
     issue.set_defaults(command=_issue)
 
-    recheck = commands.add_parser("recheck", help="hold an issued PDF or HTML file against its seal and hashes")
+    recheck = commands.add_parser("recheck", help="hold an issued PDF or HTML file against itself")
     recheck.add_argument("file", metavar="FILE", type=Path)
+    recheck.add_argument(
+        "--run", action="store_true", help="run the notebook inside the file, too: this runs the file's code"
+    )
     recheck.set_defaults(command=_recheck)
+
+    comments = commands.add_parser("comments", help="read the comments of a returned PDF into a check log")
+    comments.add_argument("file", metavar="PDF", type=Path)
+    comments.add_argument("--check-log", metavar="FILE", type=Path, required=True, help="check log (CSV) to add to")
+    comments.set_defaults(command=_comments)
+
+    files = commands.add_parser("files", help="write a signature report: files with digests, to be signed by hand")
+    files.add_argument("files", metavar="FILE", type=Path, nargs="+")
+    files.add_argument("--to", metavar="PATH", type=Path, default=Path(), help="file or folder to write to")
+    files.set_defaults(command=_files)
+
+    compare = commands.add_parser("compare", help="what changed between two issued files, in engineering terms")
+    compare.add_argument("old", metavar="OLD", type=Path, help="a PDF, an HTML file or a record file")
+    compare.add_argument("new", metavar="NEW", type=Path)
+    compare.add_argument("--to", metavar="FILE", type=Path, help="write the comparison as an HTML file, too")
+    compare.set_defaults(command=_compare)
+
+    extract = commands.add_parser("extract", help="inputs and criteria alone, for an independent recalculation")
+    extract.add_argument("file", metavar="FILE", type=Path, help="an issued PDF or HTML file")
+    extract.add_argument("--ask", metavar="ID,...", required=True, help="ids of the results to be recalculated")
+    extract.add_argument("--to", metavar="PATH", type=Path, default=Path(), help="folder to write to; default here")
+    extract.set_defaults(command=_extract)
+
+    reconcile = commands.add_parser("reconcile", help="set a checker's own numbers beside those of an issued file")
+    reconcile.add_argument("file", metavar="FILE", type=Path, help="an issued PDF or HTML file")
+    reconcile.add_argument("csv", metavar="CSV", type=Path, help="the filled CSV of calckit extract")
+    reconcile.set_defaults(command=_reconcile)
 
     verify = commands.add_parser("verify", help="run the published checks of the kit")
     verify.add_argument("name", nargs="?", metavar="NAME", help="folder of a standard, or dynamics; default all")
@@ -150,14 +184,70 @@ def _issue(arguments: argparse.Namespace) -> int:
 
 
 def _recheck(arguments: argparse.Namespace) -> int:
-    from calckit.report.recheck import recheck
+    from calckit.report.recheck import recheck, run_again
 
     findings = recheck(arguments.file)
     print(arguments.file)
+    good = _print_findings(findings)
+    if not arguments.run:
+        return DONE if good else MISMATCH
+    print("running the code inside this file, in a temporary folder, with your own rights ...", flush=True)
+    try:
+        good &= _print_findings(run_again(arguments.file))
+    except NotebookError as error:
+        if good:
+            raise
+        print(f"calckit: {error}", file=sys.stderr)
+    return DONE if good else MISMATCH
+
+
+def _print_findings(findings: Sequence[Finding]) -> bool:
+    """Print findings, what each names below it; whether all are good."""
     width = max(len(finding.what) for finding in findings)
     for finding in findings:
-        print(f"  {finding.what:{width}}  {finding.text}")
-    return DONE if all(finding.good for finding in findings) else MISMATCH
+        print(f"  {finding.what:{width}}  {finding.text.replace(chr(10), chr(10) + ' ' * (width + 6))}")
+    return all(finding.good for finding in findings)
+
+
+def _comments(arguments: argparse.Namespace) -> int:
+    from calckit.report import comments
+
+    print(comments.collect(arguments.file, arguments.check_log))
+    return DONE
+
+
+def _files(arguments: argparse.Namespace) -> int:
+    from calckit.report import signature
+
+    print(signature.write(arguments.files, arguments.to))
+    return DONE
+
+
+def _compare(arguments: argparse.Namespace) -> int:
+    from calckit.report import compare
+
+    comparison = compare.compare(arguments.old, arguments.new)
+    written = compare.write(comparison, arguments.to) if arguments.to else None
+    print(compare.text(comparison))
+    if written:
+        print(f"\n{written}")
+    return MISMATCH if comparison.faults else DONE
+
+
+def _extract(arguments: argparse.Namespace) -> int:
+    from calckit.report import extract
+
+    ids = [id_.strip() for id_ in arguments.ask.split(",") if id_.strip()]
+    print(*extract.export(arguments.file, ids, arguments.to), sep="\n")
+    return DONE
+
+
+def _reconcile(arguments: argparse.Namespace) -> int:
+    from calckit.report import reconcile
+
+    rows = reconcile.reconcile(arguments.file, arguments.csv)
+    print(reconcile.text(rows))
+    return DONE if all(row.settled for row in rows) else MISMATCH
 
 
 def _verify(arguments: argparse.Namespace) -> int:

@@ -239,6 +239,12 @@ class Formula:
         with localcontext(CONTEXT):
             return self._value(self.tree, row)
 
+    def even_at(self, row: int) -> bool:
+        """Whether both sides of a relation are the same number in a row."""
+        assert isinstance(self.tree, ast.Compare)
+        with localcontext(CONTEXT):
+            return bool(self._value(self.tree.left, row) == self._value(self.tree.comparators[0], row))
+
     def _value(self, node: ast.expr, row: int | None) -> Any:
         match node:
             case ast.Name(id=name):

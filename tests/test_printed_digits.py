@@ -285,6 +285,18 @@ HARD = {
         """,
         "2.4 3.28", second=False, S_S="1.72", S_1="0.157", site_class="B", risk_category="IV", h_n="47.9 ft",
     ),
+    "a drift that stands at its limit but for rounding": hard(
+        """
+        h_x[m] w_x[kN] X.delta_xe[mm] Y.delta_xe[mm] P_x[kN]
+        7 22.9 1708 57.75 57.75  1708
+        6 19.9 4960 48.75 48.75  6668
+        5 14.1 4648 39.75 39.75 11316
+        4 10.1 2228 23.75 23.75 13544
+        3  7.5 2464 19.25 19.25 16008
+        2  2.5 1024 17.25 17.25 17032
+        """,
+        "2.24 2.57", S_S="1.5", S_1="0.347", site_class="B", risk_category="I", h_n="22.9 m",
+    ),
     "two equal stories": hard(
         """
         h_x[ft] w_x[kip] X.delta_xe[in] Y.delta_xe[in] P_x[kip]
@@ -300,6 +312,12 @@ HARD = {
 def test_rule_holds_for_buildings_that_are_hard_to_print(name: str) -> None:
     for system in ("US", "SI"):
         assert audit(json.loads(HARD[name].record(units=system).to_json())).faults == []
+
+
+def test_drift_at_its_limit_is_met() -> None:
+    # story 5: 16 mm times C_d = 5 are 80 mm, 0.020 of its 4 m; in inches the two differ in the twelfth digit
+    line = HARD["a drift that stands at its limit but for rounding"].record().line("Y.drift")
+    assert line.detail.partition(";")[0] == "not met at 2"
 
 
 def test_rows_close_to_their_limit_read_as_they_were_judged() -> None:

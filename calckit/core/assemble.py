@@ -30,7 +30,7 @@ def assemble(calc: Calc) -> Record:
         [calc.lines.tables[id_] for _, kind, id_ in calc.lines.blocks if kind == "table"],
         [calc.lines.figures[id_] for _, kind, id_ in calc.lines.blocks if kind == "figure"],
         list(_open_items(calc, lines)), calc.standard.summaries(calc), _cells(calc),
-        list(calc.standard.field_of_use), list(calc.standard.not_covered),
+        list(calc.standard.field_of_use), list(calc.standard.not_covered), list(calc.enclosures.values()),
     )  # fmt: skip
 
 

@@ -7,9 +7,10 @@ computed, shown or exported.
 from __future__ import annotations
 
 import copy
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from contextlib import contextmanager
 from dataclasses import dataclass, field, replace
+from graphlib import CycleError, TopologicalSorter
 from typing import Any
 
 from calckit.core.record import Figure, Line, Table, canonical, digest
@@ -86,12 +87,31 @@ class Book:
     written: list[str] = field(default_factory=list)
     fresh_tables: set[str] = field(default_factory=set)
     depth: int = 0
+    deleted: set[str] = field(default_factory=set)
 
-    def watch(self) -> None:
-        """Drop, after each run of a cell, the lines that the cell no longer writes."""
+    def watch(self, then: Callable[[Any], None]) -> None:
+        """Drop, after each run of a cell, the lines that the cell no longer writes; `then` takes its result."""
+
+        def settle(result: Any) -> None:
+            self.drop_left_over(this_cell())
+            self.note_deleted()
+            then(result)
+
         shell = _shell()
         if shell is not None:
-            shell.events.register("post_run_cell", lambda _result: self.drop_left_over(this_cell()))
+            shell.events.register("post_run_cell", settle)
+
+    def note_deleted(self) -> None:
+        """Note the cells that the notebook, with its request to run one, says were deleted since."""
+        shell = _shell()
+        if shell is not None:
+            self.deleted |= set(shell.get_parent().get("metadata", {}).get("deletedCells", ()))
+            self.deleted.discard(this_cell().key)
+
+    def without_cell(self) -> list[str]:
+        """Lines in force whose cell was deleted from the notebook, in document order."""
+        self.note_deleted()
+        return [id_ for cell, kind, id_ in self.blocks if kind == "line" and cell.key in self.deleted]
 
     def drop_left_over(self, cell: Cell) -> None:
         """Remove what earlier runs of this cell wrote and this run did not."""
@@ -193,9 +213,50 @@ class Book:
             if entry is None or entry.line.content != line.inputs[name].content or entry.line.id in stale
         ]
 
+    def behind(self, ids: Iterable[str], stale: Mapping[str, Sequence[str]]) -> tuple[list[str], list[Cell]]:
+        """Why lines are stale: what has become of the operands it began with, and the cells to run, in order."""
+        causes: dict[str, None] = {}
+        suppliers: dict[Cell, set[Cell]] = {}
+        ahead, done = sorted(ids, reverse=True), set()
+        while ahead:
+            id_ = ahead.pop()
+            if id_ in done:
+                continue
+            line, cell = self.entries[id_].line, self.entries[id_].cell
+            needs = suppliers.setdefault(cell, set())
+            done.add(id_)
+            for name in stale[id_]:
+                found = self.find(line.part, name)
+                if found is None or found.line.id not in stale:
+                    causes[f"{name} {_became(name, found)}"] = None
+                    continue
+                needs |= {found.cell} - {cell}
+                ahead.append(found.line.id)
+        return list(causes), self._in_order(suppliers)
+
+    def _in_order(self, suppliers: Mapping[Cell, set[Cell]]) -> list[Cell]:
+        """Cells so that each stands after those it takes from, otherwise in document order."""
+        places = {cell: place for place, (cell, *_) in reversed(list(enumerate(self.blocks)))}
+        sorter, ordered = TopologicalSorter(suppliers), list[Cell]()
+        try:
+            sorter.prepare()
+        except CycleError:
+            return sorted(suppliers, key=lambda cell: places[cell])
+        while sorter.is_active():
+            ready = sorted(sorter.get_ready(), key=lambda cell: places[cell])
+            sorter.done(*ready)
+            ordered += ready
+        return ordered
+
     def snapshot(self) -> list[Line]:
         """Copies of all lines in document order, numbered 1..n."""
         lines = [copy.deepcopy(self.entries[id_].line) for _, kind, id_ in self.blocks if kind == "line"]
         for n, line in enumerate(lines, 1):
             line.n = n
         return lines
+
+
+def _became(name: str, found: Entry | None) -> str:
+    if found is None:
+        return "is gone"
+    return "changed" if found.line.id == name else f"is {found.line.id} now"

@@ -8,11 +8,13 @@ from __future__ import annotations
 import re
 from collections.abc import Sequence
 from datetime import date as calendar_date
+from pathlib import Path
 from typing import Any
 
 from calckit.core import settings
 from calckit.core.book import Book, _shell
-from calckit.core.record import STATUSES
+from calckit.core.outputs import Outputs
+from calckit.core.record import STATUSES, Enclosure
 from calckit.core.sources import Document, Sources
 from calckit.core.standard import edition
 from calckit.core.symbol import Symbol
@@ -74,6 +76,7 @@ class Calc(Writer):
         run = settings.current()
         self.title_block = _title_block(fields, run)
         self.lines = Book(run)
+        self.outputs = Outputs(self.lines)
         self.standard = edition(self.title_block["standard"])
         self.sources = Sources(self.standard)
         self.parts: dict[str, Part] = {}
@@ -82,17 +85,69 @@ class Calc(Writer):
         self.revisions: list[dict[str, str]] = []
         self.files: dict[str, bytes] = {}
         self.figure_data: dict[str, bytes] = {}
+        self.enclosures: dict[str, Enclosure] = {}
         if run.confirmed:
             self.sources.read_register(run.confirmed)
         if _shell() is not None:
             for other in _current:
                 other.superseded = True
+                other.outputs.start_afresh()
         _current[:] = [self]
-        self.lines.watch()
+        self.lines.watch(self.outputs.settle)
 
     def document(self, key: str, *, title: str, author: str = "", revision: str = "", date: str = "") -> None:
         """Declare a document; sources name it by its key."""
         self.sources.declare(Document(key, title, author, revision, date))
+
+    def enclose(self, document: str, file: str, *, pages: str, alt: str) -> None:
+        """Bind pages of a declared document behind the calculation, each on a sheet of its own.
+
+        Arguments: `document`, its key; `file`, a PDF beside the notebook, which travels with the report; `pages`, those
+        to bind, such as "1-3, 7"; `alt`, what a reader who cannot see needs to know of them. Raises UnknownNameError
+        for a key that is not declared, InputError naming everything else that is wrong; whether the file has these
+        pages is found when the report is written.
+
+        >>> Calc(project="Demo", number="D-1").enclose("H-2", "hazard.pdf", pages="1-3", alt="hazard printout")
+        Traceback (most recent call last):
+        calckit.errors.UnknownNameError: enclose: document 'H-2' is not known; known: none yet; cure: declare it: ...
+        """
+        clean = self.book.settings.clean
+        if document not in self.sources.documents:
+            cure = 'declare it: calc.document("KEY", title=...)'
+            raise UnknownNameError("enclose: document", document, self.sources.documents, cure)
+        if clean and document in self.enclosures:
+            raise DuplicateError(f"document {document!r} is enclosed twice; name all its pages in one call")
+        enclosure = Enclosure(document, Path(file).as_posix(), str(pages), alt)
+        faults = [] if alt.strip() else [Fault("alt", "words for a reader who cannot see the pages", "blank")]
+        try:
+            enclosure.page_numbers()
+        except ValueError:
+            faults.append(Fault("pages", "pages and ranges, each page once and rising", repr(pages), 'as in "1-3, 7"'))
+        try:
+            if b"%PDF-" not in self.file(file)[:1024]:
+                faults.append(Fault("file", "a PDF", f"{file}, which is none", "print the document to PDF"))
+        except InputError as error:
+            faults += error.faults
+        if faults:
+            raise InputError(f"enclose {document}", faults)
+        self.enclosures[document] = enclosure
+
+    def dependency(self, name: str) -> dict[str, Any]:
+        """The lines that a result rests on, as plain data for `plots.dependency`.
+
+        `name` is a symbol or a line id. Returns `lines` (number, symbol or title, printed value, by line id and in
+        document order), `edges` (id of an input, id of the line that uses it) and `result` (the id). Numbers are those
+        of the calculation as it stands. Raises UnknownNameError.
+
+        >>> calc = Calc(project="Demo", number="D-1")
+        >>> _ = calc.assume("L", "30 ft", basis="demo", meaning="length of the wall")
+        >>> _ = calc.line("A", "L*L", unit="ft^2", meaning="area")
+        >>> calc.dependency("A")
+        {'lines': {'L': (1, 'L', '30 ft'), 'A': (2, 'A', '900.0 ft²')}, 'edges': [('L', 'A')], 'result': 'A'}
+        """
+        from calckit.core.dependency import dependency
+
+        return dependency(self.book, self[name].id)
 
     def revise(self, revision: str, *, date: str, reason: str, by: str, sheets: str = "") -> None:
         """A row of the revision table."""

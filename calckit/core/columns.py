@@ -15,7 +15,7 @@ from functools import partial
 from typing import TYPE_CHECKING, Any
 
 from calckit import units
-from calckit.core import digits
+from calckit.core import digits, work
 from calckit.core.book import Entry
 from calckit.core.formula import Formula
 from calckit.core.numbers import DECIMALS, in_decimals
@@ -64,7 +64,7 @@ def tell_apart(scope: Scope, check: Entry) -> None:
     while not _reads_as_judged(check, here, grids):
         finer = [_finer(entry, grids, key) for key, entry in here.items() if not entry.numerals]
         if not any(finer):
-            break  # the worst row is worked in full, with all its digits, in the check itself
+            return  # all but equal: the check itself works its row with every digit that is carried
     changed = {key: places for key, places in grids.items() if places != here[key].decimals}
     if changed:
         _work_again(scope, changed)
@@ -81,7 +81,7 @@ def _reads_as_judged(check: Entry, here: dict[str, Entry], grids: dict[str, int]
     exact = {name: _carried(line.inputs[key].value) for name, key in names.items()}
     return shown is None or all(
         relation.node.value(relation.env(shown, DECIMALS, line.rows, row))
-        == relation.node.value(relation.env(exact, DECIMALS, line.rows, row))
+        == work.judged(relation, relation.env(exact, DECIMALS, line.rows, row))
         for row in range(len(line.rows))
     )
 

@@ -17,12 +17,13 @@ from decimal import ROUND_HALF_UP, Decimal
 from calckit.core.numbers import DECIMAL
 
 CARRIED = 12
+COMPARED = 10
 MOST_IN_TABLE = 7
 WHOLE = 7
 
 
-def carried(value: float | Decimal) -> Decimal:
-    """A value rounded to 12 significant digits.
+def carried(value: float | Decimal, figures: int = CARRIED) -> Decimal:
+    """A value rounded to 12 significant digits, or to `figures`.
 
     >>> carried(0.1 + 0.2)
     Decimal('0.300000000000')
@@ -30,7 +31,7 @@ def carried(value: float | Decimal) -> Decimal:
     number = value if isinstance(value, Decimal) else Decimal(repr(float(value)))
     if not number:
         return Decimal(0)
-    return number.quantize(Decimal(1).scaleb(number.adjusted() - CARRIED + 1), ROUND_HALF_UP, DECIMAL)
+    return number.quantize(Decimal(1).scaleb(number.adjusted() - figures + 1), ROUND_HALF_UP, DECIMAL)
 
 
 def decimals_for(values: Iterable[Decimal], digits: int) -> int:

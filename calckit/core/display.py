@@ -1,13 +1,13 @@
 """Showing lines below the cell that wrote them.
 
-Knows the output forms a notebook takes: plain text, Markdown, LaTeX for a single formula, and the record's own. Must
-not know how a line came about.
+Knows the output forms a notebook takes: plain text, Markdown, LaTeX for a single formula, and the record's own; and how
+a display is replaced by itself with a mark. Must not know how a line came about, nor when it is marked.
 """
 
 from __future__ import annotations
 
 import re
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import asdict, replace
 from typing import Any
 
@@ -15,18 +15,36 @@ from calckit import units
 from calckit.core.record import MIME, TO_BE_CONFIRMED, Line, Table
 
 
-def show(lines: Sequence[Line], tables: Sequence[Table], notices: Sequence[str]) -> None:
-    """Display lines and tables in a notebook; in a plain script nothing is shown."""
+def show(lines: Sequence[Line], tables: Sequence[Table], notices: Sequence[str], display_id: str) -> dict[str, Any]:
+    """Display lines and tables in a notebook; returns the forms shown, none of them in a plain script."""
     try:
         from IPython import get_ipython
         from IPython.display import display
     except ImportError:
-        return
+        return {}
     in_tables = {id_ for table in tables for id_ in table.lines}
     lines = [line for line in lines if not (line.kind == "given" and line.id in in_tables)]
     if get_ipython() is None or not (lines or tables or notices):
-        return
-    display(bundle(lines, tables, notices), raw=True)  # type: ignore[no-untyped-call]
+        return {}
+    data = bundle(lines, tables, notices)
+    display(data, raw=True, display_id=display_id)  # type: ignore[no-untyped-call]
+    return data
+
+
+def show_again(data: Mapping[str, Any], mark: str, display_id: str) -> None:
+    """Put the forms shown earlier in place of themselves, below `mark`; a blank mark leaves them as they were."""
+    from IPython.display import update_display
+
+    update_display(marked(data, mark) if mark else dict(data), raw=True, display_id=display_id)  # type: ignore[no-untyped-call]
+
+
+def marked(data: Mapping[str, Any], mark: str) -> dict[str, Any]:
+    """The forms shown earlier below a mark; LaTeX, which holds a formula alone, is left out."""
+    return {
+        "text/plain": f"{mark}\n{data['text/plain']}",
+        "text/markdown": f"**{escaped(mark)}**\n\n{data['text/markdown']}",
+        MIME: data[MIME],
+    }
 
 
 def bundle(lines: Sequence[Line], tables: Sequence[Table], notices: Sequence[str]) -> dict[str, Any]:
@@ -37,7 +55,7 @@ def bundle(lines: Sequence[Line], tables: Sequence[Table], notices: Sequence[str
             [
                 *(_markdown(line) for line in lines),
                 *(_markdown_table(t) for t in tables),
-                *(_escaped(n) for n in notices),
+                *(escaped(n) for n in notices),
             ]
         ),
         MIME: {
@@ -106,26 +124,26 @@ def _text_latex(text: str) -> str:
 
 
 def _markdown(line: Line) -> str:
-    head = f"**{_escaped(f'{line.part}: {line.meaning}' if line.part else line.meaning)}**"
+    head = f"**{escaped(f'{line.part}: {line.meaning}' if line.part else line.meaning)}**"
     value = _shown(line)
     if line.forms:
         body = f"$\\displaystyle {_latex(line)}$"
     elif line.typeset:
-        body = f"${line.typeset['latex']}$ = {_escaped(value)}"
+        body = f"${line.typeset['latex']}$ = {escaped(value)}"
     else:
-        body = _escaped(value)
+        body = escaped(value)
     words = [
         line.verdict or "",
         f"missing: {line.missing}" if line.missing else "",
         line.text if not line.forms else "",
     ]
-    parts = [head, body, " ".join(_escaped(word) for word in words if word), *(_escaped(text) for text in _tail(line))]
+    parts = [head, body, " ".join(escaped(word) for word in words if word), *(escaped(text) for text in _tail(line))]
     return (
         "  \n".join(part for part in parts if part) if not line.forms else "\n\n".join(part for part in parts if part)
     )
 
 
-def _escaped(text: str) -> str:
+def escaped(text: str) -> str:
     """User text as Markdown text, never as markup."""
     return re.sub(r"([\\`*_{}\[\]<>()#+!|$~-])", r"\\\1", text)
 
@@ -145,5 +163,5 @@ def _markdown_table(table: Table) -> str:
     head, rows = _grid(table)
     lines = [head, ["---:"] * len(head), *rows]
     return "\n".join(
-        "| " + " | ".join(cell if row is lines[1] else _escaped(cell) for cell in row) + " |" for row in lines
+        "| " + " | ".join(cell if row is lines[1] else escaped(cell) for cell in row) + " |" for row in lines
     )

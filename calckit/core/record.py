@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import hashlib
 import json
+import re
 from collections.abc import Iterable
 from dataclasses import asdict, dataclass, field, fields
 from typing import Any
@@ -198,6 +199,36 @@ class Figure:
 
 
 @dataclass
+class Enclosure:
+    """Pages of a declared document, bound behind the calculation.
+
+    `document` is the document's key, `file` the PDF as the notebook names it, `pages` the pages as typed ("1-3, 7"),
+    `alt` what a reader who cannot see needs to know of them.
+    """
+
+    document: str
+    file: str
+    pages: str
+    alt: str
+
+    def page_numbers(self) -> list[int]:
+        """The pages one by one.
+
+        Raises ValueError unless `pages` lists pages and ranges from 1 up, each page once and rising.
+
+        >>> Enclosure("H-2", "hazard.pdf", "1-3, 7", "printout").page_numbers()
+        [1, 2, 3, 7]
+        """
+        spans = [re.fullmatch(r"\s*([0-9]{1,4})(?:\s*-\s*([0-9]{1,4}))?\s*", item) for item in self.pages.split(",")]
+        ends = [(int(span[1]), int(span[2] or span[1])) for span in spans if span]
+        numbers = [number for first, last in ends for number in range(first, last + 1)]
+        rising = numbers == sorted(set(numbers)) and all(first <= last for first, last in ends)
+        if len(ends) < len(spans) or not rising or numbers[0] < 1:
+            raise ValueError(f"{self.pages!r} is no rising list of pages")
+        return numbers
+
+
+@dataclass
 class OpenItem:
     """One thing to be closed before issue for construction; `group` is "open" or "confirm"."""
 
@@ -233,7 +264,8 @@ class Record:
 
     `calculation` holds the title block, documents, revisions, parts, standards and software. `cells` lists, for each
     code cell in order, what it wrote: `["line" | "table" | "figure", id]`. `field_of_use` and `not_covered` are the
-    standard's own statements of what the kit does and leaves out.
+    standard's own statements of what the kit does and leaves out. `source` is the hash of all cells of the notebook,
+    `cell_hashes` that of each by its id.
     """
 
     calculation: dict[str, Any]
@@ -245,10 +277,12 @@ class Record:
     cells: list[list[list[str]]] = field(default_factory=list)
     field_of_use: list[str] = field(default_factory=list)
     not_covered: list[str] = field(default_factory=list)
+    enclosures: list[Enclosure] = field(default_factory=list)
     source: str = ""
     inputs: str = ""
     lines_hash: str = ""
     seals: dict[str, str] | None = None
+    cell_hashes: dict[str, str] = field(default_factory=dict)
 
     def line(self, id_: str) -> Line:
         """The line with this id; KeyError if there is none."""
@@ -294,6 +328,7 @@ def from_json(text: str) -> Record:
     data["figures"] = [Figure(**f) for f in data["figures"]]
     data["open_items"] = [OpenItem(**o) for o in data["open_items"]]
     data["summaries"] = [Summary(**{**s, "rows": [SummaryRow(**r) for r in s["rows"]]}) for s in data["summaries"]]
+    data["enclosures"] = [Enclosure(**e) for e in data.get("enclosures", [])]
     return Record(**data)
 
 

@@ -12,7 +12,7 @@ from dataclasses import replace
 from typing import TYPE_CHECKING, Any
 
 from calckit import units
-from calckit.core import columns, display, work
+from calckit.core import columns, work
 from calckit.core.book import Entry, this_cell
 from calckit.core.formula import Formula
 from calckit.core.handle import Handle
@@ -135,7 +135,7 @@ class Scope:
                 table for table in book.tables.values() if shown & set(table.lines) and table.id in book.fresh_tables
             ]
             book.fresh_tables.clear()
-            display.show(ordered, tables, book.notices)
+            self.calc.outputs.show(ordered, tables, book.notices)
 
     def write(self, entry: Entry, rests: Sequence[str] = ()) -> Handle:
         """Write one line: the single place where set values and overrides of computed lines take effect.
@@ -205,24 +205,28 @@ class Scope:
     def look_up(self, symbol: str, found: Any, flags: Sequence[Flag] = (), rests: Sequence[str] = ()) -> Handle:
         """Write a table value: an exact entry, or the formula that interpolates between two.
 
-        `rests` are the symbols that chose row and column.
+        `rests` are the symbols that chose row and column. An entry at a knot of the table prints as an entry and keeps
+        the formula of its two sides, for slopes.
         """
         if found.expression:
             formula = Formula(symbol, found.expression, found.source)
             return self.compute(formula, kind="table", detail=found.detail, flags=flags, rests=rests)
-        return self.state(symbol, found.text, "table", found.source, detail=found.detail, flags=flags, rests=rests)
+        return self.state(
+            symbol, found.text, "table", found.source, detail=found.detail, flags=flags, rests=rests,
+            formula=found.knot or None,
+        )  # fmt: skip
 
     def state(
         self, symbol: str, raw: Any, kind: str, source: Source | None, *, text: str = "", detail: str = "",
         flags: Sequence[Flag] = (), rests: Sequence[str] = (), candidates: Sequence[Candidate] = (),
-        margin: Margin | None = None,
+        margin: Margin | None = None, formula: str | None = None,
     ) -> Handle:  # fmt: skip
         """Write a line whose value stands as typed or as printed in a table."""
         declared = self.symbol(symbol)
         reading = self._read(declared, raw)
         assert reading is not None
         entry = self._stated(declared, reading, kind, source, text, detail, flags)
-        entry.line.candidates, entry.line.margin = list(candidates), margin
+        entry.line.candidates, entry.line.margin, entry.line.formula = list(candidates), margin, formula
         return self.write(entry, rests)
 
     def _stated(

@@ -24,13 +24,15 @@ REQUIRED = ("standard", "edition", "table", "title", "clause", "rows", "obtained
 class Found:
     """A look-up: the entry as printed (`text`), or, between two columns, the expression that interpolates.
 
-    `detail` names table, row and column, with the bracketing entries if interpolated.
+    `detail` names table, row and column, with the bracketing entries if interpolated. At a column of the axis `knot` is
+    the expression of the straight lines on both sides, which gives the entry itself there.
     """
 
     text: str
     expression: str
     detail: str
     source: Source
+    knot: str = ""
 
 
 @dataclass(frozen=True)
@@ -85,7 +87,8 @@ class Table:
             if value == position or below or beyond:
                 side = "below the first" if below else "beyond the last"
                 held = f" (end value, {symbol} {side} column)" if below or beyond else ""
-                return Found(text, "", f"{self.name}, row {key}, column {column}: {text}{held}", source)
+                knot = "" if held else _knot(points, column, symbol)
+                return Found(text, "", f"{self.name}, row {key}, column {column}: {text}{held}", source, knot)
         (_, a, low), (_, b, high) = next(
             (left, right) for left, right in pairwise(points) if left[0] < value < right[0]
         )
@@ -94,7 +97,24 @@ class Table:
             return Found(low, "", detail, source)
         if not (_number(low) and _number(high)):
             return Found(low if not _number(low) else high, "", detail, source)
-        return Found("", f"{low} + ({high} - {low})*({symbol} - {a})/({b} - {a})", detail, source)
+        return Found("", _between(a, low, b, high, symbol), detail, source)
+
+
+def _between(a: str, low: str, b: str, high: str, symbol: str) -> str:
+    return f"{low} + ({high} - {low})*({symbol} - {a})/({b} - {a})"
+
+
+def _knot(points: Sequence[tuple[float, str, str]], column: str, symbol: str) -> str:
+    """The straight lines below and above a column, an end value held; "" where they are level or entries are words."""
+    at = [name for _, name, _ in points].index(column)
+    near = points[max(at - 1, 0) : at + 2]
+    if not all(_number(text) for _, _, text in near) or len({text for _, _, text in near}) == 1:
+        return ""
+    entry = points[at][2]
+    lines = [_between(a, low, b, high, symbol) for (_, a, low), (_, b, high) in pairwise(near)]
+    below = lines[0] if at else entry
+    above = lines[-1] if at + 1 < len(points) else entry
+    return f"{below} if {symbol} <= {column} else {above}"
 
 
 def _number(text: str) -> bool:

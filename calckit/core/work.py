@@ -324,13 +324,19 @@ _AGAINST = {"<=": ">", "<": ">=", ">=": "<", ">": "<="}
 """What a relation that is not met says of the numbers."""
 
 
+def judged(relation: Formula, env: Any) -> bool:
+    """Whether a relation holds, both sides at 10 significant digits: rounding on the way to them decides nothing."""
+    from calckit.core.nodes import COMPARE
+
+    left, sign, right = relation.node.args[0], relation.node.sign, relation.node.args[2]
+    return bool(COMPARE[sign](*(digits.carried(side.value(env), digits.COMPARED) for side in (left, right))))
+
+
 def check(scope: Scope, id_: str, relation: Formula, *, title: str, flags: Sequence[Flag] = ()) -> Entry:
     """Work a relation (`demand <= limit`) into a check line that is not yet written.
 
     Over a list the worst entry is printed and the entries that fail are named.
     """
-    from calckit.core.nodes import COMPARE
-
     left, sign, right = relation.node.args[0], relation.node.sign, relation.node.args[2]
     if sign not in _AGAINST:
         raise ExpressionError(f"check {title!r}: a check takes <, <=, >= or >, not {sign}")
@@ -349,8 +355,7 @@ def check(scope: Scope, id_: str, relation: Formula, *, title: str, flags: Seque
         return relation.env(inputs.values, FLOATS, inputs.rows, row)
 
     _kind(relation, inputs, 0 if listed else None, f"check {title!r}, {relation.text}")
-    sides = [[digits.carried(side.value(env_at(row))) for side in (left, right)] for row in rows]
-    holds = [bool(COMPARE[sign](*pair)) for pair in sides]
+    holds = [judged(relation, env_at(row)) for row in rows]
     safe = all(limit.value(env_at(row)) for row in rows)
     ratios = [ratio(env_at(row)) if safe else 0.0 for row in rows]
     worst = max(range(len(ratios)), key=lambda i: (not holds[i], ratios[i]))

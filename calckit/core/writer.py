@@ -368,7 +368,7 @@ class Writer(Scope):
                 entry.line.source.confirmed = self.calc.sources.confirmation(entry.line.source)
 
     def summary(self) -> None:
-        """Show the governing results so far.
+        """Show the governing results so far, and name lines that are stale or whose cell was deleted.
 
         >>> from calckit import Calc
         >>> Calc(project="Demo", number="D-1").summary()

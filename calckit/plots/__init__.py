@@ -1,18 +1,21 @@
 """Figures of a calculation: plain arrays and text in, a black-and-white drawing out.
 
-Knows how levels, forces, drifts and spectra are drawn. Must not know lines, units, standards or reports; the numbers
-come in as they are to be drawn, and the words as they are to be printed. matplotlib is loaded with the first figure.
+Knows how levels, forces, drifts, spectra and what a result rests on are drawn. Must not know lines, units, standards or
+reports; the numbers come in as they are to be drawn, and the words as they are to be printed. matplotlib is loaded with
+the first figure.
 """
 
 from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
+    from calckit.plots.chain import dependency
     from calckit.plots.levels import drift_profile, elevation, level_forces, story_shears
     from calckit.plots.spectrum import design_spectrum
     from calckit.plots.style import Drawing, png_bytes, svg_bytes
 
 __all__ = [
     "Drawing",
+    "dependency",
     "design_spectrum",
     "drift_profile",
     "elevation",
@@ -25,9 +28,9 @@ __all__ = [
 
 def __getattr__(name: str) -> Any:
     if name in __all__:
-        from calckit.plots import levels, spectrum, style
+        from calckit.plots import chain, levels, spectrum, style
 
-        return next(getattr(module, name) for module in (levels, spectrum, style) if hasattr(module, name))
+        return next(getattr(module, name) for module in (chain, levels, spectrum, style) if hasattr(module, name))
     raise AttributeError(f"module 'calckit.plots' has no attribute {name!r}")
 
 

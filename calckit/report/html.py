@@ -46,7 +46,7 @@ def render(view: View, *, figures: Mapping[str, bytes], attachments: Sequence[At
     (True, False)
     """
     return (
-        _template()
+        template("report.html.j2")
         .render(
             view=view,
             notices=(*view.notices, *missing_glyphs(view)),
@@ -92,7 +92,12 @@ def _formulas(thing: Any) -> Iterator[tuple[str, str]]:
 
 
 @cache
-def _template() -> Template:
+def template(name: str) -> Template:
+    """A page of this package, set strictly: missing data is an error, texts are data, nothing is fetched.
+
+    >>> template("report.html.j2").name
+    'report.html.j2'
+    """
     from jinja2 import Environment, FileSystemLoader, StrictUndefined
     from markupsafe import Markup
 
@@ -111,7 +116,7 @@ def _template() -> Template:
         "font": Markup(fonts.math_font_uri()),
         "sheet": _SHEET,
     }
-    return environment.get_template("report.html.j2")
+    return environment.get_template(name)
 
 
 def _present(value: Any) -> Any:

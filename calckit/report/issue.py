@@ -110,7 +110,7 @@ def produce(notebook: Notebook, settings: Settings, formats: Sequence[str] = FOR
     record.calculation["notebook"] = notebook.stem
     _refuse_status(record)
     given = settings.to_json().encode()
-    record.source = notebook.source_hash()
+    record.source, record.cell_hashes = notebook.source_hash(), notebook.cell_hashes()
     record.inputs = inputs_hash(record, given, outcome.files)
     record.lines_hash = lines_hash(record.lines)
     record.seals = None

@@ -48,6 +48,10 @@ class Notebook:
         """SHA-256 of the cells' id, type and text."""
         return digest(canonical([[cell.id, cell.kind, cell.text] for cell in self.cells]))
 
+    def cell_hashes(self) -> dict[str, str]:
+        """SHA-256 of id, type and text of each cell, by its id."""
+        return {cell.id: digest(canonical([cell.id, cell.kind, cell.text])) for cell in self.cells}
+
     def headings(self) -> list[str]:
         """For each cell that runs, the nearest heading of level 2 above it, "" before the first.
 

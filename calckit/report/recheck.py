@@ -1,7 +1,7 @@
-"""Hold an issued report against itself: its seal, its hashes, and the record that lies beside it.
+"""Hold an issued report against itself: seal, hashes, printed digits, formulas, and the record that lies beside it.
 
-Knows how attachments are taken out of a PDF or HTML file. Runs none of the code inside; must not know how a report is
-written.
+Knows how attachments are taken out of a PDF or HTML file, and what is held against what. `recheck` runs none of the
+code inside, `run_again` does. Must not know how a report is written.
 """
 
 from __future__ import annotations
@@ -9,23 +9,27 @@ from __future__ import annotations
 import base64
 import binascii
 import io
-from collections.abc import Iterator
-from dataclasses import dataclass
+import json
+from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import asdict, dataclass
 from html.parser import HTMLParser
-from pathlib import Path
+from pathlib import Path, PurePosixPath
+from tempfile import TemporaryDirectory
 from urllib.parse import unquote_to_bytes
 
-from calckit.core.record import Record, from_json, lines_hash
-from calckit.errors import CalckitError, CommandError, MismatchError
+from calckit.core.record import Line, Record, canonical, digest, from_json, lines_hash
+from calckit.errors import CalckitError, CommandError, MismatchError, NotebookError
 from calckit.report import notebook, seal
 from calckit.report.attachments import Parcel, inputs_hash, unpack
+from calckit.report.digits_check import check_digits
+from calckit.report.reevaluate import BROKEN, counted, named, reevaluate
 
 RECORD_ENDING = ".record.json"
 
 
 @dataclass(frozen=True)
 class Finding:
-    """One thing looked at: `what`, whether it is as issued, and the words for it."""
+    """One thing looked at: `what`, whether it is as issued, and the words for it, one thing at fault a line."""
 
     what: str
     good: bool
@@ -35,6 +39,7 @@ class Finding:
 def recheck(path: Path) -> list[Finding]:
     """Everything that can be said of an issued PDF or HTML file from the file alone and the record beside it.
 
+    None of the code in the file is run.
     Raises CommandError if the file cannot be read or is neither PDF nor HTML.
     """
     data = read(path)
@@ -46,8 +51,43 @@ def recheck(path: Path) -> list[Finding]:
     except (MismatchError, ValueError, KeyError, TypeError) as error:
         return [*findings, Finding("attachments", False, str(error))]
     findings.append(Finding("issue", True, title(record)))
-    findings += _hashes(parcel, record)
+    altered = list(_altered_lines(record))
+    findings += _hashes(parcel, record, altered)
+    findings += _contents(record, altered)
     return [*findings, *beside(path, data)]
+
+
+def run_again(path: Path) -> list[Finding]:
+    """Run the notebook inside an issued file in a fresh process, and hold every line against the record.
+
+    This runs the code that the file carries, with the rights of whoever calls it. Raises CommandError if the file
+    cannot be read, MismatchError if there is nothing to run, NotebookError if a cell raises.
+    """
+    from calckit.report.run import Settings, run
+
+    data = read(path)
+    parcel = parcel_of(seal.issued_bytes(data))
+    record = record_of(seal.issued_bytes(data))
+    with TemporaryDirectory(prefix="calckit-recheck-", ignore_cleanup_errors=True) as name:
+        folder = Path(name)
+        try:
+            settings = Settings(**json.loads(parcel.settings))
+            source = notebook.parse(parcel.notebook.decode(), parcel.stem, folder)
+        except (ValueError, TypeError) as error:
+            raise MismatchError(f"the attached settings or notebook cannot be read: {error}") from error
+        _unfold(parcel.files, folder)
+        outcome = run(source, settings)
+    if outcome.failure:
+        raise NotebookError(outcome.failure)
+    problems = [f"set value {problem.id}: {problem.kind}; {problem.text}" for problem in outcome.problems]
+    if outcome.record is None:
+        raise NotebookError("the notebook inside the file starts no calculation")
+    differing = _differing(record.lines, outcome.record.lines)
+    now, then = (json.dumps(r.calculation.get("software"), sort_keys=True) for r in (outcome.record, record))
+    software = [] if now == then else [f"issued with {_software(record)}", f"run with {_software(outcome.record)}"]
+    if problems or differing:
+        return [Finding("run", False, "\n".join(["not as issued:", *problems, *differing, *software]))]
+    return [Finding("run", True, "\n".join([f"every line equal ({counted(len(record.lines), 'line')})", *software]))]
 
 
 def read(path: Path) -> bytes:
@@ -104,21 +144,119 @@ def kind_of(data: bytes) -> str:
     return "pdf" if seal.is_pdf(data) else "html"
 
 
-def _hashes(parcel: Parcel, record: Record) -> list[Finding]:
-    found = [_compare("lines", record.lines_hash, lines_hash(record.lines))]
+def _hashes(parcel: Parcel, record: Record, altered: Sequence[str]) -> list[Finding]:
+    """The three hashes of the record, and where one does not fit, what is at fault."""
+    found = []
+    beside = [] if altered else ["no content of a line differs: it is a number, a printed form, a flag or this hash"]
     try:
-        source = notebook.parse(parcel.notebook.decode(), parcel.stem, Path()).source_hash()
-        found.append(_compare("source", record.source, source))
+        found.append(_compare("lines", record.lines_hash, lines_hash(record.lines), beside))
+    except ValueError as error:  # a number that is none
+        found.append(Finding("lines", False, str(error)))
+    try:
+        source = notebook.parse(parcel.notebook.decode(), parcel.stem, Path())
+        cells = list(_altered_cells(record.cell_hashes, source.cell_hashes()))
+        found.append(_compare("source", record.source, source.source_hash(), cells))
     except (CalckitError, ValueError) as error:
         found.append(Finding("source", False, str(error)))
-    found.append(_compare("inputs", record.inputs, inputs_hash(record, parcel.settings, parcel.files)))
+    # the givens are lines; what else this hash covers has no hash of its own
+    attached = [] if altered else ["the lines are as hashed: settings.json or a file that the notebook read differs"]
+    try:
+        inputs = inputs_hash(record, parcel.settings, parcel.files)
+        found.append(_compare("inputs", record.inputs, inputs, attached))
+    except ValueError as error:
+        found.append(Finding("inputs", False, str(error)))
     return found
 
 
-def _compare(what: str, stated: str, obtained: str) -> Finding:
+def _altered_lines(record: Record) -> Iterator[str]:
+    """Lines whose content hash is not that of what stands in them."""
+    for line in record.lines:
+        try:
+            fits = line.content == digest(canonical(line.hashed()))
+        except BROKEN:
+            fits = False
+        if not fits:
+            yield f"{named(line)}: not what it was hashed with"
+
+
+def _altered_cells(stated: Mapping[str, str], now: Mapping[str, str]) -> Iterator[str]:
+    """Cells of the notebook that are not those of the issue."""
+    if not stated:
+        yield "the record holds no hash of single cells"
+        return
+    for id_, hash_ in now.items():
+        if id_ not in stated:
+            yield f"cell {id_}: added"
+        elif hash_ != stated[id_]:
+            yield f"cell {id_}: altered"
+    yield from (f"cell {id_}: taken out" for id_ in stated if id_ not in now)
+
+
+def _contents(record: Record, altered: Sequence[str]) -> list[Finding]:
+    """What the record says, read again: hashes of single lines, printed digits, formulas."""
+    digits, formulas = check_digits(record), reevaluate(record)
+    return [
+        _faults("contents", f"as hashed: {counted(len(record.lines), 'line')}", altered),
+        _faults("printed digits", digits.text(), digits.faults),
+        _faults("formulas", formulas.text(), formulas.faults),
+    ]
+
+
+def _faults(what: str, account: str, faults: Sequence[str]) -> Finding:
+    if not faults:
+        return Finding(what, True, account)
+    return Finding(what, False, "\n".join([f"at fault: {len(faults)}", *faults]))
+
+
+def _unfold(files: Mapping[str, bytes], folder: Path) -> None:
+    """Write attached files where the notebook looks for them; none may lie outside the folder."""
+    for name, data in files.items():
+        inside = PurePosixPath(name)
+        if inside.is_absolute() or ".." in inside.parts or "\\" in name or ":" in name or not inside.parts:
+            raise MismatchError(f"the attached file {name!r} does not lie beside the notebook; nothing was run")
+        target = folder.joinpath(*inside.parts)
+        target.parent.mkdir(parents=True, exist_ok=True)
+        target.write_bytes(data)
+
+
+def _differing(issued: Sequence[Line], now: Sequence[Line]) -> list[str]:
+    """Lines that are not the same; the number of a line counts only through the order of all."""
+    old, new = ({line.id: line for line in lines} for lines in (issued, now))
+    found = []
+    for id_, line in old.items():
+        if id_ not in new:
+            found.append(f"{named(line)}: no longer written")
+        elif fields := _fields(line, new[id_]):
+            found.append(f"{named(line)}: {'; '.join(fields)}")
+    found += [f"{named(line)}: not in the issued record" for id_, line in new.items() if id_ not in old]
+    if not found and list(old) != list(new):
+        found.append("the lines stand in another order")
+    return found
+
+
+def _fields(line: Line, other: Line) -> list[str]:
+    """What of a line differs: the printed result, else the names of the fields."""
+    old, new = asdict(line), asdict(other)
+    names = [name for name in old if name != "n" and old[name] != new[name]]
+    if "shown" in names:
+        return [f"issued {line.shown}, now {other.shown}"]
+    if "value" in names:
+        return [f"issued {line.value!r}, now {other.value!r}"]
+    return [f"another {', '.join(names)}"] if names else []
+
+
+def _software(record: Record) -> str:
+    software = record.calculation.get("software") or {}
+    libraries = ", ".join(f"{name} {version}" for name, version in (software.get("libraries") or {}).items())
+    parts = (software.get("name"), software.get("version"))
+    return f"{' '.join(filter(None, parts))} (Python {software.get('python')}, {software.get('platform')}; {libraries})"
+
+
+def _compare(what: str, stated: str, obtained: str, causes: Sequence[str]) -> Finding:
     if stated == obtained:
         return Finding(what, True, f"as issued ({stated[:8]})")
-    return Finding(what, False, f"not as issued: the record states {stated[:8]}, the content gives {obtained[:8]}")
+    words = f"not as issued: the record states {stated[:8]}, the content gives {obtained[:8]}"
+    return Finding(what, False, "\n".join([words, *causes]))
 
 
 def _from_pdf(data: bytes) -> Iterator[tuple[str, bytes]]:

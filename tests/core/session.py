@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
+from types import SimpleNamespace
 from typing import Any
 
 import pytest
@@ -28,6 +29,7 @@ class Session:
 
     def __init__(self, monkeypatch: pytest.MonkeyPatch, *, ids: bool = True) -> None:
         self.events, self.execution_count, self.ids, self.key = Events(), 0, ids, ""
+        self.deleted: list[str] = []
         monkeypatch.setattr(book, "_shell", lambda: self)
         monkeypatch.setattr(calc, "_shell", lambda: self)
         monkeypatch.setattr(book, "_runs", [])
@@ -35,16 +37,21 @@ class Session:
 
     def get_parent(self) -> dict[str, Any]:
         """The message that asked for the run."""
-        metadata = {"cellId": self.key} if self.ids else {}
+        metadata = {"cellId": self.key, "deletedCells": self.deleted} if self.ids else {}
         return {"header": {"msg_id": f"message-{self.execution_count}"}, "metadata": metadata}
 
     @contextmanager
-    def cell(self, key: str) -> Iterator[None]:
-        """One run of a cell; the hooks are called at its end, whether it raised or not."""
+    def cell(self, key: str, text: str = "") -> Iterator[None]:
+        """One run of a cell with this text; the hooks are called at its end, whether it raised or not.
+
+        The notebook says with the request which cells were `deleted` since the last one.
+        """
         self.execution_count += 1
         self.key = key
         try:
             yield
         finally:
+            result = SimpleNamespace(execution_count=self.execution_count, info=SimpleNamespace(raw_cell=text))
             for hook in list(self.events.hooks):
-                hook(None)
+                hook(result)
+            self.deleted = []

@@ -114,7 +114,7 @@ def test_relation_is_printed_with_enough_digits_to_be_true(calc: Calc) -> None:
     assert faults(calc) == []
 
 
-def test_equality_is_met_by_what_is_carried(calc: Calc) -> None:
+def test_rounding_on_the_way_decides_no_check(calc: Calc) -> None:
     calc.line("V_3", "V/3*3", unit="kip", meaning="the same by another road")
     assert calc.check("V_3", "<=", "V", title="Not more").line.verdict == "OK"
     assert calc.check("V_3", ">=", "V", title="Not less").line.verdict == "OK"

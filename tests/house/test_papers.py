@@ -65,7 +65,7 @@ def commands() -> Iterator[tuple[str, list[str]]]:
 @pytest.mark.parametrize(("name", "words"), list(commands()))
 def test_commands_are_described(name: str, words: list[str]) -> None:
     (row,) = re.findall(rf"^\| `calckit {name}\b(.*?)`", DEVELOPERS, re.MULTILINE)
-    described = set(re.findall(r"--\w+", row)) | set(re.findall(r"\b[A-Z]{4,}\b", re.sub(r"--\w+ \S+", "", row)))
+    described = set(re.findall(r"--[\w-]+", row)) | set(re.findall(r"\b[A-Z]{3,}\b", re.sub(r"--[\w-]+ \S+", "", row)))
     assert described == set(words)
     assert f"calckit {name}" in README
 

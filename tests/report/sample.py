@@ -431,7 +431,7 @@ def _record() -> Record:
     return Record(
         calculation, lines, book.tables, book.figures, _open_items(book), _summaries(book), book.cells,
         ["Equivalent lateral forces of buildings, first pass."], ["Modal and response history analysis."],
-        "a" * 64, "b" * 64, lines_hash(lines),
+        source="a" * 64, inputs="b" * 64, lines_hash=lines_hash(lines),
     )  # fmt: skip
 
 

@@ -1,0 +1,159 @@
+"""The signature report: one sheet that names issued files by their digests, to be signed and sealed by hand.
+
+Knows digests, what an issued file says of itself, and the fields that stay blank. Signs nothing, fills no field of a
+person, and changes none of the files.
+"""
+
+from __future__ import annotations
+
+import hashlib
+import json
+import os
+from collections.abc import Sequence
+from dataclasses import dataclass
+from datetime import UTC, datetime
+from importlib import resources
+from pathlib import Path
+from tempfile import TemporaryDirectory
+
+import typst
+
+from calckit.core.record import Record, from_json
+from calckit.errors import CommandError, MismatchError
+from calckit.report import seal
+from calckit.report.files import replace_together, report_name
+from calckit.report.glyphs import STANDARDS, code_point, lacking
+from calckit.report.recheck import record_of, title
+
+_TEMPLATE = resources.files("calckit.report").joinpath("assets", "signature.typ")
+_ENDING = "_signature.pdf"
+
+
+@dataclass(frozen=True)
+class Listed:
+    """One file as the sheet names it.
+
+    `record` is the record that it is or carries, `verdict` what its seal says; None where it has none.
+    """
+
+    name: str
+    size: int
+    sha256: str
+    sha1: str
+    record: Record | None
+    verdict: seal.Verdict | None
+
+
+def write(files: Sequence[Path], to: Path) -> str:
+    """Write the signature report of these files and say what was done.
+
+    `to` is the file to write, or a folder; then the name follows the first calculation among the files. Raises
+    CommandError naming every file that cannot be read, and if the target stands already or the sheet is full.
+    """
+    listed = look(files)
+    path = to / _name(listed) if to.is_dir() else to
+    if path.exists():
+        raise CommandError(f"{path} exists and is not overwritten; cure: name another file with --to")
+    replace_together(path.parent, {path.name: render(listed)})
+    words = [str(path), *(f"  {item.name}: SHA-256 {item.sha256}" for item in listed)]
+    words += [
+        f"note: {item.name}: {item.verdict.text()}"
+        for item in listed
+        if item.verdict and item.verdict.state != "intact"
+    ]
+    if len({_issue(item.record) for item in listed if item.record}) > 1:
+        words.append("note: the files belong to more than one issue")
+    return "\n".join(words)
+
+
+def look(files: Sequence[Path]) -> list[Listed]:
+    """What the sheet says of each file. Raises CommandError naming every file that cannot be read."""
+    faults, found = [], []
+    for path in files:
+        try:
+            data = path.read_bytes()
+        except OSError as error:
+            faults.append(f"{path} cannot be read: {error.strerror}")
+            continue
+        sha1 = hashlib.sha1(data, usedforsecurity=False).hexdigest()
+        sealed = not _is_record(path.name) and seal.seal_of(data)
+        verdict = seal.check(data) if sealed else None
+        sha256 = hashlib.sha256(data).hexdigest()
+        found.append(Listed(path.name, len(data), sha256, sha1, _record(path.name, data), verdict))
+    if faults:
+        raise CommandError("\n".join(faults))
+    return found
+
+
+def render(listed: Sequence[Listed]) -> bytes:
+    """The sheet as PDF/A-3a and PDF/UA-1: the same bytes for the same files.
+
+    Its date is that of the latest issue among them; where they state none, SOURCE_DATE_EPOCH or the present day.
+    Raises CommandError if the files do not fit on one sheet.
+    """
+    records = [item.record for item in listed if item.record]
+    facts = records[0].calculation if records else {}
+    issues = list(dict.fromkeys(map(_issue, records)))
+    data = {
+        "paper": facts.get("paper", "Letter"),
+        "project": " / ".join(dict.fromkeys(project for project, _ in issues)),
+        "issues": [issue for _, issue in issues],
+        "files": [
+            {
+                "name": item.name,
+                "size": f"{item.size:,} bytes",
+                "sha256": item.sha256,
+                "sha1": item.sha1,
+                "description": ", ".join(filter(None, _issue(item.record))),
+                "state": item.verdict.text() if item.verdict else "",
+            }
+            for item in listed
+        ],
+    }
+    text = json.dumps(data, ensure_ascii=False)
+    for character in sorted(lacking(set(text))):
+        text = text.replace(character, f"[{code_point(character)}]")
+    with TemporaryDirectory(prefix="calckit-") as folder:
+        source = Path(folder) / "signature.typ"
+        source.write_bytes(_TEMPLATE.read_bytes())
+        source.with_name("signature.json").write_text(text, encoding="utf-8")
+        try:
+            return typst.compile(
+                str(source), root=folder, ignore_system_fonts=True, pdf_standards=[*STANDARDS],
+                timestamp=int(_day(records).timestamp()),
+            )  # fmt: skip
+        except typst.TypstError as error:
+            raise CommandError(f"the signature report cannot be set: {error.message}") from error
+
+
+def _is_record(name: str) -> bool:
+    return name.lower().endswith(".json")
+
+
+def _record(name: str, data: bytes) -> Record | None:
+    """The record that a file is or carries; None if there is none."""
+    try:
+        return from_json(data.decode()) if _is_record(name) else record_of(seal.issued_bytes(data))
+    except (MismatchError, ValueError, KeyError, TypeError):
+        return None
+
+
+def _issue(record: Record | None) -> tuple[str, str]:
+    """The project and the issue that a record belongs to."""
+    return (record.calculation.get("project", ""), title(record)) if record else ("", "")
+
+
+def _name(listed: Sequence[Listed]) -> str:
+    for item in listed:
+        if item.record:
+            facts = item.record.calculation
+            return report_name(facts.get("number", ""), facts.get("revision", ""), Path(item.name).stem) + _ENDING
+    return Path(listed[0].name).stem + _ENDING
+
+
+def _day(records: Sequence[Record]) -> datetime:
+    days = [day for record in records if (day := record.calculation.get("date"))]
+    if days:
+        return datetime.fromisoformat(max(days)).replace(tzinfo=UTC)
+    epoch = os.environ.get("SOURCE_DATE_EPOCH", "")
+    return datetime.fromtimestamp(int(epoch), UTC) if epoch.isdecimal() else datetime.now(UTC)
