@@ -6,6 +6,7 @@ import sys
 from pathlib import Path
 
 import pytest
+from pypdf import PdfReader
 
 from calckit.core.record import from_json
 from calckit.report import notebook
@@ -48,3 +49,9 @@ ISSUED = sorted([*EXAMPLES.glob("*.pdf"), *EXAMPLES.glob("*.html")])
 @pytest.mark.parametrize("path", ISSUED, ids=lambda path: path.name)
 def test_the_files_are_intact(path: Path) -> None:
     assert [finding for finding in recheck(path) if not finding.good] == []
+
+
+def test_sixteen_sheets_before_the_appendices() -> None:
+    reader = PdfReader(EXAMPLES / "C-101_A.pdf")
+    appendices = (item for item in reader.outline if not isinstance(item, list) and "Appendix A" in str(item.title))
+    assert reader.get_destination_page_number(next(appendices)) <= 16

@@ -17,6 +17,7 @@ from typing import TYPE_CHECKING, Any
 
 from calckit.report import fonts, seal
 from calckit.report.attachments import Attachment
+from calckit.report.enclosures import Page
 from calckit.report.model import LineView, Span, Typeset, View
 from calckit.report.prose import ATTRIBUTES, ELEMENTS
 
@@ -32,12 +33,15 @@ _SIGNS = {"+", "−", "×", "/", "=", "≤", "≥", "<", ">", "≠"}
 _SHEET = {"Letter": "8.5in 11in", "A4": "210mm 297mm"}
 
 
-def render(view: View, *, figures: Mapping[str, bytes], attachments: Sequence[Attachment]) -> bytes:
+def render(
+    view: View, *, figures: Mapping[str, bytes], attachments: Sequence[Attachment], enclosed: Sequence[Page] = ()
+) -> bytes:
     """The report as UTF-8 HTML with the seal's placeholder in place.
 
-    `figures` maps the file names of the view's figures to SVG; the attachments become downloads. The same arguments
-    give the same bytes. Raises ValueError if a figure is not there, a formula is no well-formed MathML or the view
-    holds None where a text belongs; jinja2.UndefinedError if the view lacks something the template prints.
+    `figures` maps the file names of the view's figures to SVG; the attachments become downloads, the pages `enclosed`
+    (as PNG) an appendix. The same arguments give the same bytes. Raises ValueError if a figure is not there, a formula
+    is no well-formed MathML or the view holds None where a text belongs; jinja2.UndefinedError if the view lacks
+    something the template prints.
 
     >>> from calckit.report.view import build
     >>> from tests.report.sample import content, figures, record
@@ -52,6 +56,7 @@ def render(view: View, *, figures: Mapping[str, bytes], attachments: Sequence[At
             notices=(*view.notices, *missing_glyphs(view)),
             figures=_Pictures(figures),
             attachments=attachments,
+            enclosed=enclosed,
             placeholder=seal.PLACEHOLDER,
         )
         .encode()

@@ -24,7 +24,7 @@ from calckit.core.record import (
     lines_hash,
 )
 from calckit.errors import CommandError, MismatchError, NotebookError
-from calckit.report import html, pdf, seal, view
+from calckit.report import enclosures, html, pdf, seal, view
 from calckit.report.attachments import Parcel, inputs_hash
 from calckit.report.files import replace_together, report_name
 from calckit.report.model import Block, Content
@@ -121,12 +121,18 @@ def produce(notebook: Notebook, settings: Settings, formats: Sequence[str] = FOR
     notices: list[str] = []
     if "html" in formats:
         notices += html.missing_glyphs(model)
-        files["html"] = seal.apply(html.render(model, figures=outcome.figures, attachments=attached))
+        bound = enclosures.pages(record, outcome.files, "png")
+        files["html"] = seal.apply(
+            html.render(model, figures=outcome.figures, attachments=attached, enclosed=bound)
+        )
     if "pdf" in formats:
         day = record.calculation["date"]
         lacking = pdf.missing_glyphs(model)
         notices += [f"shown as a code point in the PDF: {found}" for found in lacking]
-        files["pdf"] = seal.apply(pdf.render(model, figures=outcome.figures, attachments=attached, date=day))
+        bound = enclosures.pages(record, outcome.files, "svg")
+        files["pdf"] = seal.apply(
+            pdf.render(model, figures=outcome.figures, attachments=attached, date=day, enclosed=bound)
+        )
     fields = record.calculation
     name = report_name(fields.get("number", ""), fields.get("revision", ""), notebook.stem)
     return Report(name, record, files, notices)

@@ -22,11 +22,12 @@ import typst
 from calckit.errors import NotebookError
 from calckit.report import mathsource, seal
 from calckit.report.attachments import Attachment
+from calckit.report.enclosures import Page
 from calckit.report.glyphs import STANDARDS, code_point, lacking
 from calckit.report.model import View
 
 _ASSETS = resources.files("calckit.report").joinpath("assets")
-_TEMPLATES = ("report.typ", "pieces.typ")
+_TEMPLATES = ("report.typ", "pieces.typ", "enclosures.typ")
 _NOT_PRINTED = ("latex", "mathml", "svg")
 _EXCERPT = 60
 _SVG = re.compile(r"<svg\b[^>]*>", re.DOTALL)
@@ -34,11 +35,19 @@ _LENGTH = re.compile(r"([\d.]+)(pt|px|in|mm|cm)?")
 _POINTS = {"pt": 1.0, "px": 0.75, "in": 72.0, "mm": 72 / 25.4, "cm": 720 / 25.4}
 
 
-def render(view: View, *, figures: Mapping[str, bytes], attachments: Sequence[Attachment], date: str) -> bytes:
+def render(
+    view: View,
+    *,
+    figures: Mapping[str, bytes],
+    attachments: Sequence[Attachment],
+    date: str,
+    enclosed: Sequence[Page] = (),
+) -> bytes:
     """The report as PDF/A-3a and PDF/UA-1, with the blank digits of the seal in its keywords.
 
-    `figures` are SVG drawings by file name, `date` is the day of the issue ("2026-12-01"). The same arguments give the
-    same bytes. A character that no font holds is shown as its code point, and a notice on the cover says so.
+    `figures` are SVG drawings by file name, `enclosed` the pages bound as appendix sheets, as SVG; `date` is the day of
+    the issue ("2026-12-01"). The same arguments give the same bytes. A character that no font holds is shown as its
+    code point, and a notice on the cover says so.
 
     Raises NotebookError naming a drawing that is not there or what Typst cannot set.
     """
@@ -58,6 +67,13 @@ def render(view: View, *, figures: Mapping[str, bytes], attachments: Sequence[At
         files[path] = figures[figure["file"]]
         width, height = _size(files[path].decode(), f"figure {figure['id']!r}", bare="px")
         figure |= {"path": path, "width": width, "height": height}
+    titles = {reference["key"]: reference["title"] for reference in data["references"]}
+    data["enclosed"] = []
+    for number, page in enumerate(enclosed):
+        path = f"enclosed-{number}.svg"
+        files[path] = page.picture
+        about = {name: value for name, value in asdict(page).items() if name != "picture"}
+        data["enclosed"].append(about | {"path": path, "title": titles.get(page.document, "")})
     files["view.json"] = json.dumps(data, ensure_ascii=False).encode()
     return _compile(files, datetime.fromisoformat(date).replace(tzinfo=UTC))
 

@@ -57,7 +57,9 @@ def record(**fields: Any) -> Record:
     )
 
 
-def html_file(_model: object, *, figures: Mapping[str, bytes], attachments: Sequence[Attachment]) -> bytes:
+def html_file(
+    _model: object, *, figures: Mapping[str, bytes], attachments: Sequence[Attachment], enclosed: object = ()
+) -> bytes:
     """A page with the seal and the attachments as downloads."""
     links = ""
     for attached in attachments:
@@ -67,7 +69,9 @@ def html_file(_model: object, *, figures: Mapping[str, bytes], attachments: Sequ
     return f"<!DOCTYPE html>\n<html><head>{head}</head><body>{links}</body></html>\n".encode()
 
 
-def pdf_file(_model: object, *, figures: Mapping[str, bytes], attachments: Sequence[Attachment], date: str) -> bytes:
+def pdf_file(
+    _model: object, *, figures: Mapping[str, bytes], attachments: Sequence[Attachment], date: str, enclosed: object = ()
+) -> bytes:
     """A page with the seal in its keywords and the attachments."""
     with TemporaryDirectory() as name:
         folder = Path(name)

@@ -122,8 +122,8 @@ def test_tables_figures_summaries_and_lists_stand_in_the_text(parsed: _Page) -> 
 
 def test_order_of_the_parts(parsed: _Page) -> None:
     ids = [attrs["id"] for _, attrs in parsed.elements if "id" in attrs]
-    parts = ["answer", "open", "contents", "criteria", "section-1", "input-list", "assumptions", "symbols",
-             "references", "software", "files"]  # fmt: skip
+    parts = ["answer", "open", "contents", "criteria", "assumptions", "section-1", "input-list", "symbols",
+             "references", "software", "files", "use"]  # fmt: skip
     assert [id_ for id_ in ids if id_ in parts] == parts
     assert len(ids) == len(set(ids))
 
@@ -260,8 +260,9 @@ def test_missing_data_raises_and_prints_no_blank() -> None:
             self.__dict__ = {name: getattr(model, name) for name in model.__dataclass_fields__ if name != "criteria"}
 
     with pytest.raises(UndefinedError, match="criteria"):
-        html._template().render(
-            view=Lacking(_view()), notices=(), figures=html._Pictures(figures()), attachments=(), placeholder="x"
+        html.template("report.html.j2").render(
+            view=Lacking(_view()), notices=(), figures=html._Pictures(figures()), attachments=(), enclosed=(),
+            placeholder="x",
         )
     blank = replace(_view(), short_hash=None)  # type: ignore[arg-type]
     with pytest.raises(ValueError, match="holds None"):

@@ -65,19 +65,19 @@ _CATEGORY = (
 )
 
 _IRREGULARITIES = (
-    ("H1a", "with accidental torsion, a story drifts at one end more than 1.2 times the average of both ends"),
-    ("H1b", "with accidental torsion, a story drifts at one end more than 1.4 times the average of both ends"),
-    ("H2", "both wings past a re-entrant corner are longer than 15 % of the plan that way"),
-    ("H3", "a diaphragm has more than half its area open, or changes its stiffness by more than half between stories"),
-    ("H4", "an offset out of plane interrupts the path of the lateral forces"),
-    ("H5", "vertical elements of the lateral system do not run parallel to its main axes"),
-    ("V1a", "a story has less than 70 % of the stiffness of the one above, or 80 % of the mean of the three above"),
-    ("V1b", "a story has less than 60 % of the stiffness of the one above, or 70 % of the mean of the three above"),
-    ("V2", "a story has more than 1.5 times the mass of the next one, a lighter roof left out"),
-    ("V3", "the lateral system of a story is more than 1.3 times as wide as in the next one"),
-    ("V4", "an offset in plane puts overturning on the supports below"),
-    ("V5a", "a story has less than 80 % of the lateral strength of the one above"),
-    ("V5b", "a story has less than 65 % of the lateral strength of the one above"),
+    ("H1a", "drift at one end over 1.2 times the mean of both, with accidental torsion"),
+    ("H1b", "drift at one end over 1.4 times the mean of both, with accidental torsion"),
+    ("H2", "both wings past a re-entrant corner over 15 % of the plan"),
+    ("H3", "diaphragm more than half open, or half as stiff as the next"),
+    ("H4", "offset out of plane in the path of the lateral forces"),
+    ("H5", "vertical elements not parallel to the main axes"),
+    ("V1a", "story below 70 % of the stiffness above, or 80 % of the mean of three"),
+    ("V1b", "story below 60 % of the stiffness above, or 70 % of the mean of three"),
+    ("V2", "mass over 1.5 times that of the next story, lighter roof left out"),
+    ("V3", "lateral system over 1.3 times as wide as in the next story"),
+    ("V4", "offset in plane that puts overturning on supports below"),
+    ("V5a", "story below 80 % of the lateral strength above"),
+    ("V5b", "story below 65 % of the lateral strength above"),
 )
 """Horizontal and vertical irregularities of Tables 12.3-1 and 12.3-2, in our own words."""
 
