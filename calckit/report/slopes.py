@@ -15,6 +15,7 @@ from dataclasses import dataclass, field, replace
 from functools import cached_property, reduce
 
 from calckit import units
+from calckit.core.numbers import DUALS, Dual
 from calckit.core.parser import Parsed, dotted, parse
 from calckit.core.record import Line, Operand, Record
 
@@ -26,39 +27,6 @@ _INPUTS = ("given", "assumption", "judgment")
 _UNWORKED = (ZeroDivisionError, OverflowError, ValueError, TypeError, IndexError)
 
 
-@dataclass(frozen=True)
-class Dual:
-    """A number and how fast it moves on the side that is being looked at.
-
-    >>> Dual(3.0, 1.0) * Dual(3.0, 1.0)
-    Dual(value=9.0, slope=6.0)
-    """
-
-    value: float
-    slope: float = 0.0
-
-    def __add__(self, other: Dual) -> Dual:
-        return Dual(self.value + other.value, self.slope + other.slope)
-
-    def __sub__(self, other: Dual) -> Dual:
-        return Dual(self.value - other.value, self.slope - other.slope)
-
-    def __neg__(self) -> Dual:
-        return Dual(-self.value, -self.slope)
-
-    def __mul__(self, other: Dual) -> Dual:
-        return Dual(self.value * other.value, self.value * other.slope + other.value * self.slope)
-
-    def __truediv__(self, other: Dual) -> Dual:
-        quotient = self.value / other.value
-        return Dual(quotient, (self.slope - quotient * other.slope) / other.value)
-
-    def __pow__(self, other: Dual) -> Dual:
-        power = self.value**other.value
-        slope = other.value * self.value ** (other.value - 1) * self.slope if self.slope else 0.0
-        return Dual(power, slope + (power * math.log(self.value) * other.slope if other.slope else 0.0))
-
-
 _ARITHMETIC: dict[type[ast.operator], Callable[[Dual, Dual], Dual]] = {
     ast.Add: operator.add, ast.Sub: operator.sub, ast.Mult: operator.mul, ast.Div: operator.truediv,
     ast.Pow: operator.pow,
@@ -67,14 +35,6 @@ _COMPARE: dict[type[ast.cmpop], Callable[[float, float], bool]] = {
     ast.Lt: operator.lt, ast.LtE: operator.le, ast.Gt: operator.gt, ast.GtE: operator.ge,
     ast.Eq: operator.eq, ast.NotEq: operator.ne,
 }  # fmt: skip
-_FUNCTIONS: dict[str, tuple[Callable[[float], float], Callable[[float], float]]] = {
-    "sqrt": (math.sqrt, lambda x: 0.5 / math.sqrt(x)),
-    "exp": (math.exp, math.exp),
-    "log": (math.log, lambda x: 1 / x),
-    "sin": (math.sin, math.cos),
-    "cos": (math.cos, lambda x: -math.sin(x)),
-    "tan": (math.tan, lambda x: 1 + math.tan(x) ** 2),
-}
 
 
 @dataclass(frozen=True)
@@ -166,8 +126,8 @@ class Worked:
         x = self.number(first)
         if function == "abs":
             return x if self._order(x, -x, node) >= 0 else -x
-        value, slope = _FUNCTIONS[function]
-        return Dual(value(x.value), slope(x.value) * x.slope if x.slope else 0.0)
+        worked: Dual = DUALS.call(function, x)
+        return worked
 
     def _count(self) -> int:
         return max((len(self.operands[name]) for name in self.listed), default=0)

@@ -17,7 +17,7 @@ KIT = {
     "motions": {"errors", "units", "dynamics"},
     "methods": {"errors", "units", "core", "dynamics", "motions"},
     "plots": {"errors"},
-    "report": {"errors", "units", "core.record", "core.parser"},
+    "report": {"errors", "units", "core.record", "core.parser", "core.numbers"},
 }
 """What of the kit each package may import, beside itself."""
 

@@ -1,22 +1,27 @@
 """The Python code of README.md runs as it stands there."""
 
 import re
+from pathlib import Path
 
 import pytest
+from pypdf import PdfWriter
 
-from calckit import Calc
+from calckit import Calc, plots
 from tests.house import source
 
-INPUTS, OWN_LINES, OVERRIDE, CONFIRM = re.findall(r"```python\n(.*?)```", source.text_files()["README.md"], re.DOTALL)
+BLOCKS = re.findall(r"```python\n(.*?)```", source.text_files()["README.md"], re.DOTALL)
+INPUTS, OWN_LINES, BOUND, OVERRIDE, CONFIRM = BLOCKS
 REGISTER = re.search(r"```\n(standard,.*?)```", source.text_files()["README.md"], re.DOTALL)
 
 
-def test_the_blocks_run_in_a_calculation() -> None:
+def test_the_blocks_run_in_a_calculation(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.chdir(tmp_path)
+    PdfWriter().write("hazard.pdf")
     calc = Calc(project="Demonstration", number="D-1", date="2026-12-01", standard="ASCE 7-16")
     for key in ("B-1", "G-1", "H-2"):
         calc.document(key, title=f"Document {key}")
     x = calc.part("X", "East-west")
-    names = {"calc": calc, "x": x}
+    names = {"calc": calc, "x": x, "plots": plots}
     exec(INPUTS, names)
     exec(OVERRIDE, names)
     calc.givens("risk_category, II, B-1\nhazard_basis, mapped, G-1\nS_S, 0.6, H-2\nS_1, 0.22, H-2\nsite_class, C, G-1")
@@ -28,6 +33,7 @@ def test_the_blocks_run_in_a_calculation() -> None:
     for step in (*steps, x.asce7.approximate_period, x.asce7.period, x.asce7.base_shear):
         step()
     exec(OWN_LINES, names)
+    exec(BOUND, names)
     exec(CONFIRM, names)
 
     assert calc["h_n"].shown == "62 ft"
@@ -35,6 +41,8 @@ def test_the_blocks_run_in_a_calculation() -> None:
     assert calc["F_a"].line.override.reason == "local amendment"
     assert x["M_r"].unit == "kip*ft"
     assert x["M_r"].value == pytest.approx(x["V"].value * 2 / 3 * 62, rel=1e-11)
+    assert calc.enclosures["H-2"].page_numbers() == [1, 2]
+    assert [figure.caption for figure in calc.lines.figures.values()] == ["What X.V rests on"]
     assert x["R"].line.source.confirmed == "confirmed in office copy of ASCE/SEI 7-16 by J. Example, 2026-12-01"
 
 
