@@ -8,6 +8,7 @@ from __future__ import annotations
 import os
 import re
 from collections.abc import Mapping, Sequence
+from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass
 from datetime import UTC, date, datetime
 from pathlib import Path
@@ -25,9 +26,9 @@ from calckit.core.record import (
 )
 from calckit.errors import CommandError, MismatchError, NotebookError
 from calckit.report import enclosures, html, pdf, seal, view
-from calckit.report.attachments import Parcel, inputs_hash
+from calckit.report.attachments import Attachment, Parcel, inputs_hash
 from calckit.report.files import replace_together, report_name
-from calckit.report.model import Block, Content
+from calckit.report.model import Block, Content, View
 from calckit.report.notebook import Notebook
 from calckit.report.prose import blocks
 from calckit.report.recheck import RECORD_ENDING, kind_of, record_of, title
@@ -102,40 +103,51 @@ def produce(notebook: Notebook, settings: Settings, formats: Sequence[str] = FOR
 
     Raises NotebookError if a cell raises, and CommandError if a set value is at fault or the issue is refused.
     """
-    outcome = run(notebook, settings)
-    _refuse_problems(outcome, settings)
-    record = outcome.record
-    if record is None:
-        raise NotebookError("the notebook starts no calculation; cure: write calc = Calc(...) in its first code cell")
-    record.calculation["notebook"] = notebook.stem
-    _refuse_status(record)
-    given = settings.to_json().encode()
-    record.source, record.cell_hashes = notebook.source_hash(), notebook.cell_hashes()
-    record.inputs = inputs_hash(record, given, outcome.files)
-    record.lines_hash = lines_hash(record.lines)
-    record.seals = None
-    parcel = Parcel(notebook.stem, notebook.bare(), given, outcome.files, record.to_json().encode())
-    model = view.build(record, _content(notebook, record))
-    attached = parcel.pack()
-    files: dict[str, bytes] = {}
-    notices: list[str] = []
-    if "html" in formats:
-        notices += html.missing_glyphs(model)
-        bound = enclosures.pages(record, outcome.files, "png")
-        files["html"] = seal.apply(
-            html.render(model, figures=outcome.figures, attachments=attached, enclosed=bound)
-        )
-    if "pdf" in formats:
-        day = record.calculation["date"]
-        lacking = pdf.missing_glyphs(model)
-        notices += [f"shown as a code point in the PDF: {found}" for found in lacking]
-        bound = enclosures.pages(record, outcome.files, "svg")
-        files["pdf"] = seal.apply(
-            pdf.render(model, figures=outcome.figures, attachments=attached, date=day, enclosed=bound)
-        )
+    with ThreadPoolExecutor(len(FORMATS)) as pool:
+        if "html" in formats:
+            pool.submit(html.template, "report.html.j2")  # page and font are made ready while the notebook runs
+        outcome = run(notebook, settings)
+        record = _accepted(notebook, settings, outcome)
+        given = settings.to_json().encode()
+        record.source, record.cell_hashes = notebook.source_hash(), notebook.cell_hashes()
+        record.inputs = inputs_hash(record, given, outcome.files)
+        record.lines_hash = lines_hash(record.lines)
+        record.seals = None
+        parcel = Parcel(notebook.stem, notebook.bare(), given, outcome.files, record.to_json().encode())
+        model = view.build(record, _content(notebook, record))
+        writers = {form: pool.submit(_WRITERS[form], model, record, outcome, parcel.pack()) for form in formats}
+        written = {form: writer.result() for form, writer in writers.items()}
     fields = record.calculation
     name = report_name(fields.get("number", ""), fields.get("revision", ""), notebook.stem)
-    return Report(name, record, files, notices)
+    notices = [notice for _, said in written.values() for notice in said]
+    return Report(name, record, {form: seal.apply(data) for form, (data, _) in written.items()}, notices)
+
+
+def _accepted(notebook: Notebook, settings: Settings, outcome: Outcome) -> Record:
+    """The record of a run that may be issued."""
+    _refuse_problems(outcome, settings)
+    if outcome.record is None:
+        raise NotebookError("the notebook starts no calculation; cure: write calc = Calc(...) in its first code cell")
+    outcome.record.calculation["notebook"] = notebook.stem
+    _refuse_status(outcome.record)
+    return outcome.record
+
+
+def _html(model: View, record: Record, outcome: Outcome, attached: Sequence[Attachment]) -> tuple[bytes, list[str]]:
+    """The HTML file, and what it cannot show as it was typed."""
+    bound = enclosures.pages(record, outcome.files, "png")
+    page = html.render(model, figures=outcome.figures, attachments=attached, enclosed=bound)
+    return page, html.missing_glyphs(model)
+
+
+def _pdf(model: View, record: Record, outcome: Outcome, attached: Sequence[Attachment]) -> tuple[bytes, list[str]]:
+    """The PDF file, and what it cannot show as it was typed."""
+    bound, day = enclosures.pages(record, outcome.files, "svg"), record.calculation["date"]
+    lacking = [f"shown as a code point in the PDF: {found}" for found in pdf.missing_glyphs(model)]
+    return pdf.render(model, figures=outcome.figures, attachments=attached, date=day, enclosed=bound), lacking
+
+
+_WRITERS = {"html": _html, "pdf": _pdf}
 
 
 def issue(notebook: Notebook, settings: Settings, folder: Path, formats: Sequence[str] = FORMATS) -> Issued:
