@@ -13,19 +13,26 @@ from typing import Any
 
 from calckit import units
 from calckit.core.record import MIME, TO_BE_CONFIRMED, Line, Table
+from calckit.core.settings import current
+
+
+def in_notebook() -> bool:
+    """Whether what is shown is seen or kept: not in a plain script, nor in a run whose outputs nobody keeps."""
+    try:
+        from IPython import get_ipython
+    except ImportError:
+        return False
+    return get_ipython() is not None and current().outputs
 
 
 def show(lines: Sequence[Line], tables: Sequence[Table], notices: Sequence[str], display_id: str) -> dict[str, Any]:
     """Display lines and tables in a notebook; returns the forms shown, none of them in a plain script."""
-    try:
-        from IPython import get_ipython
-        from IPython.display import display
-    except ImportError:
-        return {}
     in_tables = {id_ for table in tables for id_ in table.lines}
     lines = [line for line in lines if not (line.kind == "given" and line.id in in_tables)]
-    if get_ipython() is None or not (lines or tables or notices):
+    if not in_notebook() or not (lines or tables or notices):
         return {}
+    from IPython.display import display
+
     data = bundle(lines, tables, notices)
     display(data, raw=True, display_id=display_id)  # type: ignore[no-untyped-call]
     return data

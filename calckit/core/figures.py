@@ -9,6 +9,7 @@ import io
 import sys
 from typing import TYPE_CHECKING, Any
 
+from calckit.core.display import in_notebook
 from calckit.core.record import Figure
 from calckit.errors import Fault, InputError
 
@@ -41,10 +42,7 @@ def place(scope: Scope, drawing: Any, figure: Figure) -> None:
 
 
 def _show(drawing: Any, figure: Figure) -> None:
-    try:
-        from IPython import get_ipython
+    if in_notebook():
         from IPython.display import display
-    except ImportError:
-        return
-    if get_ipython() is not None:
+
         display(drawing, metadata={"image/png": {"alt": figure.alt}})  # type: ignore[no-untyped-call]

@@ -20,7 +20,8 @@ FOLDER = "CALCKIT_RUN"
 
 @dataclass
 class Settings:
-    """The settings of one run. `folder` is None in a live session; `clean` tells the two apart."""
+    """The settings of one run. `folder` is None in a live session; `clean` tells the two apart. `outputs` says
+    whether anybody keeps what the cells show."""
 
     folder: Path | None = None
     values: dict[str, str] = field(default_factory=dict)
@@ -29,6 +30,7 @@ class Settings:
     date: str | None = None
     confirmed: str | None = None
     headings: list[str] = field(default_factory=list)
+    outputs: bool = True
     used: set[str] = field(default_factory=set)
     invalid: dict[str, str] = field(default_factory=dict)
     unused: dict[str, str] = field(default_factory=dict)
@@ -67,7 +69,7 @@ def read(folder: Path) -> Settings:
     data: dict[str, Any] = json.loads((folder / "settings.json").read_text(encoding="utf-8"))
     return Settings(
         folder, dict(data.get("set", {})), dict(data.get("files", {})), data.get("status"), data.get("date"),
-        data.get("confirmed"), list(data.get("headings", [])),
+        data.get("confirmed"), list(data.get("headings", [])), data.get("outputs", True),
     )  # fmt: skip
 
 

@@ -106,7 +106,7 @@ def produce(notebook: Notebook, settings: Settings, formats: Sequence[str] = FOR
     with ThreadPoolExecutor(len(FORMATS)) as pool:
         if "html" in formats:
             pool.submit(html.template, "report.html.j2")  # page and font are made ready while the notebook runs
-        outcome = run(notebook, settings)
+        outcome = run(notebook, settings, outputs=False)
         record = _accepted(notebook, settings, outcome)
         given = settings.to_json().encode()
         record.source, record.cell_hashes = notebook.source_hash(), notebook.cell_hashes()

@@ -86,8 +86,10 @@ class Outcome:
     files: Mapping[str, bytes]
 
 
-def run(notebook: Notebook, settings: Settings) -> Outcome:
+def run(notebook: Notebook, settings: Settings, *, outputs: bool = True) -> Outcome:
     """Run every cell of the notebook in a fresh process of this Python, in the notebook's folder.
+
+    Without `outputs` the lines and figures are not shown below the cells, which saves drawing each figure again.
 
     Raises NotebookError if the process cannot be started or the calculation cannot be handed over; a cell that raises
     is reported in the outcome.
@@ -97,6 +99,7 @@ def run(notebook: Notebook, settings: Settings) -> Outcome:
         given = {
             **asdict(settings),
             "headings": notebook.headings(),
+            "outputs": outputs,
             "notebook_folder": str(notebook.folder),
         }
         (folder / "settings.json").write_text(json.dumps(given, ensure_ascii=False), encoding="utf-8")

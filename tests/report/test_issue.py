@@ -41,7 +41,7 @@ def give(monkeypatch: pytest.MonkeyPatch) -> Give:
     ) -> None:
         made = None if failure else record or plain.record(**fields)
         outcome = Outcome(None, failure, made, problems, {}, files or {})
-        monkeypatch.setattr(issue, "run", lambda *_: outcome)
+        monkeypatch.setattr(issue, "run", lambda *_, **__: outcome)
 
     monkeypatch.setattr(issue.view, "build", lambda *_: None)
     monkeypatch.setattr(issue.html, "render", plain.html_file)
@@ -156,7 +156,7 @@ def test_a_cell_that_raised_leaves_earlier_files(source: Notebook, give: Give, t
 
 
 def test_a_notebook_without_a_calculation(source: Notebook, monkeypatch: pytest.MonkeyPatch) -> None:
-    monkeypatch.setattr(issue, "run", lambda *_: Outcome(None, "", None, (), {}, {}))
+    monkeypatch.setattr(issue, "run", lambda *_, **__: Outcome(None, "", None, (), {}, {}))
     with pytest.raises(NotebookError, match="starts no calculation; cure: write calc = Calc"):
         issue.produce(source, Settings())
 
