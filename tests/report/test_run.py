@@ -36,6 +36,7 @@ def test_settings_reach_the_kernel(write_notebook: WriteNotebook, tmp_path: Path
         "date": "2026-12-01",
         "confirmed": "standard,edition\n",
         "headings": ["Site", "Weight"],
+        "outputs": True,
         "notebook_folder": str(tmp_path),
     }
 
@@ -212,3 +213,12 @@ def test_ctrl_c_stops_the_run_and_its_process(write_notebook: WriteNotebook, tmp
 def test_input_is_not_waited_for(write_notebook: WriteNotebook) -> None:
     outcome = run(notebook.read(write_notebook(KERNEL, "input('your name')")), Settings())
     assert "StdinNotImplementedError" in outcome.failure
+
+
+def test_a_run_whose_outputs_nobody_keeps_gives_the_same_record() -> None:
+    source = notebook.read(Path(__file__).parents[2] / "templates" / "building_lateral_force.ipynb")
+    shown, bare = run(source, Settings()), run(source, Settings(), outputs=False)
+    assert shown.record == bare.record
+    assert shown.figures == bare.figures
+    assert sum(len(cell.get("outputs", [])) for cell in shown.executed.cells) > 40
+    assert sum(len(cell.get("outputs", [])) for cell in bare.executed.cells) == 0
