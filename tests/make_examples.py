@@ -1,7 +1,7 @@
 """Make example_reports anew: `python -m tests.make_examples`.
 
-Issues every template, keeps the executed notebook beside the report, and draws the pictures of README.md from the PDF
-(with pdftoppm, of the poppler utilities).
+Issues every template and the second pass of the building, keeps the executed notebook beside each report, and draws
+the pictures of README.md from the first report (with pdftoppm, of the poppler utilities).
 """
 
 import shutil
@@ -14,6 +14,7 @@ import nbformat
 from calckit.report import notebook as notebooks
 from calckit.report.issue import issue
 from calckit.report.run import Settings, run
+from tests.second_pass import NAME, second_pass
 
 ROOT = Path(__file__).parents[1]
 EXAMPLES = ROOT / "example_reports"
@@ -25,12 +26,16 @@ PICTURES = {"answer": 2, "lines": 5, "spectrum": 10}
 def main() -> None:
     """Write the examples; earlier ones are replaced."""
     EXAMPLES.mkdir(exist_ok=True)
-    for template in TEMPLATES:
-        source = notebooks.read(template)
-        issued = issue(source, Settings(), EXAMPLES)
-        executed = run(source, Settings()).executed
-        nbformat.write(executed, EXAMPLES / template.name)
-        draw(next(path for path in issued.paths if path.suffix == ".pdf"))
+    with tempfile.TemporaryDirectory() as folder:
+        edited = Path(folder) / NAME
+        nbformat.write(second_pass(TEMPLATES[0]), edited)
+        for notebook in (*TEMPLATES, edited):
+            source = notebooks.read(notebook)
+            issued = issue(source, Settings(), EXAMPLES)
+            executed = run(source, Settings()).executed
+            nbformat.write(executed, EXAMPLES / notebook.name)
+            if notebook == TEMPLATES[0]:
+                draw(next(path for path in issued.paths if path.suffix == ".pdf"))
 
 
 def draw(report: Path) -> None:

@@ -123,15 +123,15 @@ def test_first_pass_says_what_could_not_be_checked(first: Record) -> None:
     assert "NOT OK" not in found.values()
     assert all(first.line(id_).missing for id_, verdict in found.items() if verdict == "NOT CHECKED")
     waiting = {item.line for item in first.open_items if item.group == "open"}
-    assert {"X.H1a", "Y.rho", "X.drift", "Y.stability", "N-model"} <= waiting
+    assert {"X.H1a", "Y.rho", "X.drift", "Y.stability", "N-roof"} <= waiting
 
 
 def test_lines_stand_under_their_headings(first: Record) -> None:
-    ids = ("h_n", "X.system", "S_DS", "SDC", "W", "X.V", "Y.M_x", "N-model")
+    ids = ("h_n", "X.system", "S_DS", "SDC", "W", "X.V", "Y.M_x", "N-roof")
     assert {id_: first.line(id_).section for id_ in ids} == {
         "h_n": "Building and systems", "X.system": "Building and systems", "S_DS": "Hazard and design spectrum",
         "SDC": "Design category", "W": "Weight", "X.V": "Base shear", "Y.M_x": "Distribution over the height",
-        "N-model": "Notes",
+        "N-roof": "Notes",
     }  # fmt: skip
     assert [line.n for line in first.lines] == list(range(1, len(first.lines) + 1))
 
@@ -148,7 +148,7 @@ def test_answer_is_on_the_first_sheets(first: Record) -> None:
 
 def test_second_pass_checks_everything(second: Record) -> None:
     assert set(verdicts(second).values()) == {"OK"}
-    assert {item.line for item in second.open_items if item.group == "open"} == {"N-model"}
+    assert {item.line for item in second.open_items if item.group == "open"} == {"N-roof"}
     assert number(second, "X.T") == 1.2 and second.line("X.T").detail == "analysis, not more than C_u T_a"
     # Y: the analysis gives 0.7 s, between T_a = 0.535 s and C_u T_a = 0.770 s
     assert number(second, "Y.T") == 0.7

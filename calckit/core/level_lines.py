@@ -13,28 +13,38 @@ from calckit.core.handle import Handle, Handles
 from calckit.core.inputs import own_symbol
 from calckit.core.levels import BASE, Levels
 from calckit.core.record import Line, Source
+from calckit.errors import UnknownNameError
 
 if TYPE_CHECKING:
+    from collections.abc import Mapping
+
     from calckit.core.scope import Scope
 
 GEOMETRY = Source("geometry of the levels")
 STATICS = Source("sum from the roof down")
 
 
-def write_levels(scope: Scope, table: Levels, source: Source) -> Handles:
-    """Write the columns as list lines, and what follows from them: h_x and h_sx from each other, P_x from P_level."""
+def write_levels(scope: Scope, table: Levels, sources: Mapping[str, Source]) -> Handles:
+    """Write the columns as list lines, and what follows from them: h_x and h_sx from each other, P_x from P_level.
+
+    `sources` are those of single columns by symbol, and that of all others under "".
+    """
     made = Handles()
+    symbols = {header.rpartition(".")[2] for header in table.columns}
+    if absent := [symbol for symbol in sources if symbol and symbol not in symbols]:
+        raise UnknownNameError("levels: source of column", absent[0], sorted(symbols), "name a column by its symbol")
     if BASE in table.columns:
         base = table.columns[BASE][0]
         for name, meaning in (("z_x", "elevation of level x"), ("z_b", "elevation of the base")):
             scope.calc.own_symbols[name] = own_symbol(name, meaning, base.unit)  # type: ignore[assignment]
-        made.append(_column(scope, table, "elevation", "z_x", source))
-        made.append(scope.state("z_b", f"{base.numeral} {base.unit}", "given", source))
+        made.append(_column(scope, table, "elevation", "z_x", sources[""]))
+        made.append(scope.state("z_b", f"{base.numeral} {base.unit}", "given", sources[""]))
         made.append(scope.compute(Formula("h_x", "z_x - z_b", GEOMETRY), unit=base.unit))
     for header in table.columns:
         part, _, symbol = header.rpartition(".")
         if symbol in ("elevation", BASE):
             continue
+        source = sources.get(symbol, sources[""])
         made.append(_column(scope.calc.parts[part] if part else scope, table, header, symbol, source))
     given = {header for header in table.columns if "." not in header}
     if "h_sx" in given:
@@ -46,10 +56,8 @@ def write_levels(scope: Scope, table: Levels, source: Source) -> Handles:
     if "P_level" in given:
         made.append(scope.compute(Formula("P_x", "above(P_level)", STATICS), unit=table.columns["P_level"][0].unit))
     order = ("z_x", "h_x", "h_sx", "w_x", "P_level", "P_x")
-    scope.table("levels", "Levels", [name for name in order if scope.find(name)])
-    for id_, part in scope.calc.parts.items():
-        if f"{id_}.delta_xe" in table.columns:
-            part.table("displacements", "Elastic displacements", ["delta_xe"])
+    displacements = [header for header in table.columns if header.endswith(".delta_xe")]
+    scope.table("levels", "Levels", [name for name in (*order, *displacements) if scope.find(name)])
     return made
 
 

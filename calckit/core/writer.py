@@ -9,7 +9,7 @@ import ast
 import csv
 import io
 import re
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from pathlib import Path
 from typing import Any
 
@@ -170,14 +170,17 @@ class Writer(Scope):
         with self.step():
             return self._each("answers", rows, lambda row: self.answer(*row))
 
-    def levels(self, text: str, source: str) -> Handles:
+    def levels(self, text: str, source: str, sources: Mapping[str, str] | None = None) -> Handles:
         """The pasted table of levels, or "@file.csv"; writes h_x, h_sx, w_x and, if there, delta_xe and P_x.
 
-        Raises InputError naming every bad row and column at once.
+        `source` is that of the table, `sources` those of single columns by symbol: `{"delta_xe": "M-1 p. 12"}`. Raises
+        InputError naming every bad row and column at once, and a source of a column that is not there.
         """
         from calckit.core.level_lines import write_levels
 
-        origin = self.calc.sources.read(source, "levels")
+        origins = {"": self.calc.sources.read(source, "levels")}
+        for symbol, text_of_one in (sources or {}).items():
+            origins[symbol] = self.calc.sources.read(text_of_one, f"levels, {symbol}")
         found = self.book.settings.value("levels")
         parts = tuple(self.calc.parts)
         if found:
@@ -189,7 +192,7 @@ class Writer(Scope):
         if not found:
             table = levels.parse(self._text_of(text), self.symbol, parts, self.system)
         with self.step():
-            return write_levels(self, table, origin)
+            return write_levels(self, table, origins)
 
     def _text_of(self, text: str, of_settings: bool = False) -> str:
         if not text.startswith("@"):

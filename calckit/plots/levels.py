@@ -36,7 +36,7 @@ from calckit.plots.style import (
 
 _EDGE, _GAP = 0.05, 0.14
 _FOOT = 0.38
-_LOWEST, _HIGHEST = 2.2, 6.4
+_LOWEST, _HIGHEST = 1.5, 6.4
 _NARROWEST = 0.9
 _HEAD = 11.0
 """Length of an arrow's head in points; a shorter arrow is drawn without one."""

@@ -30,7 +30,7 @@ from calckit.plots.style import (
     width_of,
 )
 
-_LEFT, _FOOT, _BODY, _EDGE = 0.62, 0.48, 2.7, 0.1
+_LEFT, _FOOT, _BODY, _EDGE = 0.62, 0.48, 2.1, 0.1
 _PAD = 0.05
 _POLE = 0.7
 _NARROWEST = 2.0

@@ -157,8 +157,9 @@ class LineView:
 
 @dataclass(frozen=True)
 class ColumnView:
-    """A column of a table: symbol, printed unit and the line it prints."""
+    """A column of a table: its part where that is not the table's, symbol, printed unit and the line it prints."""
 
+    part: str
     symbol: Typeset
     unit: str
     ref: Ref

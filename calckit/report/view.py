@@ -228,7 +228,8 @@ def _table(number: int, table: Table, lines: Lines) -> TableView:
         symbol, ref = typeset(column.typeset), lines.ref(column.line)
         if symbol is None or ref is None:
             raise KeyError(f"table {table.id!r}: column {column.symbol!r} has no printed symbol or no line")
-        columns.append(ColumnView(symbol, units.shown(column.unit), ref))
+        part = lines.by_id[column.line].part
+        columns.append(ColumnView("" if part == table.part else part, symbol, units.shown(column.unit), ref))
     rows = tuple((label, tuple(row)) for label, row in zip(table.rows, table.shown, strict=True))
     return TableView(number, table.id, table.part, table.title, table.head, tuple(columns), rows)
 

@@ -10,6 +10,7 @@ import pytest
 
 from calckit import Calc
 from calckit.core.assemble import assemble
+from calckit.errors import UnknownNameError
 from tests.printed_audit import audit
 
 
@@ -77,7 +78,16 @@ def test_displacements_belong_to_their_part(calc: Calc) -> None:
     calc.levels(text, source="S-1")
     assert calc["X.delta_xe"].value == [0.5, 0.25] and calc["X.delta_xe"].unit == "in"
     assert calc["Y.delta_xe"].value == [6.0, 2.5] and calc["Y.delta_xe"].unit == "mm"
-    assert set(calc.lines.tables) == {"levels", "X.displacements", "Y.displacements"}
+    assert [column.line for column in calc.lines.tables["levels"].columns][-2:] == ["X.delta_xe", "Y.delta_xe"]
+
+
+def test_a_column_may_have_a_source_of_its_own(calc: Calc) -> None:
+    text = "level, h_x [ft], w_x [kip], X.delta_xe [in]\n2, 24, 10, 0.50\n1, 12, 20, 0.25"
+    calc.document("M-1", title="Analysis model")
+    calc.levels(text, source="S-1", sources={"delta_xe": "M-1 p. 12"})
+    assert calc["X.delta_xe"].line.source.text() == "M-1 p. 12" and calc["w_x"].line.source.text() == "S-1"
+    with pytest.raises(UnknownNameError, match="source of column 'P_x' is not known; known: delta_xe, h_x, w_x"):
+        calc.levels(text, source="S-1", sources={"P_x": "M-1 p. 15"})
     assert "P_x" not in calc.lines.entries, "never guessed from the weights"
 
 

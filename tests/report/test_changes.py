@@ -271,8 +271,8 @@ def _opened(record: Record) -> None:
 
 
 def _closed_by_note(record: Record) -> None:
-    record.lines.append(Line("N-done", "note", text="model run", closes="N-model", n=len(record.lines) + 1))
-    record.open_items = [item for item in record.open_items if item.line != "N-model"]
+    record.lines.append(Line("N-done", "note", text="model run", closes="N-roof", n=len(record.lines) + 1))
+    record.open_items = [item for item in record.open_items if item.line != "N-roof"]
 
 
 def _confirmed(record: Record) -> None:
@@ -283,7 +283,7 @@ def _confirmed(record: Record) -> None:
 
 
 def _note(record: Record) -> None:
-    record.line("N-model").text = "Run the model with cracked stiffness."
+    record.line("N-roof").text = "Run the model with cracked stiffness."
 
 
 def _meaning(record: Record) -> None:
@@ -315,9 +315,8 @@ BY_HAND: list[tuple[Callable[[Record], None], str, str, list[tuple[str, str, str
     (_owner, "restated", "X.H1a", [("owner", "originator", "checker")]),
     (_confirmed, "confirmations", "ASCE/SEI 7-16 Table 12.8-2",
      [("", TO_BE_CONFIRMED, "confirmed in R-1 by R. Roe, 2026-12-01")]),
-    (_note, "wording", "N-model", [("text", "Run the analysis model with the forces of this first pass; bring back "
-                                    "period, displacements and gravity loads.",
-                                    "Run the model with cracked stiffness.")]),
+    (_note, "wording", "N-roof", [("text", "The weights of the roof equipment are the supplier's first figures; the final "
+                                   "ones are awaited.", "Run the model with cracked stiffness.")]),
     (_meaning, "wording", "X.V", [("meaning", "base shear", "base shear of the direction")]),
 ]  # fmt: skip
 
@@ -381,7 +380,7 @@ def test_open_items(first: Record) -> None:
     _opened(new)
     _closed_by_note(new)
     changed = between(first, new)
-    assert filled(changed) == {"added": ["N-done"], "opened": ["override-q"], "closed": ["N-model"]}
+    assert filled(changed) == {"added": ["N-done"], "opened": ["override-q"], "closed": ["N-roof"]}
     assert changed.closed[0].note == f"closed by line {len(new.lines)}, N-done"
     second = OpenItem("X.H1a-2", "X.H1a", "and its basis is missing", "originator", "open")
     both = copy.deepcopy(first)

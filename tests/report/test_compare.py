@@ -302,7 +302,7 @@ def test_write_replaces_a_comparison_and_nothing_else(folder: Path) -> None:
 def test_narrative() -> None:
     old = template()
     new = copy.deepcopy(template({"S_S": "1.1"}))
-    new.line("N-model").text = "other"
+    new.line("N-roof").text = "other"
     said = narrative(held(old, new))
     assert said == [
         "Input S_S (mapped risk-targeted spectral ordinate at 0.2 s, as a fraction of g): from 0.68 to 1.1 (+61.8 %).",
@@ -313,7 +313,7 @@ def test_narrative() -> None:
         "15 results moved; of those on the summary sheets: S_DS from 0.5567 to 0.8800 (+58.1 %); X.C_sfloor from "
         "0.03062 to 0.04840 (+58.1 %); X.C_s from 0.04357 to 0.04840 (+11.1 %); X.V from 264.0 kip to 293.3 kip "
         "(+11.1 %).",
-        "Notes and wording changed at: N-model.",
+        "Notes and wording changed at: N-roof.",
     ]
 
 
