@@ -86,7 +86,7 @@ def test_a_column_may_have_a_source_of_its_own(calc: Calc) -> None:
     calc.document("M-1", title="Analysis model")
     calc.levels(text, source="S-1", sources={"delta_xe": "M-1 p. 12"})
     assert calc["X.delta_xe"].line.source.text() == "M-1 p. 12" and calc["w_x"].line.source.text() == "S-1"
-    with pytest.raises(UnknownNameError, match="source of column 'P_x' is not known; known: delta_xe, h_x, w_x"):
+    with pytest.raises(UnknownNameError, match="source of column 'P_x' is not known; known: h_x, w_x, delta_xe"):
         calc.levels(text, source="S-1", sources={"P_x": "M-1 p. 15"})
     assert "P_x" not in calc.lines.entries, "never guessed from the weights"
 

@@ -315,8 +315,9 @@ BY_HAND: list[tuple[Callable[[Record], None], str, str, list[tuple[str, str, str
     (_owner, "restated", "X.H1a", [("owner", "originator", "checker")]),
     (_confirmed, "confirmations", "ASCE/SEI 7-16 Table 12.8-2",
      [("", TO_BE_CONFIRMED, "confirmed in R-1 by R. Roe, 2026-12-01")]),
-    (_note, "wording", "N-roof", [("text", "The weights of the roof equipment are the supplier's first figures; the final "
-                                   "ones are awaited.", "Run the model with cracked stiffness.")]),
+    (_note, "wording", "N-roof",
+     [("text", "The weights of the roof equipment are the supplier's first figures; the final ones are awaited.",
+       "Run the model with cracked stiffness.")]),
     (_meaning, "wording", "X.V", [("meaning", "base shear", "base shear of the direction")]),
 ]  # fmt: skip
 
