@@ -5,6 +5,7 @@ Knows the fields of a line and how two values are told apart. Must not know othe
 
 from __future__ import annotations
 
+import re
 from collections.abc import Callable, Iterable, Iterator
 from dataclasses import dataclass, replace
 
@@ -19,6 +20,7 @@ SET = "set at issue"
 """What a line says of itself whose value was set on the command line."""
 
 _INPUTS = ("given", "assumption", "judgment")
+_CONVERTED = re.compile(r" = .* = | converted from ")
 _DIGITS = 12  # significant digits that a record carries
 _ROW, _MOST = "row ", "moved most, "
 _ROUNDING = 1e-9  # of a value carried with 12 digits through a chain and from one unit to another
@@ -88,10 +90,15 @@ def _of_decisions(a: Line, b: Line) -> Iterator[Step]:
     if _equations(governing[0]) == _equations(governing[1]):
         yield from differs("applies as", *("; ".join(one.reason for one in many) for many in governing))
     if b.kind != "table":
-        yield from differs("case", a.detail, b.detail)
+        yield from differs("case", _case(a), _case(b))
     flags = [_flags(line) for line in (a, b)]
     yield from (Step("flag", text, NONE) for text in flags[0] if text not in flags[1])
     yield from (Step("flag", NONE, text) for text in flags[1] if text not in flags[0])
+
+
+def _case(line: Line) -> str:
+    """What the detail of a line says, without operands in another unit: those are inputs, and change as such."""
+    return "; ".join(part for part in line.detail.split("; ") if not _CONVERTED.search(part))
 
 
 def _of_results(a: Line, b: Line) -> Iterator[Step]:

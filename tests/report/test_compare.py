@@ -310,7 +310,7 @@ def test_narrative() -> None:
         "none; look-up from Table 11.4-1, row C, between columns 0.5: 1.3 and 0.75: 1.2 to Table 11.4-1, row C, "
         "between columns 1.0: 1.2 and 1.25: 1.2.",
         "Decision at X.C_s (seismic response coefficient): governs from 12.8-3 to 12.8-5.",
-        "15 results moved; of those on the summary sheets: S_DS from 0.5567 to 0.8800 (+58.1 %); X.C_sfloor from "
+        "17 results moved; of those on the summary sheets: S_DS from 0.5567 to 0.8800 (+58.1 %); X.C_sfloor from "
         "0.03062 to 0.04840 (+58.1 %); X.C_s from 0.04357 to 0.04840 (+11.1 %); X.V from 264.0 kip to 293.3 kip "
         "(+11.1 %).",
         "Notes and wording changed at: N-roof.",
