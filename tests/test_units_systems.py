@@ -15,8 +15,7 @@ from calckit.core.book import Cell, Entry
 from calckit.core.formula import Formula
 from calckit.core.record import Line, Record
 from calckit.core.symbol import KINDS, Symbol
-from calckit.standards.asce7.formulas import ALL
-from calckit.standards.asce7.symbols import SYMBOLS
+from calckit.standards.asce7.declared import FORMULAS, SYMBOLS
 from tests.building import Building, metric
 
 ONE_DECLARATION = 1e-12
@@ -127,9 +126,9 @@ def worked(formula: Formula, choice: int) -> tuple[list[float], str]:
     return [formula.value(inputs.values, inputs.rows, row) for row in rows], line.unit
 
 
-@pytest.mark.parametrize("name", ALL)
+@pytest.mark.parametrize("name", FORMULAS)
 def test_formula_with_every_unit_mixed(name: str) -> None:
-    formula = ALL[name]
+    formula = FORMULAS[name]
     expected, unit = worked(formula, 0)
     for choice in (1, 2, 3):
         obtained, own = worked(formula, choice)
@@ -139,7 +138,7 @@ def test_formula_with_every_unit_mixed(name: str) -> None:
 
 def test_units_are_mixed_in_earnest() -> None:
     # the alternatives reach formulas whose operands have a unit: most of chapter 12 past the coefficients
-    united = [name for name, formula in ALL.items() if any(SYMBOLS[n].kind in MIXED for n in formula.names)]
+    united = [name for name, formula in FORMULAS.items() if any(SYMBOLS[n].kind in MIXED for n in formula.names)]
     assert len(united) > 20 and {"THETA", "DELTA_A", "V", "WH_X", "T_A_TABLE", "M_X"} <= set(united)
 
 
@@ -189,10 +188,10 @@ def unit_of(name: str) -> str:
     return SYMBOLS[name].unit("SI")
 
 
-@pytest.mark.parametrize("name", [name for name, formula in ALL.items() if not formula.units])
+@pytest.mark.parametrize("name", [name for name, formula in FORMULAS.items() if not formula.units])
 def test_formula_is_homogeneous(name: str) -> None:
     # the value one level down is another number of the same kind: a symbol of its own
-    own = ALL[name]
+    own = FORMULAS[name]
     formula = Formula(own.result, re.sub(r"below\((\w+)\)", r"\1below", own.text), own.source)
     scales = {sympy.Symbol(n, positive=True): scale(unit_of(n.removesuffix("below"))) for n in formula.names}
     factor = degrees(formula.node.plain(), scales)
@@ -211,9 +210,9 @@ def test_proof_refuses_what_is_not_homogeneous() -> None:
         degrees(sympy.Piecewise((a, a > b), (2 * a, True)), scales)
 
 
-@pytest.mark.parametrize("name", [name for name, formula in ALL.items() if formula.units])
+@pytest.mark.parametrize("name", [name for name, formula in FORMULAS.items() if formula.units])
 def test_empirical_formula_states_the_unit_of_each_symbol(name: str) -> None:
-    formula = ALL[name]
+    formula = FORMULAS[name]
     assert formula.units
     united = {n for n in (formula.result, *formula.names) if unit_of(n)}
     assert united <= set(formula.units), "a symbol with a unit is left out"
@@ -231,7 +230,7 @@ def test_empirical_formula_states_the_unit_of_each_symbol(name: str) -> None:
 
 def test_both_declarations_of_an_empirical_formula_are_coherent() -> None:
     # T_a = C_t h_n^x with h_n in feet, C_t 0.028, and in meters, C_t 0.0724 (ASCE/SEI 7-16 Table 12.8-2, from memory)
-    formula = ALL["T_A_TABLE"]
+    formula = FORMULAS["T_A_TABLE"]
     for height in (10.0, 80.0, 400.0):
         us = formula.value({"C_t": 0.028, "h_n": height, "x": 0.8})
         si = formula.value({"C_t": 0.0724, "h_n": units.convert(height, "ft", "m"), "x": 0.8})

@@ -149,6 +149,8 @@ class Scope:
         if line.kind in ("computed", "table", "analysis") and not isinstance(line.value, list):
             self._put_in_force(entry)
         if line.source:
+            if line.source.standard:
+                line.source = self.calc.standard.in_this_edition(line.source)
             line.source = replace(line.source, confirmed=self.calc.sources.confirmation(line.source))
         with self.step():
             self.book.write(entry)

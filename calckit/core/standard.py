@@ -24,6 +24,7 @@ class Standard:
     `family` is the folder and the name under which steps hang on a part; `edition` what the title block says
     ("ASCE 7-16"); `name` what sources print ("ASCE/SEI 7-16"). `steps(scope)` gives the steps of a part,
     `summaries(calc)` the tables of the first sheets, `suppliers` what supplies a symbol that is missing.
+    `in_this_edition(source)` is a source as this edition prints it, where declarations are shared between editions.
     """
 
     family: str
@@ -35,6 +36,7 @@ class Standard:
     suppliers: Mapping[str, str] = field(default_factory=dict)
     field_of_use: tuple[str, ...] = ()
     not_covered: tuple[str, ...] = ()
+    in_this_edition: Callable[[Source], Source] = field(default=lambda source: source)
 
     def source(self, where: str = "", equation: str = "", obtained: str = "") -> Source:
         """A source in this edition."""

@@ -1,4 +1,4 @@
-"""ASCE/SEI 7: seismic loads on buildings by equivalent lateral forces, edition 7-16.
+"""ASCE/SEI 7: seismic loads on buildings by equivalent lateral forces, editions 7-16 and 7-22.
 
 Knows which editions are offered and what they are made of; the rooms are hazard, structure, forces, summary.
 """
@@ -6,11 +6,12 @@ Knows which editions are offered and what they are made of; the rooms are hazard
 from typing import Any
 
 from calckit.core.standard import Standard
+from calckit.standards.asce7.clauses import NAMES, in_7_22
+from calckit.standards.asce7.declared import SYMBOLS
 from calckit.standards.asce7.summary import SUPPLIERS, summaries
-from calckit.standards.asce7.symbols import SYMBOLS
 
 FIELD_OF_USE = (
-    "Equivalent lateral forces of ASCE/SEI 7-16, chapters 11 and 12, for buildings: design ordinates, design category, "
+    "Equivalent lateral forces of ASCE/SEI 7, chapters 11 and 12, for buildings: design ordinates, design category, "
     "system factors, period, base shear, distribution over the height, story drift, stability.",
     "Irregularities, redundancy, diaphragm class, torsion and the contents of the seismic weight are the engineer's "
     "answers; the kit does not compute them.",
@@ -34,9 +35,11 @@ def _steps(scope: Any) -> Any:
     return Steps(scope)
 
 
-EDITIONS = {
-    "ASCE 7-16": Standard(
-        "asce7", "ASCE 7-16", "ASCE/SEI 7-16", SYMBOLS, _steps, summaries, SUPPLIERS, FIELD_OF_USE, NOT_COVERED
+def _edition(name: str, **how: Any) -> Standard:
+    return Standard(
+        "asce7", name, NAMES[name], SYMBOLS, _steps, summaries, SUPPLIERS, FIELD_OF_USE, NOT_COVERED, **how
     )
-}
+
+
+EDITIONS = {"ASCE 7-16": _edition("ASCE 7-16"), "ASCE 7-22": _edition("ASCE 7-22", in_this_edition=in_7_22)}
 """The editions offered, by what the title block says."""

@@ -14,7 +14,7 @@ from calckit.core.record import NOT_CHECKED, Candidate, Flag
 from calckit.core.table import load
 from calckit.errors import InputError, ScopeError
 from calckit.standards.asce7 import formulas
-from calckit.standards.asce7.formulas import rule
+from calckit.standards.asce7.clauses import rule
 from calckit.standards.asce7.hazard import PACKAGE, site_class, study
 from calckit.standards.asce7.structure import system_row
 

@@ -1,4 +1,4 @@
-"""The formulas of ASCE/SEI 7 for equivalent lateral forces, each declared once.
+"""The formulas of ASCE/SEI 7 for equivalent lateral forces, each declared once, with the numbers of 7-16.
 
 Knows expression, clause, equation and how each was obtained. Must not know lines or the order of steps.
 """
@@ -6,16 +6,9 @@ Knows expression, clause, equation and how each was obtained. Must not know line
 from __future__ import annotations
 
 from calckit.core.formula import Formula
-from calckit.core.record import Source
+from calckit.standards.asce7.clauses import rule
 
-NAME = "ASCE/SEI 7-16"
 _INCH_SET = (("kip", "in"), ("kN", "mm"))
-
-
-def rule(where: str, equation: str = "", obtained: str = "memory, high") -> Source:
-    """A clause of this edition."""
-    return Source(NAME, where, equation, obtained, standard=True)
-
 
 # 11.4 ground motion
 S_MS = Formula("S_MS", "F_a*S_S", rule("11.4.4", "11.4-1", "found"))
@@ -74,6 +67,3 @@ DELTA_A = Formula("Delta_a", "r_Delta*h_sx", rule("12.12.1"))
 DELTA_A_RHO = Formula("Delta_a", "r_Delta*h_sx/rho", rule("12.12.1.1"))
 THETA = Formula("theta", "P_x*Delta*I_e/(V_x*h_sx*C_d)", rule("12.8.7", "12.8-16", "found"), sets=_INCH_SET)
 THETA_MAX = Formula("theta_max", "min(0.5/(beta*C_d), 0.25)", rule("12.8.7", "12.8-17", "found"))
-
-ALL = {name: formula for name, formula in list(globals().items()) if isinstance(formula, Formula)}
-"""Every formula by its Python name."""

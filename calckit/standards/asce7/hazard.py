@@ -19,6 +19,7 @@ from calckit.core.record import Candidate, Flag, Line, Margin
 from calckit.core.table import load
 from calckit.errors import Fault, InputError, ScopeError
 from calckit.standards.asce7 import formulas
+from calckit.standards.asce7.clauses import rule
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -140,14 +141,14 @@ def _F_a(scope: Scope, letter: str, flags: Sequence[Flag]) -> Handle:
     if scope.word("site_class") == "D default" and value < 1.2:
         detail = f"default class D: not less than 1.2 ({found.detail})"
         return scope.state(
-            "F_a", "1.2", "table", formulas.rule("11.4.4"), detail=detail, flags=flags, rests=("site_class", "S_S")
+            "F_a", "1.2", "table", rule("11.4.4"), detail=detail, flags=flags, rests=("site_class", "S_S")
         )
     return scope.look_up("F_a", found, flags, rests=("site_class", "S_S"))
 
 
 def _without_velocity(scope: Scope, name: str, flags: Sequence[Flag]) -> Handle:
-    rule, detail = formulas.rule("11.4.3", obtained="found"), "class B without measured velocity"
-    return scope.state(name, "1.0", "table", rule, detail=detail, flags=flags, rests=("site_class",))
+    source, detail = rule("11.4.3", obtained="found"), "class B without measured velocity"
+    return scope.state(name, "1.0", "table", source, detail=detail, flags=flags, rests=("site_class",))
 
 
 def _F_a_of_class_E(scope: Scope, S_S: float, flags: Sequence[Flag]) -> Handle:
@@ -218,7 +219,7 @@ def spectrum_ordinates(scope: Scope, periods: Sequence[float]) -> Handle:
     shown = [f"{period:.{places}f}" for period in periods]
     line = Line(
         scope.id_of("T_r"), "given", "T_r", symbol.meaning, [float(p) for p in periods], "s", shown, part=scope.id,
-        rows=rows, typeset=scope.typeset(symbol), source=formulas.rule("11.4.6"), detail="periods chosen for the table",
+        rows=rows, typeset=scope.typeset(symbol), source=rule("11.4.6"), detail="periods chosen for the table",
     )  # fmt: skip
     with scope.step():
         scope.write(Entry(line, this_cell(), tuple(shown), places))
@@ -297,5 +298,4 @@ def _governing_category(scope: Scope, risk: str, made: Sequence[Handle]) -> Hand
         if (line := handle.line).source
     ]
     rests = ("SDC_DS", "SDC_D1", "S_S", "S_1", "risk_category")
-    rule = formulas.rule("11.6")
-    return scope.state("SDC", word, "table", rule, detail=detail, flags=flags, rests=rests, candidates=compared)
+    return scope.state("SDC", word, "table", rule("11.6"), detail=detail, flags=flags, rests=rests, candidates=compared)

@@ -15,7 +15,7 @@ from calckit.core.record import NOT_CHECKED, NOT_OK, OK, Candidate, Flag
 from calckit.core.table import Table, load
 from calckit.errors import Fault, InputError, ScopeError, nearest_first
 from calckit.standards.asce7 import formulas
-from calckit.standards.asce7.formulas import rule
+from calckit.standards.asce7.clauses import rule
 from calckit.standards.asce7.hazard import PACKAGE, study
 
 if TYPE_CHECKING:

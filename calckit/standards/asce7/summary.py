@@ -114,12 +114,17 @@ def _shown(part: Scope, name: str) -> str:
     return str(line.shown)
 
 
+def _equation(name: str) -> str:
+    """An equation by its number, or the clause of one without."""
+    return f"eq. {name}" if name[:1].isdigit() else name
+
+
 def _governing(parts: list[Scope]) -> tuple[list[str], list[str]]:
     cells, lines = [], []
     for part in parts:
         entry = part.find("C_s")
         named = [c for c in entry.line.candidates if c.governs] if entry else []
-        text = f"eq. {named[0].equation}, {named[0].reason}" if named else "not stated"
+        text = f"{_equation(named[0].equation)}, {named[0].reason}" if named else "not stated"
         cells.append("override" if entry and entry.line.override else text)
         lines.append(named[0].line if named else "")
     return cells, lines

@@ -151,7 +151,4 @@ _DRIFT = (
     Symbol("theta_max", "largest stability coefficient allowed", sub="max"),
 )
 
-SYMBOLS: dict[str, Symbol] = {
-    symbol.name: symbol for symbol in (*_GROUND_MOTION, *_CATEGORY, *_STRUCTURE, *_FORCES, *_DRIFT)
-}
-"""Every symbol of the family by its name."""
+SYMBOLS = (*_GROUND_MOTION, *_CATEGORY, *_STRUCTURE, *_FORCES, *_DRIFT)

@@ -11,7 +11,7 @@ import pytest
 from calckit.core import checks
 from calckit.core.formula import Formula
 from calckit.core.table import load
-from calckit.standards.asce7 import formulas
+from calckit.standards.asce7.declared import FORMULAS
 from calckit.standards.asce7.verify import ADAPTERS
 
 PACKAGE = "calckit.standards.asce7"
@@ -31,7 +31,7 @@ def clauses(obtained: str) -> list[str]:
 
 def in_use() -> Iterator[tuple[str, str]]:
     """Every clause or table of the kit with its word."""
-    for formula in formulas.ALL.values():
+    for formula in FORMULAS.values():
         yield formula.source.where, formula.source.obtained
     for path in (resources.files(PACKAGE) / "tables").iterdir():
         table = load(PACKAGE, path.name.removesuffix(".csv"))
@@ -62,7 +62,7 @@ def test_formulas_without_a_check_are_listed(monkeypatch: pytest.MonkeyPatch) ->
     for check in CHECKS:
         if check.id in ADAPTERS:
             ADAPTERS[check.id](check.given)
-    absent = {name for name, formula in formulas.ALL.items() if id(formula) not in worked}
+    absent = {name for name, formula in FORMULAS.items() if id(formula) not in worked}
     table = NOTES.partition("Formulas that no check reaches")[2].partition("Checks of")[0]
     assert set(re.findall(r"^\| (\w+) \| ", table, re.M)) - {"formula"} == absent
 

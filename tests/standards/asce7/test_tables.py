@@ -13,7 +13,7 @@ import pytest
 from calckit.core.record import Source
 from calckit.core.table import Table, load
 from calckit.errors import UnknownNameError
-from calckit.standards.asce7.symbols import SYMBOLS
+from calckit.standards.asce7.declared import SYMBOLS
 
 PACKAGE = "calckit.standards.asce7"
 NAMES = ("C_t", "C_u", "F_a", "F_v", "I_e", "category_S_D1", "category_S_DS", "drift", "systems")

@@ -1,0 +1,25 @@
+"""Everything the family declares: the symbols and the formulas of all its rooms.
+
+Knows in which modules declarations stand. Must not know steps or lines.
+"""
+
+from __future__ import annotations
+
+from types import ModuleType
+
+from calckit.core.formula import Formula
+from calckit.core.symbol import Symbol
+from calckit.standards.asce7 import formulas, symbols
+
+ROOMS: tuple[ModuleType, ...] = (symbols, formulas)
+"""Modules with declarations: a tuple SYMBOLS, formulas by their Python names."""
+
+SYMBOLS: dict[str, Symbol] = {
+    symbol.name: symbol for room in ROOMS for symbol in getattr(room, "SYMBOLS", ())
+}
+"""Every symbol of the family by its name."""
+
+FORMULAS: dict[str, Formula] = {
+    name: formula for room in ROOMS for name, formula in vars(room).items() if isinstance(formula, Formula)
+}
+"""Every formula of the family by its Python name."""
