@@ -18,7 +18,9 @@ from calckit.errors import UnknownNameError
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
+    from calckit.core.rows import Rows
     from calckit.core.scope import Scope
+    from calckit.core.symbol import Symbol
 
 GEOMETRY = Source("geometry of the levels")
 STATICS = Source("sum from the roof down")
@@ -62,11 +64,16 @@ def write_levels(scope: Scope, table: Levels, sources: Mapping[str, Source]) -> 
 
 
 def _column(scope: Scope, table: Levels, header: str, symbol: str, source: Source) -> Handle:
-    declared = scope.symbol(symbol)
+    return write_column(scope, table, header, scope.symbol(symbol), source)
+
+
+def write_column(scope: Scope, table: Levels | Rows, header: str, declared: Symbol, source: Source) -> Handle:
+    """Write one typed column of a pasted table as a list line of inputs."""
     readings, typed = table.columns[header], table.typed(header)
     line = Line(
-        scope.id_of(symbol), "given", symbol, declared.meaning, [float(r.value) for r in readings], readings[0].unit,
-        list(typed), part=scope.id, rows=list(table.names), typeset=scope.typeset(declared), source=source,
+        scope.id_of(declared.name), "given", declared.name, declared.meaning, [float(r.value) for r in readings],
+        readings[0].unit, list(typed), part=scope.id, rows=list(table.names), typeset=scope.typeset(declared),
+        source=source,
     )  # fmt: skip
     places = len(typed[0].partition(".")[2])
     return scope.write(Entry(line, this_cell(), typed, places))

@@ -7,7 +7,7 @@ from __future__ import annotations
 
 import csv
 import re
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, field
 from itertools import pairwise
 
@@ -30,14 +30,18 @@ class Levels:
 
     def typed(self, symbol: str) -> tuple[str, ...]:
         """The numerals of a column, brought to one number of decimals."""
-        numerals = [reading.numeral for reading in self.columns[symbol]]
-        places = max(len(text.partition(".")[2]) for text in numerals)
-        return tuple(_padded(text, places) for text in numerals)
+        return padded([reading.numeral for reading in self.columns[symbol]])
 
 
-def _padded(text: str, places: int) -> str:
-    whole, _, decimals = text.partition(".")
-    return f"{whole}.{decimals.ljust(places, '0')}" if places else whole
+def padded(numerals: Sequence[str]) -> tuple[str, ...]:
+    """Typed numerals brought to one number of decimals.
+
+    >>> padded(["1", "2.25"])
+    ('1.00', '2.25')
+    """
+    places = max(len(text.partition(".")[2]) for text in numerals)
+    split = [text.partition(".") for text in numerals]
+    return tuple(f"{whole}.{decimals.ljust(places, '0')}" if places else whole for whole, _, decimals in split)
 
 
 def parse(text: str, symbols: Callable[[str], Symbol], parts: tuple[str, ...], system: str) -> Levels:
@@ -52,7 +56,7 @@ def parse(text: str, symbols: Callable[[str], Symbol], parts: tuple[str, ...], s
     (['2', '1'], ('24', '12'))
     """
     faults: list[Fault] = []
-    rows = _cells(text)
+    rows = grid("levels", text)
     header = _header(rows[0], parts, faults)
     names: list[str] = []
     raw: dict[str, list[Reading]] = {symbol: [] for symbol, _ in header[1:]}
@@ -77,10 +81,15 @@ def parse(text: str, symbols: Callable[[str], Symbol], parts: tuple[str, ...], s
     return _roof_first(Levels(names, raw), faults)
 
 
-def _cells(text: str) -> list[list[str]]:
+def grid(what: str, text: str) -> list[list[str]]:
+    """A pasted table as rows of cells; comma, semicolon or tab between. InputError names `what` if there is no text.
+
+    >>> grid("walls", "wall; L_w [ft]\\nA; 20")
+    [['wall', 'L_w [ft]'], ['A', '20']]
+    """
     lines = [line for line in text.splitlines() if line.strip()]
     if not lines:
-        _refuse([Fault("levels", "a header row and one row a level", "no text", "paste the table")])
+        raise InputError(what, [Fault(what, "a header and a row each", "no text", "paste the table")])
     separator = next((mark for mark in ("\t", ";", ",") if mark in lines[0]), ",")
     return [[cell.strip() for cell in row] for row in csv.reader(lines, delimiter=separator, skipinitialspace=True)]
 

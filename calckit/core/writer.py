@@ -194,6 +194,45 @@ class Writer(Scope):
         with self.step():
             return write_levels(self, table, origins)
 
+    def rows(
+        self, id: str, text: str, source: str, *, title: str = "", meanings: Mapping[str, str] | None = None
+    ) -> Handles:
+        """A pasted table, or "@file.csv", whose columns become list lines, printed side by side as the table `id`.
+
+        The first column names the rows, each other one is headed `symbol [unit]`; `meanings` are those of symbols that
+        no standard declares. Raises InputError naming every bad row and column at once.
+
+        >>> from calckit import Calc
+        >>> calc = Calc(project="Demo", number="D-1")
+        >>> calc.document("S-1", title="Framing plan")
+        >>> calc.rows("walls", "wall, L_w [ft]\\nA, 20\\nB, 12", source="S-1", meanings={"L_w": "length of the wall"})
+        [L_w = 20, 12]
+        """
+        from calckit.core import rows
+        from calckit.core.level_lines import write_column
+
+        origin = self.calc.sources.read(source, f"rows {id}")
+
+        def symbol(name: str, unit: str) -> Symbol | Fault:
+            declared = self.calc.standard.symbols.get(name)
+            return declared or own_symbol(name, (meanings or {}).get(name, ""), unit)
+
+        found = self.book.settings.value(self.id_of(id))
+        table = None
+        if found:
+            try:
+                table = rows.parse(id, self._text_of(found[1], of_settings=True), symbol, self.system)
+            except CalckitError as error:
+                self.book.settings.invalid[found[0]] = str(error)
+        table = table or rows.parse(id, self._text_of(text), symbol, self.system)
+        own = {name: declared for name, declared in table.symbols.items() if name not in self.calc.standard.symbols}
+        self.calc.own_symbols |= own
+        with self.step():
+            columns = table.symbols.items()
+            made = Handles(write_column(self, table, name, declared, origin) for name, declared in columns)
+            self.table(id, title or id, list(table.symbols), head=table.head)
+        return made
+
     def _text_of(self, text: str, of_settings: bool = False) -> str:
         if not text.startswith("@"):
             return text
