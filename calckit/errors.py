@@ -91,11 +91,13 @@ class MismatchError(CalckitError, ValueError):
 
 
 def nearest_first(name: str, known: Iterable[str]) -> tuple[str, ...]:
-    """`known` with the names most like `name` first.
+    """`known` with the names most like `name` first, before all one that differs by capitals alone.
 
-    >>> nearest_first("S_d", ["T_a", "S_D1", "S_DS"])
-    ('S_D1', 'S_DS', 'T_a')
+    >>> nearest_first("S_d", ["T_a", "S_D1", "S_DS"]), nearest_first("c_s", ["C_d", "C_s"])
+    (('S_D1', 'S_DS', 'T_a'), ('C_s', 'C_d'))
     """
     names = sorted(set(known))
-    near = sorted(get_close_matches(name, names, n=4, cutoff=0.4), key=lambda word: word)
+    near = sorted(get_close_matches(name, names, n=4, cutoff=0.4))
+    alike = [word for word in names if word.lower() == name.lower()]
+    near = [*alike, *(word for word in near if word not in alike)]
     return (*near, *(word for word in names if word not in near))

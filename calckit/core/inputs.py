@@ -15,7 +15,7 @@ from calckit.core.symbol import KINDS, Symbol, check_name
 from calckit.errors import Fault, UnitError, nearest_first
 
 NONE = "none"
-_SAMPLES = {"length": "62", "displacement": "1.5", "time": "0.8", "force": "450"}
+_SAMPLES = {"length": "62", "displacement": "1.5", "time": "0.8", "force": "450", "load effect": "450"}
 
 
 @dataclass(frozen=True)
@@ -54,7 +54,7 @@ def read(symbol: Symbol, raw: Any, system: str) -> Reading | Fault:
     else:
         return _fault(symbol, needed, repr(raw), f"write it like {_example(symbol, system)}")
     unit = symbol.unit(system)
-    if not units.same_kind(quantity.unit, unit):
+    if not units.same_kind(quantity.unit, unit) and not (symbol.kind == "load effect" and _of_force(quantity.unit)):
         cure = (
             f"add the unit: {_example(symbol, system)}"
             if not quantity.unit
@@ -69,6 +69,12 @@ def read(symbol: Symbol, raw: Any, system: str) -> Reading | Fault:
         typed = f"{quantity.numeral} {shown}"
         fault = _fault(symbol, f"{fault.needed} {units.shown(unit)}", typed, fault.cure)
     return fault or Reading(quantity.value, quantity.unit, quantity.numeral)
+
+
+def _of_force(unit: str) -> bool:
+    """Whether a unit is one of force, alone or times a power of length."""
+    mass, _, time = units.powers(unit)
+    return (mass, time) == (1, -2)
 
 
 def own_symbol(name: str, meaning: str, unit: str, raw: Any = None, words: bool = False) -> Symbol | Fault:

@@ -23,10 +23,15 @@ KINDS = {
     "moment": ("kip*ft", "kN*m"),
     "area": ("ft**2", "m**2"),
     "pressure": ("psf", "kPa"),
+    "line load": ("lb/ft", "kN/m"),
+    "load effect": ("kip", "kN"),
     "acceleration": ("ft/s**2", "m/s**2"),
     "other": ("", ""),
 }
-"""Kind of quantity -> display unit in the US and in the SI set."""
+"""Kind of quantity -> display unit in the US and in the SI set.
+
+A load effect is typed in any unit of force, alone or times a power of length: a moment, a force on each unit of length.
+"""
 
 GREEK = {
     "alpha": "α", "beta": "β", "gamma": "γ", "delta": "δ", "epsilon": "ε", "zeta": "ζ", "eta": "η", "theta": "θ",

@@ -59,6 +59,8 @@ def gather(scope: Scope, formula: Formula, result_unit: str, typed: Mapping[str,
         line = entry.line
         declared = formula.units.get(name) if formula.units else None
         unit = declared[system == "SI"] if declared else units.coherent(line.unit, force, length)
+        if units.same_kind(unit, line.unit) and units.factor(unit, line.unit) == 1:
+            unit = line.unit  # psf is lb/ft**2: nothing to convert
         if not units.same_kind(unit, line.unit):
             needed = f"a unit like {units.shown(unit)}"
             raise UnitError(formula.result, [Fault(name, needed, units.shown(line.unit) or "a plain number")])

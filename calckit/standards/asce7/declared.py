@@ -9,9 +9,18 @@ from types import ModuleType
 
 from calckit.core.formula import Formula
 from calckit.core.symbol import Symbol
-from calckit.standards.asce7 import formulas, symbols
+from calckit.standards.asce7 import (
+    base_reactions_rules,
+    diaphragm_forces_rules,
+    formulas,
+    load_effects_rules,
+    symbols,
+    wall_forces_rules,
+)
 
-ROOMS: tuple[ModuleType, ...] = (symbols, formulas)
+ROOMS: tuple[ModuleType, ...] = (
+    symbols, formulas, diaphragm_forces_rules, load_effects_rules, base_reactions_rules, wall_forces_rules,
+)  # fmt: skip
 """Modules with declarations: a tuple SYMBOLS, formulas by their Python names."""
 
 SYMBOLS: dict[str, Symbol] = {

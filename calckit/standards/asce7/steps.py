@@ -9,7 +9,15 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING, Any
 
 from calckit.core.handle import Handle, Handles
-from calckit.standards.asce7 import forces, hazard, structure
+from calckit.standards.asce7 import (
+    base_reactions,
+    diaphragm_forces,
+    forces,
+    hazard,
+    load_effects,
+    structure,
+    wall_forces,
+)
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -45,6 +53,17 @@ class Steps:
     X.M_x = 556, 1520
     >>> x.asce7.procedure(), x.asce7.drift(), x.asce7.stability()
     (X.procedure = OK, X.drift = NOT CHECKED, X.stability = NOT CHECKED)
+    >>> _ = x.givens("w_px_basis, w_x, H-2\\ndiaphragm_material, concrete on steel deck, H-2\\nrho, 1.0, H-2")
+    >>> x.asce7.diaphragm_forces()
+    X.F_px = 37.06, 45.86
+    >>> x.asce7.load_effects()[:3], x.asce7.base_reactions()[0]
+    ([X.r_Ev = 0.1008, X.c_D6 = 1.301, X.c_D7 = 0.7992], X.V_h = 64.26 kip)
+    >>> _ = x.givens("D, 120 kip, H-2\\nL, 40 kip, H-2\\nS, 0 kip, H-2\\nQ_E, 85 kip, H-2\\nload_method, strength, H-2")
+    >>> x.asce7.load_combinations()
+    X.U_min = 10.90 kip
+    >>> _ = x.givens("w_w, 84 psf, H-2\\ndiaphragm, rigid, H-2\\nW_pa, 900 lb, H-2")
+    >>> x.asce7.wall_forces()[-1]
+    X.F_an = 181.4 lb
     """
 
     def __init__(self, scope: Scope) -> None:
@@ -111,3 +130,36 @@ class Steps:
     def stability(self) -> Handle:
         """theta and theta_max (12.8.7) and the check of each story."""
         return forces.stability(self._scope)
+
+    # chapter 12, load effects, diaphragms, base, walls
+    def diaphragm_forces(self) -> Handle:
+        """F_px at every level with its bounds (12.10-1 to 12.10-3) and what governs; forces for design, of collectors.
+
+        Takes F_x, w_x, S_DS, I_e and the weights w_px of a pasted table (`w_px_basis` list) or w_x itself. Transfer
+        forces F_tx take rho, or Omega_0 with H4; forces of the analysis F_pa count where larger.
+        """
+        return diaphragm_forces.diaphragm_forces(self._scope)
+
+    def load_effects(self) -> Handles:
+        """E_v over D (12.4.2.2), the factors of the combinations of 2.3.6 and 2.4.5 in numbers, and the rule of 12.5.
+
+        Takes S_DS, or the vertical ordinate S_av; rho and Omega_0 where known; the answers load_method,
+        vertical_effect, L_reduced, two_systems, orthogonal, H5.
+        """
+        return load_effects.load_effects(self._scope)
+
+    def load_combinations(self) -> Handle:
+        """Every combination with the horizontal effect in both senses, its largest and smallest (2.3.6, 2.4.5).
+
+        Takes the effects D, L, S, Q_E, single or as columns of a pasted table, in any unit of force or moment; with
+        Q_Ep and Q_Et in place of Q_E, 100 % of one direction with 30 % of the other. `overstrength` yes takes E_mh.
+        """
+        return load_effects.load_combinations(self._scope)
+
+    def base_reactions(self) -> Handles:
+        """V_h and M_b at the base, M_f at the soil (12.13.4), the couple N_f over d_f, the check against uplift."""
+        return base_reactions.base_reactions(self._scope)
+
+    def wall_forces(self) -> Handles:
+        """The force on structural walls out of plane (12.11.1) and on their anchorage (12.11.2), from w_w and W_pa."""
+        return wall_forces.wall_forces(self._scope)

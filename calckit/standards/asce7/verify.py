@@ -13,6 +13,7 @@ from calckit import units
 from calckit.core.calc import Calc
 from calckit.core.handle import Handle
 from calckit.errors import MismatchError
+from calckit.standards.asce7 import verify_effects
 
 Given = Mapping[str, Any]
 Results = dict[str, Any]
@@ -185,6 +186,8 @@ def _house(given: Given) -> Results:
     calc.asce7.approximate_period()
     calc.asce7.period()
     calc.asce7.base_shear()
+    calc.given("rho", 1.0, source="P")  # the sheet prints 0.7 V alone
+    calc.asce7.load_effects()
     _same(calc, given, "R", "C_t", "x")
     return _ordinates(given) | {
         "S_M1_with_F_v_printed": _value(calc, "S_M1"),
@@ -193,6 +196,7 @@ def _house(given: Given) -> Results:
         "C_s_basic": _value(calc, "C_sbasic"),
         "C_s_cap_with_F_v_printed": _value(calc, "C_scap"),
         "C_s": _value(calc, "C_s"),
+        "ASD_coefficient": _value(calc, "C_sA"),
     }
 
 
@@ -237,5 +241,6 @@ ADAPTERS: dict[str, Callable[[Given], Results]] = {
     "asce7.v.spectrum": _spectrum,
     "asce7.v.Cs": _coefficients,
     "asce7.v.Cu": _period_limit,
+    **verify_effects.ADAPTERS,
 }
 """What runs each check, by its id."""
