@@ -12,14 +12,18 @@ from calckit.standards.asce7.summary import SUPPLIERS, summaries
 
 FIELD_OF_USE = (
     "Equivalent lateral forces of ASCE/SEI 7, chapters 11 and 12, for buildings: design ordinates, design category, "
-    "system factors, period, base shear, distribution over the height, story drift, stability.",
+    "system factors, period, base shear, distribution over the height, story drift, stability; diaphragm and collector "
+    "forces (12.10.1, 12.10.2), load effects and combinations (12.4, 2.3.6, 2.4.5), reactions at the base, structural "
+    "walls out of plane and their anchorage (12.11.1, 12.11.2.1).",
     "Irregularities, redundancy, diaphragm class, torsion and the contents of the seismic weight are the engineer's "
     "answers; the kit does not compute them.",
     "Values and rules marked as to be confirmed were not read in the printed standard by the kit's authors.",
 )
 NOT_COVERED = (
-    "computed torsion, redundancy and irregularities; diaphragms, collectors, load combinations, foundations; "
-    "nonstructural components (chapter 13)",
+    "computed torsion, redundancy and irregularities; nonstructural components (chapter 13)",
+    "the design of elements: collectors and chords, columns, walls, anchors, foundations; the further rules of 12.11.2 "
+    "for anchorage in design categories C to F; the alternative diaphragm methods (12.10.3, 12.10.4); what is "
+    "excepted for light frame in 12.10.2",
     "modal and response history analysis (12.9, chapter 16); soil-structure interaction (chapter 19)",
     "the simplified method (12.14), nonbuilding structures (chapter 15), isolated and damped structures (chapters 17 "
     "and 18), existing buildings",

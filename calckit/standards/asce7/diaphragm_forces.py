@@ -113,7 +113,7 @@ def _transfer(scope: Scope) -> bool:
         return False
     factor = "Omega_0" if offset == "yes" else "rho"
     absent = [] if scope.number(factor) is not None else [f"{scope.plain(factor)} ({scope.symbol(factor).meaning})"]
-    absent += ["the answer H4"] if offset is None else []
+    absent += ["answer H4"] if offset is None else []
     if absent:
         scope.verdict(id_, title, NOT_CHECKED, source, missing=", ".join(absent), rests=rests)
         return False
@@ -150,12 +150,13 @@ def _increase(scope: Scope) -> bool | None:
     asked = [name for name in INCREASED_BY if name in scope.calc.standard.symbols]
     present = [name for name in asked if scope.word(name) == "yes"]
     if present and category is not None:
-        scope.compute(rules.F_J, detail=f"irregularity {', '.join(present)}", rests=rests)
+        detail = f"irregularity {', '.join(present)}; all of F_dx, on the safe side"
+        scope.compute(rules.F_J, detail=detail, rests=rests)
         return True
     unanswered = [name for name in asked if scope.word(name) is None]
     waiting = ["SDC"] if category is None else []
     if unanswered or waiting:
-        missing = ", ".join([*waiting, *(f"the answer {name}" for name in unanswered)])
+        missing = ", ".join([*waiting, *([f"answers {', '.join(unanswered)}"] if unanswered else [])])
         scope.verdict(id_, title, NOT_CHECKED, source, missing=missing, rests=rests)
         return None
     detail = f"none of {', '.join(asked)}: no increase"

@@ -56,7 +56,7 @@ F_D = Formula("F_dx", "F_px", rule("12.10.1"))
 F_D_ANALYSIS = Formula("F_dx", "max(F_px, F_pa)", rule("12.10.1"))
 F_D_TRANSFER = Formula("F_dx", "F_px + F_Tx", rule("12.10.1"))
 F_D_BOTH = Formula("F_dx", "max(F_px, F_pa) + F_Tx", rule("12.10.1"))
-F_J = Formula("F_jx", "1.25*F_px", rule("12.3.3.4"))
+F_J = Formula("F_jx", "1.25*F_dx", rule("12.3.3.4"))
 
 # 12.10.2 collectors
 F_CA = Formula("F_ca", "Omega_0*F_x", rule("12.10.2.1"))

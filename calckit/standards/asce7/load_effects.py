@@ -130,12 +130,12 @@ def _taken_together(scope: Scope) -> tuple[str, str, str]:
     if not reasons:
         asked = {"H5": nonparallel} if category == "C" else {"H5": nonparallel, "two_systems": shared}
         if unanswered := [name for name, word in asked.items() if word is None]:
-            return NOT_CHECKED, "", ", ".join(f"the answer {name}" for name in unanswered)
+            return NOT_CHECKED, "", f"answers {', '.join(unanswered)}"
         return OK, f"design category {category}: each direction by itself", ""
     needed = f"design category {category}, {' and '.join(reasons)}: 100 % with 30 % at right angles"
     answer = scope.word("orthogonal")
     if answer is None:
-        return NOT_CHECKED, needed, "the answer orthogonal"
+        return NOT_CHECKED, needed, "answer orthogonal"
     return (OK, needed, "") if answer == "yes" else (NOT_OK, f"{needed} is needed", "")
 
 

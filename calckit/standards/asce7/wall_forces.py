@@ -68,7 +68,7 @@ def _anchorage(scope: Scope) -> Handle:
     absent = [name for name in ("W_pa", *(("L_f",) if flexible else ())) if not _known(scope, name)]
     missing = [f"{scope.plain(name)} ({scope.symbol(name).meaning})" for name in absent]
     if kind is None:
-        missing.append(f"the answer diaphragm ({scope.symbol('diaphragm').meaning})")
+        missing.append(f"answer diaphragm ({scope.symbol('diaphragm').meaning})")
     if missing:
         rests = ("diaphragm", "W_pa", "L_f")
         return scope.verdict("anchorage", title, NOT_CHECKED, rule("12.11.2"), missing=", ".join(missing), rests=rests)
