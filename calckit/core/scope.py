@@ -257,7 +257,7 @@ class Scope:
         """A check of a relation with a source of its own; used by steps."""
         formula = Formula(title, relation, source, sets=sets)
         id_ = id_ or re.sub(r"\W+", "_", title.lower()).strip("_")
-        absent = [name for name in formula.names if not self._has_number(name)]
+        absent = [name for name in formula.names if not self.has_number(name)]
         unknown = [
             name for name in absent if self.find(name) is None and not self._known_meaning(name.rpartition(".")[2])
         ]
@@ -297,7 +297,8 @@ class Scope:
             line.flags.append(Flag(f"{self.labelled(title)}: {detail}", True, "originator"))
         return self.write(Entry(line, this_cell()), rests)
 
-    def _has_number(self, name: str) -> bool:
+    def has_number(self, name: str) -> bool:
+        """Whether a name stands for a number or a list of numbers here."""
         entry = self.find(name)
         return entry is not None and not isinstance(entry.line.value, str) and entry.line.value is not None
 

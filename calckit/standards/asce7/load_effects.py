@@ -148,14 +148,17 @@ def load_combinations(scope: Scope) -> Handle:
     if faults := [scope.missing(name) for name in needed if scope.number(name) is None]:
         raise InputError("asce7.load_combinations", faults)
     overstrength = scope.word("overstrength") == "yes"
-    two = scope.find("Q_Ep") is not None and scope.find("Q_Et") is not None
+    two = scope.has_number("Q_Ep") and scope.has_number("Q_Et")
     effects = ("D", "L", "S", *(() if two else ("Q_E",)))
-    wanted = [name for name in effects if not _known(scope, name)]
+    wanted = [name for name in effects if not scope.has_number(name)]
     wanted += [name for name in ("Omega_0" if overstrength else "rho",) if scope.number(name) is None]
     with scope.step():
         if wanted:
             missing = ", ".join(f"{scope.plain(name)} ({scope.symbol(name).meaning})" for name in wanted)
-            return scope.verdict("load_combinations", "Load combinations", NOT_CHECKED, rule("2.3.6"), missing=missing)
+            return scope.verdict(
+                "load_combinations", "Load combinations", NOT_CHECKED, rule("2.3.6"), missing=missing,
+                rests=(*effects, "rho", "Omega_0", "overstrength"),
+            )  # fmt: skip
         unit = scope.find("D").line.unit  # type: ignore[union-attr]
         if two:
             scope.compute(rules.Q_E_TWO, unit=unit, detail="the redundancy factor of this part is taken for both")
@@ -174,15 +177,10 @@ def _given_twice(scope: Scope) -> list[Fault]:
     return [Fault("Q_E", "one source", "Q_E beside Q_Ep", cure, scope.symbol("Q_E").meaning)]
 
 
-def _known(scope: Scope, name: str) -> bool:
-    entry = scope.find(name)
-    return entry is not None and (isinstance(entry.line.value, list) or scope.number(name) is not None)
-
-
 def _horizontal(scope: Scope, overstrength: bool) -> Formula:
     if not overstrength:
         return rules.E_H
-    return rules.E_MH_LIMITED if _known(scope, "E_cl") else rules.E_MH
+    return rules.E_MH_LIMITED if scope.has_number("E_cl") else rules.E_MH
 
 
 def _combined(scope: Scope, method: str, overstrength: bool, unit: str) -> Handle:

@@ -153,6 +153,7 @@ class Steps:
 
         Takes the effects D, L, S, Q_E, single or as columns of a pasted table, in any unit of force or moment; with
         Q_Ep and Q_Et in place of Q_E, 100 % of one direction with 30 % of the other. `overstrength` yes takes E_mh.
+        One table a part: other effects are own lines with the factors, as in "c_D6*M_D + c_L*M_L + rho*M_E".
         """
         return load_effects.load_combinations(self._scope)
 

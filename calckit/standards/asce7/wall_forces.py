@@ -26,7 +26,7 @@ def wall_forces(scope: Scope) -> Handles:
         cure = "leave the step out; take the forces of 1.4"
         raise ScopeError(f"{scope.id_of('f_w')}: 12.11 does not apply in design category A; {cure}")
     faults = [scope.missing(name) for name in ("S_DS", "I_e") if scope.number(name) is None]
-    faults += [scope.missing("w_w")] if not _known(scope, "w_w") else []
+    faults += [scope.missing("w_w")] if not scope.has_number("w_w") else []
     faults += _above_the_roof(scope)
     if faults:
         raise InputError("asce7.wall_forces", faults)
@@ -34,7 +34,7 @@ def wall_forces(scope: Scope) -> Handles:
         made = Handles(scope.compute(formula) for formula in (rules.F_W_BASIC, rules.F_W_MIN, rules.F_W))
         if ALLOWABLE in methods(scope):
             made.append(scope.compute(rules.F_W_ALLOWABLE, rests=("load_method",)))
-        if _known(scope, "h_w"):
+        if scope.has_number("h_w"):
             made += [scope.compute(formula) for formula in (rules.W_WALL, rules.F_WALL)]
         columns = ("w_w", "f_wbasic", "f_wmin", "f_w", "f_wA", "h_w", "W_wall", "F_wall")
         _tabulate(scope, "wall_forces", "Walls out of plane", columns)
@@ -42,14 +42,9 @@ def wall_forces(scope: Scope) -> Handles:
         return made
 
 
-def _known(scope: Scope, name: str) -> bool:
-    entry = scope.find(name)
-    return entry is not None and (isinstance(entry.line.value, list) or scope.number(name) is not None)
-
-
 def _above_the_roof(scope: Scope) -> list[Fault]:
     z_a, h_n = scope.find("z_a"), scope.number("h_n", "ft")
-    if z_a is None or h_n is None or not _known(scope, "z_a"):
+    if z_a is None or h_n is None or not scope.has_number("z_a"):
         return []
     value = z_a.line.value
     heights = [float(each) for each in (value if isinstance(value, list) else [value])]  # type: ignore[arg-type]
@@ -65,7 +60,7 @@ def _anchorage(scope: Scope) -> Handle:
     title = "Anchorage of walls"
     kind = scope.word("diaphragm")
     flexible = kind in ("flexible", "semirigid")
-    absent = [name for name in ("W_pa", *(("L_f",) if flexible else ())) if not _known(scope, name)]
+    absent = [name for name in ("W_pa", *(("L_f",) if flexible else ())) if not scope.has_number(name)]
     missing = [f"{scope.plain(name)} ({scope.symbol(name).meaning})" for name in absent]
     if kind is None:
         missing.append(f"answer diaphragm ({scope.symbol('diaphragm').meaning})")
@@ -78,7 +73,7 @@ def _anchorage(scope: Scope) -> Handle:
     else:
         detail = "diaphragm that is not flexible: 1.0"
         scope.state("k_a", "1.0", "table", rule("12.11.2.1"), detail=detail, rests=("diaphragm",))
-        if _known(scope, "z_a") and scope.number("h_n") is not None:
+        if scope.has_number("z_a") and scope.number("h_n") is not None:
             scope.compute(rules.R_Z, rests=("diaphragm",))
             basic = rules.F_AN_BELOW
     weight = scope.find("W_pa")

@@ -167,6 +167,15 @@ def test_the_larger_of_both_directions() -> None:
         twice.asce7.load_combinations()
 
 
+def test_factors_serve_own_lines() -> None:
+    calc = combined()
+    moments = {"M_D": "90 kip*ft", "M_L": "30 kip*ft", "M_E": "150 kip*ft"}
+    for name, moment in moments.items():
+        calc.given(name, moment, source="P", meaning="bending moment")
+    own = calc.line("M_u", "c_D6*M_D + c_L*M_L + rho*M_E", unit="kip*ft", meaning="bending moment for strength")
+    assert own.value == pytest.approx(1.366 * 90 + 30 + 1.3 * 150, rel=1e-11)
+
+
 def test_what_is_not_there_yet_is_named() -> None:
     calc = begin(rho=None, D="100 kip")
     calc.asce7.load_effects()
