@@ -35,7 +35,7 @@ def base_reactions(scope: Scope) -> Handles:
         made.append(scope.compute(rules.M_B))
         lowest = scope.find("M_x").line.rows[-1]  # type: ignore[union-attr]
         scope.require(
-            f'abs(M_b/level(M_x, "{lowest}") - 1) <= 0.001', title="Overturning by levels equals that by stories",
+            f'abs(M_b/level(M_x, {lowest!r}) - 1) <= 0.001', title="Overturning by levels equals that by stories",
             source=rules.STATICS, id_="sum_of_overturning",
         )  # fmt: skip
         made.append(_at_the_soil(scope))

@@ -14,6 +14,7 @@ from calckit.core.record import NOT_CHECKED, OK, Flag
 from calckit.errors import Fault, InputError, ScopeError
 from calckit.standards.asce7 import diaphragm_forces_rules as rules
 from calckit.standards.asce7.clauses import rule
+from calckit.standards.asce7.found import found, with_findings
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -102,7 +103,7 @@ def _stated(scope: Scope, name: str) -> bool:
 def _transfer(scope: Scope) -> bool:
     """Transfer forces with rho, or with Omega_0 under an offset out of plane; whether they were worked."""
     id_, title, source = "transfer", "Transfer forces in the diaphragms", rule("12.10.1.1", obtained="found")
-    offset, rests = scope.word("H4"), ("H4", "F_tx", "rho", "Omega_0")
+    offset, rests = found(scope, "H4"), (*with_findings(["H4"]), "F_tx", "rho", "Omega_0")
     if not _listed(scope, "F_tx"):
         if _stated(scope, "F_tx") and offset != "yes":
             scope.verdict(id_, title, OK, source, detail="none to be transferred, as stated", rests=rests)
@@ -117,10 +118,11 @@ def _transfer(scope: Scope) -> bool:
     if absent:
         scope.verdict(id_, title, NOT_CHECKED, source, missing=", ".join(absent), rests=rests)
         return False
-    if factor == "Omega_0":
-        scope.compute(rules.F_T_OVERSTRENGTH, detail="offset out of plane (H4): overstrength", rests=("H4",))
-    else:
-        scope.compute(rules.F_T_REDUNDANT, detail="no offset out of plane (H4): redundancy", rests=("H4",))
+    formula, why = {
+        "Omega_0": (rules.F_T_OVERSTRENGTH, "offset out of plane (H4): overstrength"),
+        "rho": (rules.F_T_REDUNDANT, "no offset out of plane (H4): redundancy"),
+    }[factor]
+    scope.compute(formula, detail=why, rests=with_findings(["H4"]))
     return True
 
 
@@ -143,17 +145,17 @@ def _design(scope: Scope, transferred: bool) -> None:
 def _increase(scope: Scope) -> bool | None:
     """Whether 12.3.3.4 increases connections and collectors; None while an answer is open."""
     id_, title, source = "connections", "Diaphragm connections and collectors", rule("12.3.3.4")
-    category, rests = scope.word("SDC"), ("SDC", *INCREASED_BY)
+    category, rests = scope.word("SDC"), ("SDC", *with_findings(INCREASED_BY))
     if category in ("B", "C"):
         scope.verdict(id_, title, OK, source, detail=f"design category {category}: no increase", rests=rests)
         return False
     asked = [name for name in INCREASED_BY if name in scope.calc.standard.symbols]
-    present = [name for name in asked if scope.word(name) == "yes"]
+    present = [name for name in asked if found(scope, name) == "yes"]
     if present and category is not None:
         detail = f"irregularity {', '.join(present)}; all of F_dx, on the safe side"
         scope.compute(rules.F_J, detail=detail, rests=rests)
         return True
-    unanswered = [name for name in asked if scope.word(name) is None]
+    unanswered = [name for name in asked if found(scope, name) is None]
     waiting = ["SDC"] if category is None else []
     if unanswered or waiting:
         missing = ", ".join([*waiting, *([f"answers {', '.join(unanswered)}"] if unanswered else [])])

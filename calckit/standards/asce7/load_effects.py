@@ -14,6 +14,7 @@ from calckit.core.record import NOT_CHECKED, NOT_OK, OK, Line, Source
 from calckit.errors import Fault, InputError, ScopeError
 from calckit.standards.asce7 import load_effects_rules as rules
 from calckit.standards.asce7.clauses import rule, rule_of
+from calckit.standards.asce7.found import found, with_findings
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -112,14 +113,14 @@ def _in_words(scope: Scope) -> Handle:
 def _directions(scope: Scope) -> Handle:
     """Whether the directions are taken together (12.5), and whether the effects say so."""
     verdict, detail, missing = _taken_together(scope)
-    rests = ("SDC", "H5", "two_systems", "orthogonal")
+    rests = ("SDC", *with_findings(["H5"]), "two_systems", "orthogonal")
     return scope.verdict(
         "directions", "Directions taken together", verdict, rule("12.5"), detail=detail, missing=missing, rests=rests
     )
 
 
 def _taken_together(scope: Scope) -> tuple[str, str, str]:
-    category, nonparallel, shared = (scope.word(name) for name in ("SDC", "H5", "two_systems"))
+    category, nonparallel, shared = scope.word("SDC"), found(scope, "H5"), scope.word("two_systems")
     if category is None:
         return NOT_CHECKED, "", "SDC (seismic design category)"
     if category == "B":

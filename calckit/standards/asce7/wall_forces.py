@@ -13,6 +13,7 @@ from calckit.core.record import NOT_CHECKED, Flag
 from calckit.errors import Fault, InputError, ScopeError
 from calckit.standards.asce7 import wall_forces_rules as rules
 from calckit.standards.asce7.clauses import rule
+from calckit.standards.asce7.found import found, with_findings
 from calckit.standards.asce7.load_effects import methods
 from calckit.standards.asce7.load_effects_rules import ALLOWABLE
 
@@ -58,23 +59,23 @@ def _above_the_roof(scope: Scope) -> list[Fault]:
 
 def _anchorage(scope: Scope) -> Handle:
     title = "Anchorage of walls"
-    kind = scope.word("diaphragm")
+    kind = found(scope, "diaphragm")
     flexible = kind in ("flexible", "semirigid")
     absent = [name for name in ("W_pa", *(("L_f",) if flexible else ())) if not scope.has_number(name)]
     missing = [f"{scope.plain(name)} ({scope.symbol(name).meaning})" for name in absent]
     if kind is None:
         missing.append(f"answer diaphragm ({scope.symbol('diaphragm').meaning})")
     if missing:
-        rests = ("diaphragm", "W_pa", "L_f")
+        rests = (*with_findings(["diaphragm"]), "W_pa", "L_f")
         return scope.verdict("anchorage", title, NOT_CHECKED, rule("12.11.2"), missing=", ".join(missing), rests=rests)
     basic = rules.F_AN_BASIC
     if flexible:
-        scope.compute(rules.K_A, flags=_semirigid(scope, kind), rests=("diaphragm",))
+        scope.compute(rules.K_A, flags=_semirigid(scope, kind), rests=with_findings(["diaphragm"]))
     else:
         detail = "diaphragm that is not flexible: 1.0"
-        scope.state("k_a", "1.0", "table", rule("12.11.2.1"), detail=detail, rests=("diaphragm",))
+        scope.state("k_a", "1.0", "table", rule("12.11.2.1"), detail=detail, rests=with_findings(["diaphragm"]))
         if scope.has_number("z_a") and scope.number("h_n") is not None:
-            scope.compute(rules.R_Z, rests=("diaphragm",))
+            scope.compute(rules.R_Z, rests=with_findings(["diaphragm"]))
             basic = rules.F_AN_BELOW
     weight = scope.find("W_pa")
     assert weight is not None

@@ -115,6 +115,14 @@ def test_connections_are_increased_for_some_irregularities(name: str) -> None:
     assert line(calc, "F_jx").detail.startswith(f"irregularity {name}")
 
 
+def test_what_the_numbers_found_comes_before_the_answer() -> None:
+    calc = distributed(begin(diaphragm_material="wood", w_px_basis="w_x", **NOT_IRREGULAR))
+    calc.given("H2_found", "yes", source="P", meaning="irregularity H2 by the numbers")
+    calc.asce7.diaphragm_forces()
+    assert line(calc, "F_jx").detail.startswith("irregularity H2")
+    assert {"H2", "H2_found"} <= set(line(calc, "F_jx").inputs)
+
+
 def test_no_increase_in_category_c_and_none_decided_while_an_answer_is_open() -> None:
     calm = diaphragms(SDC="C", H2="yes")
     assert "F_jx" not in calm.lines.entries and value(calm, "F_cm") == value(calm, "F_pxmin")
