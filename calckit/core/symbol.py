@@ -23,6 +23,8 @@ KINDS = {
     "moment": ("kip*ft", "kN*m"),
     "area": ("ft**2", "m**2"),
     "pressure": ("psf", "kPa"),
+    "stiffness": ("kip/in", "kN/mm"),
+    "line load": ("kip/ft", "kN/m"),
     "acceleration": ("ft/s**2", "m/s**2"),
     "other": ("", ""),
 }

@@ -33,6 +33,17 @@ SUPPLIERS = {
     "h_sx": "levels(...)",
     "delta_xe": "levels(...), column X.delta_xe",
     "P_x": "levels(...), column P_x",
+    "A_x": "asce7.end_displacements()",
+    "rho": "asce7.redundancy()",
+    **dict.fromkeys(("d_1plus", "d_2plus", "d_1minus", "d_2minus"), "rows(...), a row for each level"),
+    **dict.fromkeys(("x_i", "y_i", "k_ix", "k_iy"), "rows(...), a row for each element"),
+    "b_i": "rows(...), a row for each line",
+    **dict.fromkeys(("L_s", "d_s"), "rows(...), a row for each span"),
+    **dict.fromkeys(("V_ax", "V_ay"), "rows(...), a row for each element"),
+    "V_px": 'along_x="..." (the part with its V_x), or given("V_px", ...)',
+    "V_py": 'along_y="..." (the part with its V_x), or given("V_py", ...)',
+    **dict.fromkeys(("V_p", "F_d"), 'direction="..." (the part with its forces), or given(...)'),
+    **dict.fromkeys(("diaphragm_is", "H1a", "H1b"), "answer(...)"),
 }
 """What supplies a symbol that is missing."""
 
