@@ -13,13 +13,12 @@ from calckit.standards.asce7.summary import SUPPLIERS, summaries
 FIELD_OF_USE = (
     "Equivalent lateral forces of ASCE/SEI 7, chapters 11 and 12, for buildings: design ordinates, design category, "
     "system factors, period, base shear, distribution over the height, story drift, stability.",
-    "Irregularities, redundancy, the class of diaphragms, torsion and the distribution in plan follow from numbers where "
-    "they are given, else from the engineer's answers; the contents of the seismic weight are the engineer's answer.",
+    "Irregularities, redundancy, the class of diaphragms, torsion and the distribution in plan follow from numbers "
+    "where they are given, else from the engineer's answers; what the seismic weight holds is the engineer's answer.",
     "Values and rules marked as to be confirmed were not read in the printed standard by the kit's authors.",
 )
 NOT_COVERED = (
-    "diaphragm forces, collectors, load combinations, foundations; "
-    "nonstructural components (chapter 13)",
+    "diaphragm forces, collectors, load combinations, foundations; nonstructural components (chapter 13)",
     "modal and response history analysis (12.9, chapter 16); soil-structure interaction (chapter 19)",
     "the simplified method (12.14), nonbuilding structures (chapter 15), isolated and damped structures (chapters 17 "
     "and 18), existing buildings",

@@ -63,6 +63,11 @@ def _ratios(scope: Scope, name: str, *, down: int = 0, skip: int = 0) -> Over:
     return [(rows[i + down], float(carried(values[i], COMPARED)), name) for i in range(skip, len(rows) - down)]
 
 
+def _inverse(ratio: tuple[str, float, str]) -> float:
+    """A ratio the other way round: what is in the row over what is below."""
+    return float(carried(1 / ratio[1], COMPARED))
+
+
 def _told(scope: Scope, over: Over, limit: float, sign: str) -> str:
     """The ratios named, each with the digits that show on which side of the limit it is."""
     told = []
@@ -90,6 +95,7 @@ def _write(
     if answered and answered != word and not exempt:
         text = f"{scope.id_of(name)} is answered {answered}; the numbers say {word}, and they decide"
         flags.append(Flag(text, True, "originator"))
+    detail = f"{detail}: {word}"
     return scope.state(f"{name}_found", word, "table", source, detail=detail, flags=flags, rests=rests)
 
 
@@ -175,9 +181,14 @@ def _amplification(scope: Scope, cases: Sequence[int]) -> list[Handle]:
         missing = "the rule of this edition, which is written around the ratio of drifts"
         title, source = "Amplification of accidental torsion", rule_of(NEW, "12.8.4.3")
         return [scope.verdict("amplification", title, NOT_CHECKED, source, missing=missing)]
-    for formula in (rules.D_MAX, rules.D_AVG):
-        for case in cases:
+    for case in cases:
+        word = ("plus", "minus")[case]
+        for formula in (rules.D_MAX, rules.D_AVG):
             scope.compute(formula[case])
+        columns = [f"{name}{word}" for name in ("d_1", "d_2", "d_max", "d_avg")]
+        scope.table(
+            f"end_means_{word}", f"Displacements of the diaphragm ends, mass shifted toward {'+−'[case]}", columns
+        )
     made = scope.compute(rules.A_X if len(cases) == 2 else rules.A_X_ONE_CASE, rests=("H1a_found", "H1b_found"))
     words = [("plus", "minus")[case] for case in cases]
     columns = [f"{name}{word}" for word in words for name in ("d_max", "d_avg")]
@@ -278,13 +289,15 @@ def _exempt(scope: Scope) -> str:
 
 def _stiffness(scope: Scope) -> list[Handle]:
     entry = scope.find("K_s")
-    if entry is None or entry.line.kind != "given":
+    own = entry is None or entry.line.kind != "given"
+    if own:
         if scope.find("V_x") is None or scope.find("delta_xe") is None:
             return []
         scope.compute(rules.K_S)
     for formula in (rules.K_1, rules.R_K, rules.K_2, rules.R_K3):
         scope.compute(formula)
-    columns = ["K_s", "K_1", "K_2", "r_K", "r_K3"]
+    operands = ["V_x", "delta_xe"] if own else []
+    columns = [*operands, "K_s", "K_1", "K_2", "r_K", "r_K3"]
     scope.table("stiffness_ratios", "Story stiffnesses, and ratios of what is below", columns, head="Story below")
     one, three = _ratios(scope, "r_K", down=1), _ratios(scope, "r_K3", down=3)
     made, rests = [], ("K_s", "r_K", "r_K3")
@@ -306,7 +319,7 @@ def _mass(scope: Scope) -> list[Handle]:
     scope.table("weight_ratios", "Weights of adjacent levels", ["w_x", "r_w"])
     ratios = _ratios(scope, "r_w", down=1)
     heavier_below = [each for place, each in enumerate(ratios) if each[1] > 1.5 and place]
-    heavier_above = [each for each in ratios if each[1] * 1.5 < 1]
+    heavier_above = [each for each in ratios if _inverse(each) > 1.5]
     over = heavier_below + heavier_above
     detail = "; ".join(f"{scope.plain(n)} = {numeral(carried(v), 4)} at {story}" for story, v, n in over)
     none = "weights of adjacent levels within 1.5 times, a lighter roof left out"
@@ -319,7 +332,7 @@ def _width(scope: Scope) -> list[Handle]:
         return []
     scope.compute(rules.R_B)
     scope.table("width_ratios", "Widths of the lateral system", ["b_s", "r_b"], head="Story below")
-    over = [each for each in _ratios(scope, "r_b", down=1) if each[1] > 1.3 or each[1] * 1.3 < 1]
+    over = [each for each in _ratios(scope, "r_b", down=1) if each[1] > 1.3 or _inverse(each) > 1.3]
     detail = "; ".join(f"{scope.plain(n)} = {numeral(carried(v), 4)} at {story}" for story, v, n in over)
     detail = f"{detail} (outside 1/1.3 to 1.3)" if over else "widths of adjacent stories within 1.3 times"
     return [_write(scope, "V3", "yes" if over else "no", detail, _height(scope), ("r_b",))]
@@ -376,5 +389,6 @@ def _follows(
         missing = f"answers {', '.join(unknown)}"
         return scope.verdict(f"{symbol}_open", title, NOT_CHECKED, source, missing=missing, rests=rests)
     flags = [Flag(f"{scope.labelled(text)}: {', '.join(found)}", True, "originator")] if found else []
-    detail = f"by {', '.join(found)}" if found else f"none of {', '.join(names)}"
-    return scope.state(symbol, "yes" if found else "no", "table", source, detail=detail, flags=flags, rests=rests)
+    word = "yes" if found else "no"
+    detail = f"by {', '.join(found)}: {word}" if found else f"none of {', '.join(names)}: {word}"
+    return scope.state(symbol, word, "table", source, detail=detail, flags=flags, rests=rests)

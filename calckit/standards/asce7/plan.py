@@ -45,7 +45,7 @@ def _say(scope: Scope, word: str, where: str, obtained: str, detail: str, rests:
     if answered and answered != word:
         text = f"{scope.id_of('diaphragm')} is answered {answered}; found {word}, and that is used"
         flags.append(Flag(text, True, "originator"))
-    source = rule(where, obtained=obtained)
+    source, detail = rule(where, obtained=obtained), f"{detail}: {word}"
     return scope.state("diaphragm_found", word, "table", source, detail=detail, flags=flags, rests=rests)
 
 
@@ -225,7 +225,7 @@ def _own_ratio(scope: Scope, axis: int, direction: Scope) -> None:
         text = f"{scope.id_of(f'plan_{a}')} is {word} in this story, but {direction.id_of('H1a')} reads no"
         flags.append(Flag(text, True, "originator"))
     rests = (f"r_u{a}plus", f"r_u{a}minus")
-    detail = "larger of both shifts over the mean, with accidental torsion, A_x = 1"
+    detail = f"larger end over the mean of both, the worse shift, with accidental torsion, A_x = 1: {word}"
     source = rule("Table 12.3-1", obtained="found")
     scope.state(f"plan_{a}", word, "table", source, detail=detail, flags=flags, rests=rests)
 
@@ -292,8 +292,12 @@ def _design(scope: Scope, wanted: list[int], level: str) -> Handles:
     formulas = rules.V_DESIGN if len(wanted) == 2 else one
     made = Handles(scope.compute(formula) for formula in formulas)
     at = f" at level {level}" if level else ""
-    title = f"Largest forces in the elements{at}, torsion never subtracted"
-    scope.table("plan_design", title, [f"V_des{a}" for a in "xy"], head="Element")
+    for a, along in zip("xy", (0 in wanted, 1 in wanted), strict=True):
+        across = 1 - "xy".index(a) in wanted
+        columns = [f"V_dir{a}", f"V_i{a}plus", f"V_i{a}minus"] if along else []
+        columns += [f"Q_i{a}plus", f"Q_i{a}minus"] if across else []
+        title = f"Largest forces along {a.upper()} in the elements{at}, torsion never subtracted"
+        scope.table(f"plan_design_{a}", title, [*columns, f"V_des{a}"], head="Element")
     return made
 
 

@@ -56,7 +56,7 @@ def redundancy(scope: Scope) -> Handle:
 
 
 def _by_conditions(scope: Scope, stories: list[str]) -> Handle:
-    where = f"stories with over 35 % of V: {', '.join(stories)}"
+    where = f"stories with over 35 % of V are {', '.join(stories)}"
     readings = {"(a)": _removal(scope, stories), "(b)": _perimeter(scope, stories)}
     reasons = "; ".join(f"{name} {why}" for name, (_, why) in readings.items())
     met = [name for name, (holds, _) in readings.items() if holds]
@@ -88,15 +88,15 @@ def _removal(scope: Scope, stories: list[str]) -> Reading:
     if losses is not None:
         over = [story for story, loss in losses.items() if loss > LOSS]
         if over:
-            return False, f"not met: loss of strength over 33 % at {', '.join(over)}"
+            return False, f"not met, loss of strength over 33 % at {', '.join(over)}"
         if torsion is None:
-            return None, "open: losses not over 33 %; the answer removal_torsion is missing"
+            return None, "open, losses not over 33 % but the answer removal_torsion is missing"
         if torsion == "yes":
-            return False, "not met: removing an element makes severe torsional irregularity"
-        return True, "met: losses of strength not over 33 %, no severe torsional irregularity"
+            return False, "not met, removing an element makes severe torsional irregularity"
+        return True, "met, losses of strength not over 33 %, no severe torsional irregularity"
     answer = scope.word("removal_passes")
     if answer is None:
-        return None, "open: neither r_loss nor the answer removal_passes"
+        return None, "open, neither r_loss nor the answer removal_passes"
     return answer == "yes", "met, as answered" if answer == "yes" else "not met, as answered"
 
 
@@ -106,20 +106,20 @@ def _perimeter(scope: Scope, stories: list[str]) -> Reading:
     others = [part for part in scope.calc.parts.values() if part is not scope]
     found += [f"{part.id}.{name}" for part in others for name in PLAN_TYPES if part.word(f"{name}_found") == "yes"]
     if found:
-        return False, f"not met: irregular in plan by {', '.join(found)}"
+        return False, f"not met, irregular in plan by {', '.join(found)}"
     columns = [_by_story(scope, name, stories) for name in ("n_bay1", "n_bay2")]
     answer: bool | None = None
     if columns[0] is not None and columns[1] is not None:
         few = [story for story in stories if min(column[story] for column in columns if column is not None) < 2]
         if few:
-            return False, f"not met: fewer than two bays at {', '.join(few)}"
+            return False, f"not met, fewer than two bays at {', '.join(few)}"
         answer = True
     elif word := scope.word("perimeter_bays"):
         answer = word == "yes"
         if not answer:
             return False, "not met, as answered"
     if answer is None:
-        return None, "open: neither n_bay1 and n_bay2 nor the answer perimeter_bays"
+        return None, "open, neither n_bay1 and n_bay2 nor the answer perimeter_bays"
     if unknown:
-        return None, f"open: two bays on each side; answers {', '.join(unknown)} are missing"
-    return True, "met: regular in plan, two bays on each side"
+        return None, f"open, two bays on each side but answers {', '.join(unknown)} are missing"
+    return True, "met, regular in plan, two bays on each side"

@@ -88,7 +88,7 @@ _DRAWINGS = (
 
 def summaries(calc: Calc) -> list[Summary]:
     """The two tables of the first sheets, from the lines as they stand."""
-    parts: list[Scope] = [*calc.parts.values()] or [calc]
+    parts = _directions(calc)
     answer = [SummaryRow(label, *_row(parts, (name,))) for label, name in _ANSWER]
     governing = SummaryRow("Governing equation", *_governing(parts))
     answer.insert([name for _, name in _ANSWER].index("C_s") + 1, governing)
@@ -100,6 +100,13 @@ def summaries(calc: Calc) -> list[Summary]:
         Summary("answer", "Governing results", columns, head + answer),
         Summary("drawings", "Seismic data for the drawings", columns, drawings),
     ]
+
+
+def _directions(calc: Calc) -> list[Scope]:
+    """The parts that answer for a direction; those of one level in plan do not."""
+    parts: list[Scope] = [*calc.parts.values()]
+    answering = [part for part in parts if any(part.id_of(name) in calc.lines.entries for _, name in _ANSWER)]
+    return answering or parts or [calc]
 
 
 def _row(parts: list[Scope], names: tuple[str, ...]) -> tuple[list[str], list[str]]:
