@@ -13,6 +13,7 @@ from calckit.core.digits import COMPARED, carried, numeral
 from calckit.core.formula import Formula
 from calckit.core.handle import Handle, Handles
 from calckit.core.record import NOT_CHECKED, Flag, Source
+from calckit.core.scope import OPEN_ANSWER
 from calckit.errors import Fault, InputError
 from calckit.standards.asce7 import irregularity_rules as rules
 from calckit.standards.asce7.clauses import rule, rule_of
@@ -95,8 +96,16 @@ def _write(
     if answered and answered != word and not exempt:
         text = f"{scope.id_of(name)} is answered {answered}; the numbers say {word}, and they decide"
         flags.append(Flag(text, True, "originator"))
-    detail = f"{detail}: {word}"
-    return scope.state(f"{name}_found", word, "table", source, detail=detail, flags=flags, rests=rests)
+    return scope.state(
+        f"{name}_found", word, "table", source, detail=f"{detail}: {word}", flags=flags, rests=rests,
+        closes=question(scope, name),
+    )  # fmt: skip
+
+
+def question(scope: Scope, name: str) -> str:
+    """The line of a question that has no answer, which a result closes; blank if there is none."""
+    entry = scope.find(name)
+    return entry.line.id if entry and entry.line.value == OPEN_ANSWER else ""
 
 
 def _plan(scope: Scope) -> Source:
@@ -123,6 +132,12 @@ def _alike(scope: Scope, names: Sequence[str]) -> None:
 
 def end_displacements(scope: Scope) -> Handles:
     """Story drifts of the diaphragm ends and their ratio; A_x of each level where it is asked for."""
+    names = ("d_1plus", "d_2plus", "d_1minus", "d_2minus")
+    if not any(map(scope.find, names)):
+        title = "Torsional irregularity by the ends of the diaphragm"
+        missing = f"{', '.join(names)} (elastic displacements of both ends, both shifts of the mass)"
+        with scope.step():
+            return Handles([scope.verdict("ends", title, NOT_CHECKED, _plan(scope), missing=missing)])
     faults = [scope.missing(n) for n in ("d_1plus", "d_2plus") if scope.find(n) is None]
     faults += [scope.missing("SDC")] if scope.word("SDC") is None else []
     both = [scope.find(n) is not None for n in ("d_1minus", "d_2minus")]

@@ -13,6 +13,7 @@ from calckit.core.symbol import Symbol
 from calckit.standards.asce7.clauses import rule
 
 _YES_NO = ("yes", "no")
+_INCH_SET = (("kip", "in"), ("kN", "mm"))
 _SHIFTS = (("plus", "+"), ("minus", "−"))
 TYPES = ("H1a", "H1b", "H2", "H3", "V1a", "V1b", "V2", "V3", "V5a", "V5b")
 """Irregularities that numbers decide."""
@@ -89,7 +90,9 @@ SYMBOLS = (
 def _of_shifts(result: str, text: str, where: str, obtained: str) -> tuple[Formula, Formula]:
     """One declaration for both cases of accidental torsion; `{s}` stands for the case."""
     source = rule(where, obtained=obtained)
-    plus, minus = (Formula(result.format(s=case), text.format(s=case), source) for case, _ in _SHIFTS)
+    plus, minus = (
+        Formula(result.format(s=case), text.format(s=case), source, sets=_INCH_SET) for case, _ in _SHIFTS
+    )  # fmt: skip
     return plus, minus
 
 
@@ -100,25 +103,26 @@ D_MAX = D_MAX_PLUS, D_MAX_MINUS = _of_shifts("d_max{s}", "max(d_1{s}, d_2{s})", 
 D_AVG = D_AVG_PLUS, D_AVG_MINUS = _of_shifts("d_avg{s}", "(d_1{s} + d_2{s})/2", "12.8.4.3", "found")
 
 _A_X = rule("12.8.4.3", "12.8-14", "found")
-A_X = Formula("A_x", "min(max((d_maxplus/(1.2*d_avgplus))**2, (d_maxminus/(1.2*d_avgminus))**2, 1), 3)", _A_X)
-A_X_ONE_CASE = Formula("A_x", "min(max((d_maxplus/(1.2*d_avgplus))**2, 1), 3)", _A_X)
+A_X = Formula("A_x", "min(max((d_maxplus/(1.2*d_avgplus))**2, (d_maxminus/(1.2*d_avgminus))**2, 1), 3)", _A_X,
+              sets=_INCH_SET)  # fmt: skip
+A_X_ONE_CASE = Formula("A_x", "min(max((d_maxplus/(1.2*d_avgplus))**2, 1), 3)", _A_X, sets=_INCH_SET)
 
 R_PX = Formula("r_px", "p_x/L_x", rule("Table 12.3-1", obtained="found"))
 R_PY = Formula("r_py", "p_y/L_y", rule("Table 12.3-1", obtained="found"))
 R_OPEN = Formula("r_open", "A_open/A_gross", rule("Table 12.3-1", obtained="found"))
-R_KD = Formula("r_Kd", "below(K_d)/K_d", rule("Table 12.3-1", obtained="found"))
+R_KD = Formula("r_Kd", "below(K_d)/K_d", rule("Table 12.3-1", obtained="found"), sets=_INCH_SET)
 
 K_S = Formula(
-    "K_s", "V_x/(delta_xe - below(delta_xe))", rule("Table 12.3-2"), sets=(("kip", "in"), ("kN", "mm"))
+    "K_s", "V_x/(delta_xe - below(delta_xe))", rule("Table 12.3-2"), sets=_INCH_SET
 )  # fmt: skip
 K_1 = Formula("K_1", "below(K_s)", rule("Table 12.3-2"))
 K_2 = Formula("K_2", "below(K_1)", rule("Table 12.3-2"))
-R_K = Formula("r_K", "K_1/K_s", rule("Table 12.3-2"))
-R_K3 = Formula("r_K3", "below(K_2)/((K_s + K_1 + K_2)/3)", rule("Table 12.3-2"))
+R_K = Formula("r_K", "K_1/K_s", rule("Table 12.3-2"), sets=_INCH_SET)
+R_K3 = Formula("r_K3", "below(K_2)/((K_s + K_1 + K_2)/3)", rule("Table 12.3-2"), sets=_INCH_SET)
 R_W = Formula("r_w", "below(w_x)/w_x", rule("Table 12.3-2"))
 R_B = Formula("r_b", "below(b_s)/b_s", rule("Table 12.3-2"))
 R_VY = Formula("r_Vy", "below(V_ys)/V_ys", rule("Table 12.3-2"))
-Q_S = Formula("q_s", "Delta/h_sx", rule("12.3.2.2"))
+Q_S = Formula("q_s", "Delta/h_sx", rule("12.3.2.2"), sets=_INCH_SET)
 R_Q = Formula("r_q", "below(q_s)/q_s", rule("12.3.2.2"))
 
 R_VS = Formula("r_Vs", "V_x/V", rule("12.3.4.2"))

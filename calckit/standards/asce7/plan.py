@@ -16,7 +16,7 @@ from calckit.core.record import NOT_CHECKED, Flag
 from calckit.errors import Fault, InputError, ScopeError, UnknownNameError
 from calckit.standards.asce7 import plan_rules as rules
 from calckit.standards.asce7.clauses import rule
-from calckit.standards.asce7.irregularity import AMPLIFIED, NEW, diaphragm_class, edition, irregular, present
+from calckit.standards.asce7.irregularity import AMPLIFIED, NEW, diaphragm_class, edition, irregular, present, question
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -46,7 +46,8 @@ def _say(scope: Scope, word: str, where: str, obtained: str, detail: str, rests:
         text = f"{scope.id_of('diaphragm')} is answered {answered}; found {word}, and that is used"
         flags.append(Flag(text, True, "originator"))
     source, detail = rule(where, obtained=obtained), f"{detail}: {word}"
-    return scope.state("diaphragm_found", word, "table", source, detail=detail, flags=flags, rests=rests)
+    closes = question(scope, "diaphragm")
+    return scope.state("diaphragm_found", word, "table", source, detail=detail, flags=flags, rests=rests, closes=closes)
 
 
 def _by_calculation(scope: Scope) -> Handle:
@@ -159,7 +160,12 @@ def rigid(scope: Scope, level: str, along_x: str, along_y: str) -> Handles:
         for axis in wanted:
             if formula := taken[axis]:
                 scope.compute(formula)
-            _along(scope, axis, directions[axis], level)
+            _ends(scope, axis, directions[axis])
+        missing = {axis: _factor(scope, axis, directions[axis], level) for axis in wanted}
+        if any(missing.values()):
+            return Handles(_waits(scope, axis, text) for axis, text in missing.items() if text)
+        for axis in wanted:
+            _elements(scope, axis, level)
         return _design(scope, wanted, level)
 
 
@@ -186,16 +192,30 @@ def _outside(scope: Scope) -> list[Fault]:
     return faults
 
 
-def _along(scope: Scope, axis: int, id_: str, level: str) -> None:
-    """The lines of one direction: torsional moments, displacements of the ends, forces of both shifts, checks."""
-    a, c = rules.AXES[axis]
-    for formula in (rules.M_T, rules.M_TA, rules.U_1_PLUS, rules.U_2_PLUS, rules.R_U_PLUS, rules.U_1_MINUS,
-                    rules.U_2_MINUS, rules.R_U_MINUS):  # fmt: skip
+def _ends(scope: Scope, axis: int, id_: str) -> None:
+    """Torsional moments of one direction, relative displacements of the ends and what their ratio says."""
+    for formula in (
+        rules.M_T, rules.M_TA, rules.U_0, rules.U_1_PLUS, rules.U_2_PLUS, rules.R_U_PLUS, rules.U_1_MINUS,
+        rules.U_2_MINUS, rules.R_U_MINUS,
+    ):  # fmt: skip
         scope.compute(formula[axis])
     _own_ratio(scope, axis, _direction(scope, id_))
-    _factor(scope, axis, id_, level)
-    scope.compute(rules.V_DIRECT[axis])
-    for formula in (rules.M_P_PLUS, rules.M_P_MINUS, rules.V_I_PLUS, rules.V_I_MINUS, rules.Q_I_PLUS, rules.Q_I_MINUS):
+
+
+def _waits(scope: Scope, axis: int, missing: str) -> Handle:
+    """The forces of a direction for which the amplification of accidental torsion is not known."""
+    a = rules.AXES[axis][0]
+    title = f"Forces in the elements, force along {a.upper()}"
+    return scope.verdict(f"elements_{a}", title, NOT_CHECKED, rule("12.8.4.3", obtained="found"), missing=missing)
+
+
+def _elements(scope: Scope, axis: int, level: str) -> None:
+    """The forces of one direction in the elements, both shifts of the mass, and the checks of their sums."""
+    a, c = rules.AXES[axis]
+    for formula in (
+        rules.V_DIRECT, rules.M_P_PLUS, rules.M_P_MINUS, rules.V_I_PLUS, rules.V_I_MINUS, rules.Q_I_PLUS,
+        rules.Q_I_MINUS,
+    ):  # fmt: skip
         scope.compute(formula[axis])
     at = f" at level {level}" if level else ""
     columns = [f"k_i{a}", f"{c}_i", f"V_dir{a}", f"V_i{a}plus", f"V_i{a}minus"]
@@ -246,43 +266,42 @@ def _torsion_known(scope: Scope, axis: int, direction: Scope) -> tuple[bool | No
     return (some or severe) if severe else some, severe
 
 
-def _factor(scope: Scope, axis: int, id_: str, level: str) -> None:
-    """A_x of this level for forces along one axis, or why it is 1 or 0."""
+def _factor(scope: Scope, axis: int, id_: str, level: str) -> str:
+    """Write A_x of this level for forces along one axis, or why it is 1 or 0; gives what is missing, blank if nothing.
+
+    It comes from the ends of the whole structure; in a structure of one story the ends of the plan are those.
+    """
     a = rules.AXES[axis][0]
     name, direction, category = f"A_p{a}", _direction(scope, id_), scope.word("SDC") or ""
     if _typed(scope, name):
-        return
+        return ""
     some, severe = _torsion_known(scope, axis, direction)
-    flags = []
-    needed = severe if category == "B" else some if category in AMPLIFIED else False
+    source, flags = rule("12.8.4.3", "12.8-14", "found"), []
     rests = ("SDC", f"plan_{a}", f"accidental_{a}")
     if scope.word(f"accidental_{a}") == "omitted where permitted":
+        needed = severe if category == "B" else some if category in AMPLIFIED else False
         if needed is False and edition(scope) != NEW:
             detail = f"accidental torsion left out of the forces, design category {category}: 0"
-            scope.state(name, "0", "table", rule("12.8.4.2"), detail=detail, rests=rests)
-            return
+            scope.state(name, "0", "table", rule("12.8.4.2", obtained="found"), detail=detail, rests=rests)
+            return ""
         text = f"{scope.id_of(name)}: accidental torsion is not shown to be omissible, and is included"
         flags.append(Flag(text, True, "originator"))
-    source = rule("12.8.4.3", "12.8-14", "found")
     if category not in AMPLIFIED or some is False:
         reason = f"design category {category}" if category not in AMPLIFIED else "no torsional irregularity"
-        detail = f"{reason}, not amplified: 1"
-        scope.state(name, "1", "table", source, detail=detail, flags=flags, rests=rests)
-        return
-    if edition(scope) == NEW:
-        cure = f'supply it with given("{name}", ..., source=...)'
-        raise ScopeError(
-            f"{scope.id_of(name)}: how ASCE 7-22 amplifies accidental torsion is not known to the kit; {cure}"
-        )
-    if _single(scope):
-        scope.compute(rules.A_P[axis], flags=flags, detail="one story: relative displacements of the ends")
-        return
-    listed = f"{id_}.A_x" if id_ else "A_x"
+        scope.state(name, "1", "table", source, detail=f"{reason}, not amplified: 1", flags=flags, rests=rests)
+        return ""
     if some is None:
-        raise InputError("asce7.rigid_distribution", [direction.missing("H1a"), direction.missing("H1b")])
-    if scope.find(listed) is None:
-        raise InputError("asce7.rigid_distribution", [scope.missing(listed)])
-    scope.compute(Formula(name, f'level({listed}, "{level}")', source), flags=flags)
+        return f"{direction.id_of('H1a')}, {direction.id_of('H1b')}: paste the ends, or answer them"
+    if edition(scope) == NEW:
+        return f"{scope.id_of(name)}: how this edition amplifies accidental torsion is not known to the kit; give it"
+    listed = f"{id_}.A_x" if id_ else "A_x"
+    if _single(scope):
+        scope.compute(rules.A_P[axis], flags=flags, detail="one story, relative displacements of the ends")
+    elif scope.find(listed) is None:
+        return f"{listed}: supply it with asce7.end_displacements()"
+    else:
+        scope.compute(Formula(name, f'level({listed}, "{level}")', source), flags=flags)
+    return ""
 
 
 def _design(scope: Scope, wanted: list[int], level: str) -> Handles:

@@ -44,6 +44,7 @@ def _of_axis(a: str, c: str) -> tuple[Symbol, ...]:
         Symbol(f"M_t{a}", f"inherent torsional moment, force along {a}", "moment", sub=f"t,{a}"),
         Symbol(f"M_ta{a}", f"accidental torsional moment before amplification, force along {a}", "moment",
                sub=f"ta,{a}"),
+        Symbol(f"u_0{a}", f"relative displacement of the center of rigidity, force along {a}", "force", sub=f"0,{a}"),
         Symbol(f"plan_{a}", f"torsional irregularity of this story, force along {a}", "words",
                choices=("none", "over 1.2", "over 1.4")),
         Symbol(f"accidental_{a}", f"accidental torsion in the forces, force along {a}", "words",
@@ -98,7 +99,9 @@ SYMBOLS = (
     Symbol("T_chord", "chord force", "force", sub="chord"),
 )  # fmt: skip
 
-R_D_CLASS = Formula("r_d", "delta_md/delta_ave", rule("12.3.1.3", "12.3-1"))
+R_D_CLASS = Formula(
+    "r_d", "delta_md/delta_ave", rule("12.3.1.3", "12.3-1"), sets=(("kip", "in"), ("kN", "mm"))
+)  # fmt: skip
 
 
 def _of_axes(result: str, text: str, where: str = "12.8.4", **more: str) -> tuple[Formula, Formula]:
@@ -122,10 +125,11 @@ M_T = M_T_X, M_T_Y = _of_axes("M_t{a}", "V_p{a}*e_{c}", "12.8.4.1")
 M_TA = M_TA_X, M_TA_Y = _of_axes("M_ta{a}", "0.05*L_{c}*V_p{a}", "12.8.4.2")
 
 _PLUS, _MINUS = {"s": "plus", "sign": "+"}, {"s": "minus", "sign": "-"}
-_U_1 = ("u_1{a}{s}", "V_p{a}/K_p{a} - (M_t{a} {sign} M_ta{a})*{c}_R/J_R", "12.8.4.3")
+U_0 = U_0_X, U_0_Y = _of_axes("u_0{a}", "V_p{a}/K_p{a}", "12.8.4.3")
+_U_1 = ("u_1{a}{s}", "u_0{a} - (M_t{a} {sign} M_ta{a})*{c}_R/J_R", "12.8.4.3")
 U_1_PLUS = U_1_X_PLUS, U_1_Y_PLUS = _of_axes(*_U_1, **_PLUS)
 U_1_MINUS = U_1_X_MINUS, U_1_Y_MINUS = _of_axes(*_U_1, **_MINUS)
-_U_2 = ("u_2{a}{s}", "V_p{a}/K_p{a} + (M_t{a} {sign} M_ta{a})*(L_{c} - {c}_R)/J_R", "12.8.4.3")
+_U_2 = ("u_2{a}{s}", "u_0{a} + (M_t{a} {sign} M_ta{a})*(L_{c} - {c}_R)/J_R", "12.8.4.3")
 U_2_PLUS = U_2_X_PLUS, U_2_Y_PLUS = _of_axes(*_U_2, **_PLUS)
 U_2_MINUS = U_2_X_MINUS, U_2_Y_MINUS = _of_axes(*_U_2, **_MINUS)
 _R_U = ("r_u{a}{s}", "max(u_1{a}{s}, u_2{a}{s})/((u_1{a}{s} + u_2{a}{s})/2)", "12.8.4.3")

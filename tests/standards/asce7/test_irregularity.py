@@ -11,6 +11,7 @@ from typing import Any
 
 import pytest
 
+from calckit.core.assemble import assemble
 from calckit.core.calc import Calc
 from calckit.errors import InputError
 
@@ -170,14 +171,32 @@ def test_numbers_decide_over_an_answer_and_say_so() -> None:
     assert "H1a_found" in calc.lines.entries["procedure"].line.inputs
 
 
+def test_numbers_close_the_question() -> None:
+    calc = start()
+    calc.answers("H1a; not answered\nH1b; not answered\nH2; not answered")
+    ends(calc, [1.1], [0.9], ["R"])
+    calc.asce7.end_displacements()
+    items = [item.line for item in assemble(calc).open_items]
+    assert "H2" in items and not {"H1a", "H1b"} & set(items)
+
+
 def test_bad_ends_are_all_named() -> None:
-    with pytest.raises(InputError, match=r"(?s)d_1plus.*d_2plus"):
-        start().asce7.end_displacements()
+    calc = start()
+    paste(calc, "d_1minus [in]", ([1.0],), ["R"])
+    with pytest.raises(InputError, match=r"(?s)d_1plus.*d_2plus.*d_2minus"):
+        calc.asce7.end_displacements()
     calc = start()
     levels(calc)
     ends(calc, [1.0], [1.0], ["Top"])
     with pytest.raises(InputError, match=r"needed rows R, 3, 2, 1; given rows Top"):
         calc.asce7.end_displacements()
+
+
+def test_without_ends_torsion_is_not_checked() -> None:
+    calc = start()
+    calc.asce7.end_displacements()
+    line = calc.lines.entries["ends"].line
+    assert line.verdict == "NOT CHECKED" and "d_1plus" in line.missing
 
 
 # plan
