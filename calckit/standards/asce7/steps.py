@@ -52,17 +52,21 @@ class Steps:
     ([X.V1a_found = no], X.rho = 1.3)
     >>> p = calc.part("P2", "Level 2 in plan")
     >>> _ = p.answer("diaphragm_is", "concrete slab or filled deck", basis="3 in of concrete on deck")
-    >>> _ = p.givens("L_x, 60 ft, H-2\\nL_y, 40 ft, H-2\\nx_m, 30 ft, H-2\\ny_m, 20 ft, H-2\\nr_sd, 1.5, H-2")
-    >>> _ = p.rows("frames", '''frame, x_i [ft], y_i [ft], k_ix, k_iy
-    ... 1, 30, 0, 5, 0
-    ... 2, 30, 40, 5, 0
-    ... A, 0, 20, 0, 4
-    ... B, 60, 20, 0, 4''', source="H-2")
+    >>> _ = p.given("r_sd", 1.5, source="H-2")
     >>> p.asce7.diaphragm()
     P2.diaphragm_found = semirigid
     >>> _ = p.rows("model", "frame, V_ax [kip]\\n1, 40\\n2, 24.3", source="H-2")
     >>> p.asce7.pasted_distribution("2", along_x="X")
     [P2.sum_Vx = 64.30 kip]
+    >>> r = calc.part("P4", "Story below level 2 of the annex")
+    >>> _ = r.givens("L_x, 60 ft, H-2\\nL_y, 40 ft, H-2\\nx_m, 30 ft, H-2\\ny_m, 20 ft, H-2\\nA_px, 1.2, H-2")
+    >>> _ = r.rows("frames", '''frame, x_i [ft], y_i [ft], k_ix, k_iy
+    ... 1, 30, 0, 5, 0
+    ... 2, 30, 40, 4, 0
+    ... A, 0, 20, 0, 4
+    ... B, 60, 20, 0, 4''', source="H-2")
+    >>> r.asce7.rigid_distribution("2", along_x="X")
+    [P4.V_desx = 35.79, 31.01, 0.00, 0.00, P4.V_desy = 0.000, 0.000, 3.314, 3.314]
     >>> q = calc.part("P3", "Level 2 in plan, another floor")
     >>> _ = q.answer("diaphragm", "flexible", basis="bare deck")
     >>> _ = q.rows("lines", "line, b_i [ft]\\nA, 30\\nB, 30", source="H-2")
