@@ -290,7 +290,11 @@ def _exempt(scope: Scope) -> str:
         return "one story: the type is not considered"
     if count == 2 and category in ("B", "C", "D"):
         return f"two stories in design category {category}: the type is not considered"
-    if scope.word("drift_waiver") != "yes" or count < 3 or scope.find("Delta") is None:
+    if scope.word("drift_waiver") != "yes" or count < 3:
+        return ""
+    if scope.find("Delta") is None:
+        title, missing = "Types V1 and V2 by drift ratios", f"{scope.plain('Delta')} (story drift)"
+        scope.verdict("waiver", title, NOT_CHECKED, rule("12.3.2.2"), missing=missing)
         return ""
     scope.compute(rules.Q_S)
     scope.compute(rules.R_Q)

@@ -293,6 +293,11 @@ def test_waiver_by_drift_ratios_is_taken_only_where_it_is_asked_for_and_holds() 
     assert found(judged("yes", [1.0, 1.0, 1.0, 1.31]), "V1b") == "yes"
     assert found(judged("yes", [1.0, 1.0, 1.0, 1.3]), "V1b") == "no"
     assert found(judged("no", [1.0, 1.0, 1.0, 1.0]), "V1b") == "yes"
+    calc = start()
+    levels(calc)
+    calc.answer("drift_waiver", "yes", basis="demo")
+    calc.asce7.irregularities()
+    assert calc.lines.entries["waiver"].line.missing == "Δ (story drift)"
 
 
 @pytest.mark.parametrize(

@@ -72,8 +72,9 @@ def test_redundancy_by_answers_and_other_direction() -> None:
     y = calc.part("Y", "North-south")
     y.rows("ends", "level, d_1plus [in], d_2plus [in]\nR, 1.5, 0.5", source="P")
     y.asce7.end_displacements()
+    y.answer("H5", "yes", basis="demo")
     assert float(calc.asce7.redundancy()) == 1.3
-    assert "irregular in plan by Y.H1a, Y.H1b" in detail(calc, "rho")
+    assert "irregular in plan by Y.H1a, Y.H1b, Y.H5" in detail(calc, "rho")
 
 
 def test_redundancy_names_what_is_missing() -> None:
