@@ -195,8 +195,8 @@ def _outside(scope: Scope) -> list[Fault]:
 def _ends(scope: Scope, axis: int, id_: str) -> None:
     """Torsional moments of one direction, relative displacements of the ends and what their ratio says."""
     for formula in (
-        rules.M_T, rules.M_TA, rules.U_0, rules.U_1_PLUS, rules.U_2_PLUS, rules.R_U_PLUS, rules.U_1_MINUS,
-        rules.U_2_MINUS, rules.R_U_MINUS,
+        rules.M_T, rules.M_TA, rules.U_0, rules.M_1_PLUS, rules.U_1_PLUS, rules.U_2_PLUS, rules.R_U_PLUS,
+        rules.M_1_MINUS, rules.U_1_MINUS, rules.U_2_MINUS, rules.R_U_MINUS,
     ):  # fmt: skip
         scope.compute(formula[axis])
     _own_ratio(scope, axis, _direction(scope, id_))

@@ -61,6 +61,7 @@ def _of_axis(a: str, c: str) -> tuple[Symbol, ...]:
 def _of_case(a: str, c: str, name: str, sign: str) -> tuple[Symbol, ...]:
     case = case_name(a, c, sign)
     return (
+        Symbol(f"M_1{a}{name}", f"torsional moment: {case}, A_x = 1", "moment", sub=f"1,{a},{sign}"),
         Symbol(f"u_1{a}{name}", f"relative displacement of the end at {c} = 0: {case}, A_x = 1", "force",
                sub=f"1,{a},{sign}"),
         Symbol(f"u_2{a}{name}", f"relative displacement of the end at {c} = L_{c}: {case}, A_x = 1", "force",
@@ -126,10 +127,13 @@ M_TA = M_TA_X, M_TA_Y = _of_axes("M_ta{a}", "0.05*L_{c}*V_p{a}", "12.8.4.2")
 
 _PLUS, _MINUS = {"s": "plus", "sign": "+"}, {"s": "minus", "sign": "-"}
 U_0 = U_0_X, U_0_Y = _of_axes("u_0{a}", "V_p{a}/K_p{a}", "12.8.4.3")
-_U_1 = ("u_1{a}{s}", "u_0{a} - (M_t{a} {sign} M_ta{a})*{c}_R/J_R", "12.8.4.3")
+_M_1 = ("M_1{a}{s}", "M_t{a} {sign} M_ta{a}", "12.8.4.2")
+M_1_PLUS = M_1_X_PLUS, M_1_Y_PLUS = _of_axes(*_M_1, **_PLUS)
+M_1_MINUS = M_1_X_MINUS, M_1_Y_MINUS = _of_axes(*_M_1, **_MINUS)
+_U_1 = ("u_1{a}{s}", "u_0{a} - M_1{a}{s}*{c}_R/J_R", "12.8.4.3")
 U_1_PLUS = U_1_X_PLUS, U_1_Y_PLUS = _of_axes(*_U_1, **_PLUS)
 U_1_MINUS = U_1_X_MINUS, U_1_Y_MINUS = _of_axes(*_U_1, **_MINUS)
-_U_2 = ("u_2{a}{s}", "u_0{a} + (M_t{a} {sign} M_ta{a})*(L_{c} - {c}_R)/J_R", "12.8.4.3")
+_U_2 = ("u_2{a}{s}", "u_0{a} + M_1{a}{s}*(L_{c} - {c}_R)/J_R", "12.8.4.3")
 U_2_PLUS = U_2_X_PLUS, U_2_Y_PLUS = _of_axes(*_U_2, **_PLUS)
 U_2_MINUS = U_2_X_MINUS, U_2_Y_MINUS = _of_axes(*_U_2, **_MINUS)
 _R_U = ("r_u{a}{s}", "max(u_1{a}{s}, u_2{a}{s})/((u_1{a}{s} + u_2{a}{s})/2)", "12.8.4.3")
