@@ -96,8 +96,14 @@ MIXED = {
     "force": ("kip", "lb", "kN", "N"),
     "time": ("s", "ms", "s", "ms"),
     "moment": ("kip*ft", "lb*in", "kN*m", "N*mm"),
+    "area": ("ft**2", "in**2", "m**2", "mm**2"),
+    "stiffness": ("kip/in", "kip/ft", "kN/mm", "N/m"),
+    "line load": ("kip/ft", "plf", "kN/m", "N/mm"),
 }
 LISTS = {"w_x", "h_x", "h_sx", "wh_x", "C_vx", "F_x", "V_x", "delta_xe", "delta_x", "Delta", "P_x", "T_r"}
+LISTS |= {f"{d}{case}" for d in ("d_1", "d_2", "D_1", "D_2") for case in ("plus", "minus")}
+LISTS |= {"K_d", "K_s", "K_1", "K_2", "b_s", "V_ys", "q_s"}
+LISTS |= {"x_i", "y_i", "k_ix", "k_iy", "V_ax", "V_ay", "b_i", "L_s", "d_s", "V_dirx", "V_diry"}
 ROWS = ["Roof", "3", "2"]
 
 

@@ -221,14 +221,15 @@ class Scope:
     def state(
         self, symbol: str, raw: Any, kind: str, source: Source | None, *, text: str = "", detail: str = "",
         flags: Sequence[Flag] = (), rests: Sequence[str] = (), candidates: Sequence[Candidate] = (),
-        margin: Margin | None = None, formula: str | None = None,
+        margin: Margin | None = None, formula: str | None = None, closes: str = "",
     ) -> Handle:  # fmt: skip
-        """Write a line whose value stands as typed or as printed in a table."""
+        """Write a line whose value stands as typed or as printed in a table; it `closes` what a line left open."""
         declared = self.symbol(symbol)
         reading = self._read(declared, raw)
         assert reading is not None
         entry = self._stated(declared, reading, kind, source, text, detail, flags)
         entry.line.candidates, entry.line.margin, entry.line.formula = list(candidates), margin, formula
+        entry.line.closes = closes
         return self.write(entry, rests)
 
     def _stated(

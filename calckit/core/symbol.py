@@ -23,6 +23,7 @@ KINDS = {
     "moment": ("kip*ft", "kN*m"),
     "area": ("ft**2", "m**2"),
     "pressure": ("psf", "kPa"),
+    "stiffness": ("kip/in", "kN/mm"),
     "line load": ("lb/ft", "kN/m"),
     "load effect": ("kip", "kN"),
     "acceleration": ("ft/s**2", "m/s**2"),

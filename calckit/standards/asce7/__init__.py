@@ -15,12 +15,12 @@ FIELD_OF_USE = (
     "system factors, period, base shear, distribution over the height, story drift, stability; diaphragm and collector "
     "forces (12.10.1, 12.10.2), load effects and combinations (12.4, 2.3.6, 2.4.5), reactions at the base, structural "
     "walls out of plane and their anchorage (12.11.1, 12.11.2.1).",
-    "Irregularities, redundancy, diaphragm class, torsion and the contents of the seismic weight are the engineer's "
-    "answers; the kit does not compute them.",
+    "Irregularities, redundancy, the class of diaphragms, torsion and the distribution in plan follow from numbers "
+    "where they are given, else from the engineer's answers; what the seismic weight holds is the engineer's answer.",
     "Values and rules marked as to be confirmed were not read in the printed standard by the kit's authors.",
 )
 NOT_COVERED = (
-    "computed torsion, redundancy and irregularities; nonstructural components (chapter 13)",
+    "nonstructural components (chapter 13)",
     "the design of elements: collectors and chords, columns, walls, anchors, foundations; the further rules of 12.11.2 "
     "for anchorage in design categories C to F; the alternative diaphragm methods (12.10.3, 12.10.4); what is "
     "excepted for light frame in 12.10.2",
@@ -28,7 +28,6 @@ NOT_COVERED = (
     "the simplified method (12.14), nonbuilding structures (chapter 15), isolated and damped structures (chapters 17 "
     "and 18), existing buildings",
     "the limit on S_DS of 12.8.1.3, periods of masonry and concrete shear walls by eq. 12.8-9, combined systems",
-    "the waivers of vertical irregularities by drift ratio and number of stories: they belong to the engineer's answer",
     "local amendments, unless entered as overrides with their document",
 )
 

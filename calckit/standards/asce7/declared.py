@@ -13,13 +13,16 @@ from calckit.standards.asce7 import (
     base_reactions_rules,
     diaphragm_forces_rules,
     formulas,
+    irregularity_rules,
     load_effects_rules,
+    plan_rules,
     symbols,
     wall_forces_rules,
 )
 
 ROOMS: tuple[ModuleType, ...] = (
-    symbols, formulas, diaphragm_forces_rules, load_effects_rules, base_reactions_rules, wall_forces_rules,
+    symbols, formulas, irregularity_rules, plan_rules, diaphragm_forces_rules, load_effects_rules,
+    base_reactions_rules, wall_forces_rules,
 )  # fmt: skip
 """Modules with declarations: a tuple SYMBOLS, formulas by their Python names."""
 

@@ -16,6 +16,7 @@ from calckit.errors import InputError, ScopeError
 from calckit.standards.asce7 import formulas
 from calckit.standards.asce7.clauses import rule
 from calckit.standards.asce7.hazard import PACKAGE, site_class, study
+from calckit.standards.asce7.irregularity import present
 from calckit.standards.asce7.structure import system_row
 
 if TYPE_CHECKING:
@@ -204,8 +205,7 @@ def _divided_by_rho(scope: Scope) -> bool:
 def _edge_flags(scope: Scope) -> list[Flag]:
     if (scope.word("SDC") or "") not in ("C", "D", "E", "F"):
         return []
-    answers = {name: scope.word(name) for name in ("H1a", "H1b")}
-    if "yes" in answers.values():
+    if present(scope, ("H1a", "H1b"))[0]:
         return [
             Flag(
                 "torsional irregularity: drift is to be taken along the edges (12.12.1), not at the centers of mass",

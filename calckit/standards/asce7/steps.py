@@ -14,7 +14,10 @@ from calckit.standards.asce7 import (
     diaphragm_forces,
     forces,
     hazard,
+    irregularity,
     load_effects,
+    plan,
+    redundancy,
     structure,
     wall_forces,
 )
@@ -53,11 +56,39 @@ class Steps:
     X.M_x = 556, 1520
     >>> x.asce7.procedure(), x.asce7.drift(), x.asce7.stability()
     (X.procedure = OK, X.drift = NOT CHECKED, X.stability = NOT CHECKED)
-    >>> _ = x.givens("w_px_basis, w_x, H-2\\ndiaphragm_material, concrete on steel deck, H-2\\nrho, 1.0, H-2")
+    >>> _ = x.rows("ends", "level, d_1plus [in], d_2plus [in]\\nRoof, 0.9, 0.6\\n2, 0.4, 0.3", source="H-2")
+    >>> x.asce7.end_displacements()[2:]
+    [X.r_Dplus = 1.250, 1.143, X.H1a_found = yes, X.H1b_found = no, X.A_x = 1.000, 1.000]
+    >>> x.asce7.irregularities()[:1], x.asce7.redundancy()
+    ([X.V1a_found = no], X.rho = 1.3)
+    >>> p = calc.part("P2", "Level 2 in plan")
+    >>> _ = p.answer("diaphragm_is", "concrete slab or filled deck", basis="3 in of concrete on deck")
+    >>> _ = p.given("r_sd", 1.5, source="H-2")
+    >>> p.asce7.diaphragm()
+    P2.diaphragm_found = semirigid
+    >>> _ = p.rows("model", "frame, V_ax [kip]\\n1, 40\\n2, 24.3", source="H-2")
+    >>> p.asce7.pasted_distribution("2", along_x="X")
+    [P2.sum_Vx = 64.30 kip]
+    >>> r = calc.part("P4", "Story below level 2 of the annex")
+    >>> _ = r.givens("L_x, 60 ft, H-2\\nL_y, 40 ft, H-2\\nx_m, 30 ft, H-2\\ny_m, 20 ft, H-2\\nA_px, 1.2, H-2")
+    >>> _ = r.rows("frames", '''frame, x_i [ft], y_i [ft], k_ix, k_iy
+    ... 1, 30, 0, 5, 0
+    ... 2, 30, 40, 4, 0
+    ... A, 0, 20, 0, 4
+    ... B, 60, 20, 0, 4''', source="H-2")
+    >>> r.asce7.rigid_distribution("2", along_x="X")
+    [P4.V_desx = 35.79, 31.01, 0.00, 0.00, P4.V_desy = 0.000, 0.000, 3.314, 3.314]
+    >>> q = calc.part("P3", "Level 2 in plan, another floor")
+    >>> _ = q.answer("diaphragm", "flexible", basis="bare deck")
+    >>> _ = q.rows("lines", "line, b_i [ft]\\nA, 30\\nB, 30", source="H-2")
+    >>> _ = q.rows("spans", "span, L_s [ft], d_s [ft]\\nA to B, 60, 40", source="H-2")
+    >>> q.asce7.flexible_distribution("2", direction="X")[-1]
+    P3.T_chord = 5.100
+    >>> _ = x.givens("w_px_basis, w_x, H-2\\ndiaphragm_material, concrete on steel deck, H-2")
     >>> x.asce7.diaphragm_forces()
     X.F_px = 37.06, 45.86
     >>> x.asce7.load_effects()[:3], x.asce7.base_reactions()[0]
-    ([X.r_Ev = 0.1008, X.c_D6 = 1.301, X.c_D7 = 0.7992], X.V_h = 64.26 kip)
+    ([X.r_Ev = 0.1008, X.c_D6 = 1.301, X.c_D7 = 0.7992], X.V_h = 83.54 kip)
     >>> _ = x.givens("D, 120 kip, H-2\\nL, 40 kip, H-2\\nS, 0 kip, H-2\\nQ_E, 85 kip, H-2\\nload_method, strength, H-2")
     >>> x.asce7.load_combinations()
     X.U_min = 10.90 kip
@@ -130,6 +161,50 @@ class Steps:
     def stability(self) -> Handle:
         """theta and theta_max (12.8.7) and the check of each story."""
         return forces.stability(self._scope)
+
+    # chapter 12, the structure in plan
+    def end_displacements(self) -> Handles:
+        """Drifts of the diaphragm ends, types H1a and H1b (Table 12.3-1), A_x of each level (12.8-14) where asked for.
+
+        From d_1plus, d_2plus, d_1minus, d_2minus: elastic displacements of both ends at each level, accidental torsion
+        included with A_x = 1, the mass shifted toward either side.
+        """
+        return irregularity.end_displacements(self._scope)
+
+    def irregularities(self) -> Handles:
+        """Each type that numbers decide (12.3.2), and what irregularities bring (12.3.3, 12.7.3); after the ends.
+
+        Takes what is there of: p_x, p_y with L_x, L_y; A_open with A_gross; the lists K_d, K_s
+        (else V_x and delta_xe), w_x, b_s, V_ys over the levels; and the answers for the other types.
+        """
+        return irregularity.irregularities(self._scope)
+
+    def redundancy(self) -> Handle:
+        """rho of the direction with its reasons (12.3.4), from r_loss, n_bay1, n_bay2 by story or the answers."""
+        return redundancy.redundancy(self._scope)
+
+    def diaphragm(self) -> Handle:
+        """The class of the diaphragm (12.3.1): from delta_md and delta_ave, else from diaphragm_is and r_sd."""
+        return plan.classify(self._scope)
+
+    def rigid_distribution(self, level: str = "", along_x: str = "", along_y: str = "") -> Handles:
+        """Forces in the elements under a rigid diaphragm with both kinds of torsion (12.8.4), one level at a time.
+
+        From x_i, y_i, k_ix, k_iy of the elements, x_m, y_m, L_x, L_y. The force is the story shear V_x of the part
+        named for each axis at `level`, or V_px, V_py as typed.
+        """
+        return plan.rigid(self._scope, level, along_x, along_y)
+
+    def flexible_distribution(self, level: str = "", direction: str = "") -> Handles:
+        """Forces of lines by tributary width b_i, shear and chord force of simple spans L_s of depth d_s.
+
+        The forces are V_x and F_px (else F_x) of the part named `direction` at `level`, or V_p and F_d as typed.
+        """
+        return plan.flexible(self._scope, level, direction)
+
+    def pasted_distribution(self, level: str = "", along_x: str = "", along_y: str = "") -> Handles:
+        """Forces V_ax, V_ay of an analysis with a semirigid diaphragm, their sums against the story shear."""
+        return plan.pasted(self._scope, level, along_x, along_y)
 
     # chapter 12, load effects, diaphragms, base, walls
     def diaphragm_forces(self) -> Handle:

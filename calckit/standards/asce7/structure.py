@@ -17,16 +17,17 @@ from calckit.errors import Fault, InputError, ScopeError, nearest_first
 from calckit.standards.asce7 import formulas
 from calckit.standards.asce7.clauses import rule
 from calckit.standards.asce7.hazard import PACKAGE, study
+from calckit.standards.asce7.irregularity import NEW, NUMBERED, edition, present
+from calckit.standards.asce7.irregularity_rules import TYPES
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
 
-IRREGULARITIES = ("H1a", "H1b", "H2", "H3", "H4", "H5", "V1a", "V1b", "V2", "V3", "V4", "V5a", "V5b")
 TOLERATED = {"H2", "H3", "H4", "H5", "V4", "V5a", "V5b"}
 """Irregularities with which equivalent lateral forces stay permitted up to 160 ft (Table 12.6-1)."""
 PROHIBITED = {"D": {"V5b"}, "E": {"H1b", "V1b", "V5a", "V5b"}, "F": {"H1b", "V1b", "V5a", "V5b"}}
 """Irregularities that 12.3.3.1 prohibits, by design category."""
-RESTS = ("SDC", "risk_category", "system", "h_n", "h_x", "T", "T_S", *IRREGULARITIES)
+RESTS = ("SDC", "risk_category", "system", "h_n", "h_x", "T", "T_S", *NUMBERED, *(f"{name}_found" for name in TYPES))
 """What the permitted procedure rests on."""
 
 
@@ -213,27 +214,34 @@ def procedure(scope: Scope) -> Handle:
         return made
 
 
-def _answered(scope: Scope) -> tuple[set[str], list[str]]:
-    words = {name: scope.word(name) for name in IRREGULARITIES}
-    return {n for n, word in words.items() if word == "yes"}, [n for n, word in words.items() if word is None]
-
-
 def _prohibited(scope: Scope) -> tuple[str, str, str]:
     category = scope.word("SDC")
     if category is None:
         return NOT_CHECKED, "", "SDC (seismic design category)"
     wanted = PROHIBITED.get(category, set())
-    present, unanswered = _answered(scope)
-    if found := sorted(wanted & present):
+    there, unanswered = present(scope, NUMBERED)
+    if found := sorted(wanted & set(there)):
         return NOT_OK, f"{', '.join(found)} is prohibited in design category {category}", ""
     if waiting := sorted(wanted & set(unanswered)):
         return NOT_CHECKED, "", f"answers {', '.join(waiting)}"
-    if category in ("B", "C") and "V5b" in present:
-        return NOT_CHECKED, "", "the limits of 12.3.3.2 for type V5b (two stories or 30 ft)"
+    if category in ("B", "C") and "V5b" in there:
+        return _weak_story(scope, category)
     return OK, f"design category {category}: none of {', '.join(sorted(wanted)) or 'the types'} present", ""
 
 
+def _weak_story(scope: Scope, category: str) -> tuple[str, str, str]:
+    """Type V5b in categories B and C (12.3.3.2): low structures, or a weak story with overstrength."""
+    levels, h_n = scope.find("h_x"), scope.number("h_n", "ft")
+    if levels is None or h_n is None:
+        return NOT_CHECKED, "", "levels and h_n, for the limits of 12.3.3.2 on type V5b"
+    if len(levels.line.rows) <= 2 and h_n <= 30:
+        return OK, f"design category {category}, V5b: not over two stories and 30 ft (12.3.3.2)", ""
+    return NOT_CHECKED, "", "that the weak story (V5b) carries Omega_0 times the force (12.3.3.2)"
+
+
 def _table_12_6_1(scope: Scope) -> tuple[str, str, str]:
+    if edition(scope) == NEW:
+        return NOT_CHECKED, "", "the rule of ASCE 7-22 on permitted procedures, which is not known to the kit"
     category, risk = scope.word("SDC"), scope.word("risk_category")
     levels, h_n = scope.find("h_x"), scope.number("h_n", "ft")
     if category is None or levels is None or h_n is None:
@@ -244,13 +252,13 @@ def _table_12_6_1(scope: Scope) -> tuple[str, str, str]:
         return OK, f"risk category {risk}, not more than two stories", ""
     if "light frame" in (scope.word("system") or ""):
         return OK, "light frame construction", ""
-    present, unanswered = _answered(scope)
+    there, unanswered = present(scope, NUMBERED)
     if unanswered:
         return NOT_CHECKED, "", f"answers {', '.join(unanswered)}"
-    if h_n <= 160 and present <= TOLERATED:
-        return OK, f"h_n not above 160 ft, irregularities: {', '.join(sorted(present)) or 'none'}", ""
-    if present:
-        listed = ", ".join(sorted(present))
+    if h_n <= 160 and set(there) <= TOLERATED:
+        return OK, f"h_n not above 160 ft, irregularities: {', '.join(there) or 'none'}", ""
+    if there:
+        listed = ", ".join(there)
         return NOT_OK, f"design category {category} with irregularities {listed} and h_n = {h_n:g} ft", ""
     return _long_period(scope, category, h_n)
 

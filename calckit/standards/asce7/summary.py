@@ -38,6 +38,17 @@ SUPPLIERS = {
     "h_sx": "levels(...)",
     "delta_xe": "levels(...), column X.delta_xe",
     "P_x": "levels(...), column P_x",
+    "A_x": "asce7.end_displacements()",
+    "rho": "asce7.redundancy()",
+    **dict.fromkeys(("d_1plus", "d_2plus", "d_1minus", "d_2minus"), "rows(...), a row for each level"),
+    **dict.fromkeys(("x_i", "y_i", "k_ix", "k_iy"), "rows(...), a row for each element"),
+    "b_i": "rows(...), a row for each line",
+    **dict.fromkeys(("L_s", "d_s"), "rows(...), a row for each span"),
+    **dict.fromkeys(("V_ax", "V_ay"), "rows(...), a row for each element"),
+    "V_px": 'along_x="..." (the part with its V_x), or given("V_px", ...)',
+    "V_py": 'along_y="..." (the part with its V_x), or given("V_py", ...)',
+    **dict.fromkeys(("V_p", "F_d"), 'direction="..." (the part with its forces), or given(...)'),
+    **dict.fromkeys(("diaphragm_is", "H1a", "H1b"), "answer(...)"),
 }
 """What supplies a symbol that is missing."""
 
@@ -82,7 +93,7 @@ _DRAWINGS = (
 
 def summaries(calc: Calc) -> list[Summary]:
     """The two tables of the first sheets, from the lines as they stand."""
-    parts: list[Scope] = [*calc.parts.values()] or [calc]
+    parts = _directions(calc)
     answer = [SummaryRow(label, *_row(parts, (name,))) for label, name in _ANSWER]
     governing = SummaryRow("Governing equation", *_governing(parts))
     answer.insert([name for _, name in _ANSWER].index("C_s") + 1, governing)
@@ -94,6 +105,13 @@ def summaries(calc: Calc) -> list[Summary]:
         Summary("answer", "Governing results", columns, head + answer),
         Summary("drawings", "Seismic data for the drawings", columns, drawings),
     ]
+
+
+def _directions(calc: Calc) -> list[Scope]:
+    """The parts that answer for a direction; those of one level in plan do not."""
+    parts: list[Scope] = [*calc.parts.values()]
+    answering = [part for part in parts if any(part.id_of(name) in calc.lines.entries for _, name in _ANSWER)]
+    return answering or parts or [calc]
 
 
 def _row(parts: list[Scope], names: tuple[str, ...]) -> tuple[list[str], list[str]]:
