@@ -13,8 +13,8 @@ from calckit.standards.asce7.summary import SUPPLIERS, summaries
 FIELD_OF_USE = (
     "Equivalent lateral forces of ASCE/SEI 7, chapters 11 and 12, for buildings: design ordinates, design category, "
     "system factors, period, base shear, distribution over the height, story drift, stability.",
-    "Irregularities, redundancy, diaphragm class, torsion and the contents of the seismic weight are the engineer's "
-    "answers; the kit does not compute them.",
+    "Irregularities, redundancy, diaphragm class, torsion and, without a take-off, the contents of the seismic weight "
+    "are the engineer's answers; the kit does not compute them.",
     "Values and rules marked as to be confirmed were not read in the printed standard by the kit's authors.",
 )
 NOT_COVERED = (
@@ -23,7 +23,7 @@ NOT_COVERED = (
     "modal and response history analysis (12.9, chapter 16); soil-structure interaction (chapter 19)",
     "the simplified method (12.14), nonbuilding structures (chapter 15), isolated and damped structures (chapters 17 "
     "and 18), existing buildings",
-    "the limit on S_DS of 12.8.1.3, periods of masonry and concrete shear walls by eq. 12.8-9, combined systems",
+    "the limit on S_DS of 12.8.1.3, combined systems",
     "the waivers of vertical irregularities by drift ratio and number of stories: they belong to the engineer's answer",
     "local amendments, unless entered as overrides with their document",
 )

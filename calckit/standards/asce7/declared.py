@@ -9,9 +9,9 @@ from types import ModuleType
 
 from calckit.core.formula import Formula
 from calckit.core.symbol import Symbol
-from calckit.standards.asce7 import formulas, symbols
+from calckit.standards.asce7 import formulas, model_rules, structure_rules, symbols, weight_rules
 
-ROOMS: tuple[ModuleType, ...] = (symbols, formulas)
+ROOMS: tuple[ModuleType, ...] = (symbols, formulas, structure_rules, model_rules, weight_rules)
 """Modules with declarations: a tuple SYMBOLS, formulas by their Python names."""
 
 SYMBOLS: dict[str, Symbol] = {

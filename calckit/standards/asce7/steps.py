@@ -9,7 +9,7 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING, Any
 
 from calckit.core.handle import Handle, Handles
-from calckit.standards.asce7 import forces, hazard, structure
+from calckit.standards.asce7 import forces, hazard, model, structure, systems, weight
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -45,6 +45,15 @@ class Steps:
     X.M_x = 556, 1520
     >>> x.asce7.procedure(), x.asce7.drift(), x.asce7.stability()
     (X.procedure = OK, X.drift = NOT CHECKED, X.stability = NOT CHECKED)
+    >>> _ = x.givens("delta_eM, 0.4 in, H-2\\nd_gap, 3 in, H-2")
+    >>> x.asce7.analysis_model(), x.asce7.separation()
+    (X.model_shear = NOT CHECKED, X.separation = 0.667)
+    >>> other = Calc(project="Demo", number="D-2", standard="ASCE 7-16")
+    >>> other.document("S-1", title="Take-off")
+    >>> _ = other.levels("level, h_x [ft]\\nRoof, 30\\n2, 15", source="S-1")
+    >>> areas = "level, area, A_u [ft**2], q_D [psf], q_P [psf]\\nRoof, deck, 9000, 25, 0\\n2, slab, 9000, 60, 8"
+    >>> other.asce7.weight_take_off(areas, source="S-1")
+    w_x = 225.0, 630.0
     """
 
     def __init__(self, scope: Scope) -> None:
@@ -75,16 +84,30 @@ class Steps:
         return hazard.design_category(self._scope)
 
     # chapter 12, the structure
+    def weight_take_off(self, text: str, source: str) -> Handle:
+        """w_x (12.7.2) from a pasted table, or "@file.csv": level, kind of area, A_u, q_D, q_P, q_L, p_f, W_e, W_d.
+
+        Areas, dead load, partitions, storage live load, snow of the flat roof, equipment, other dead load; all but the
+        first two columns may be left out. `levels` come before it, without w_x. Answer: storage_share.
+        """
+        return weight.weight_take_off(self._scope, text, source)
+
     def seismic_weight(self) -> Handle:
         """W (12.7.2), the sum of w_x."""
         return structure.seismic_weight(self._scope)
 
     def system(self) -> Handles:
-        """R, Omega_0, C_d (Table 12.2-1) and whether system and height are permitted, from the part's system."""
-        return structure.system(self._scope)
+        """R, Omega_0, C_d (Table 12.2-1) and whether system and height are permitted, from the part's system.
+
+        Answers: Omega_0_less (flexible diaphragms), height_rule (12.2.5.4, one story).
+        """
+        return systems.system(self._scope)
 
     def approximate_period(self, **typed: Any) -> Handle:
-        """T_a (12.8.2.1), by Table 12.8-2 or 0.1 N; an operand typed here (`h_n="70 ft"`) is flagged."""
+        """T_a (12.8.2.1) by T_a_method: Table 12.8-2, 0.1 N, or walls pasted with `rows` (D_i, t_i) and A_B.
+
+        An operand typed here (`h_n="70 ft"`) is flagged.
+        """
         return structure.approximate_period(self._scope, typed)
 
     def period(self) -> Handle:
@@ -104,6 +127,13 @@ class Steps:
         """k, C_vx, F_x, V_x, M_x over the height (12.8.3 to 12.8.5), with the check of their sum."""
         return forces.vertical_distribution(self._scope)
 
+    def analysis_model(self) -> Handle:
+        """V_drift by the answer drift_relief (12.8.6), and the model of `analysis` against V_drift or V, and W.
+
+        Writes the scaled displacements where the model was run with V.
+        """
+        return model.analysis_model(self._scope)
+
     def drift(self) -> Handle:
         """delta_x, Delta and Delta_a (12.8.6, 12.12.1) and the check of each story."""
         return forces.drift(self._scope)
@@ -111,3 +141,7 @@ class Steps:
     def stability(self) -> Handle:
         """theta and theta_max (12.8.7) and the check of each story."""
         return forces.stability(self._scope)
+
+    def separation(self) -> Handle:
+        """delta_M, delta_MT (12.12.3) and their check, from delta_eM, delta_M2 of a neighbor, and d_gap."""
+        return model.separation(self._scope)

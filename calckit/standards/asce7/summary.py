@@ -28,11 +28,16 @@ SUPPLIERS = {
     "C_s": "asce7.base_shear()",
     "V_x": "asce7.vertical_distribution()",
     "Delta": "asce7.drift()",
-    "w_x": "levels(...)",
+    "w_x": "levels(...), or asce7.weight_take_off(...)",
     "h_x": "levels(...)",
     "h_sx": "levels(...)",
     "delta_xe": "levels(...), column X.delta_xe",
     "P_x": "levels(...), column P_x",
+    "V_applied": "analysis(V_applied=...)",
+    "W_model": "analysis(W_model=...)",
+    "V_drift": "asce7.analysis_model()",
+    "D_i": 'rows("walls", ...), column D_i',
+    "t_i": 'rows("walls", ...), column t_i',
 }
 """What supplies a symbol that is missing."""
 

@@ -32,7 +32,8 @@ def clauses(obtained: str) -> list[str]:
 def in_use() -> Iterator[tuple[str, str]]:
     """Every clause or table of the kit with its word."""
     for formula in FORMULAS.values():
-        yield formula.source.where, formula.source.obtained
+        if formula.source.standard:  # statics needs no copy of the standard
+            yield formula.source.where, formula.source.obtained
     for path in (resources.files(PACKAGE) / "tables").iterdir():
         table = load(PACKAGE, path.name.removesuffix(".csv"))
         for key in table.rows:
