@@ -97,7 +97,7 @@ MIXED = {
     "time": ("s", "ms", "s", "ms"),
     "moment": ("kip*ft", "lb*in", "kN*m", "N*mm"),
 }
-LISTS = {"w_x", "h_x", "h_sx", "wh_x", "C_vx", "F_x", "V_x", "delta_xe", "delta_x", "Delta", "P_x", "T_r"}
+LISTS = {"w_x", "h_x", "h_sx", "wh_x", "C_vx", "F_x", "V_x", "delta_xe", "delta_x", "Delta", "P_x", "T_r", "A_ei"}
 ROWS = ["Roof", "3", "2"]
 
 
@@ -160,7 +160,7 @@ def degrees(expr: sympy.Expr, scales: dict[sympy.Symbol, sympy.Expr]) -> sympy.E
         for _, condition in expr.args:
             sides = {degrees(side, scales) for side in condition.args} if condition != sympy.true else {1}
             assert len(sides) == 1, f"{condition}: sides of unlike kind"
-        factors = {degrees(value, scales) for value, _ in expr.args}
+        factors = {degrees(value, scales) for value, _ in expr.args if value != 0}  # nothing is of every kind
         assert len(factors) == 1, f"{expr}: branches of unlike kind {factors}"
         return factors.pop()
     extended = dict(scales)

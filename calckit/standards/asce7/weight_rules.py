@@ -46,10 +46,7 @@ SYMBOLS = (
     Symbol("w_s", "share of the storage live load at level x", "force", sub="x,s"),
 )  # fmt: skip
 
-PARTITIONS = Formula(
-    "q_Pe", "max(q_P, q_Pmin) if q_P > 0 else 0", _CLAUSE,
-    units=dict.fromkeys(("q_Pe", "q_P", "q_Pmin"), ("psf", "kPa")),
-)  # fmt: skip
+PARTITIONS = Formula("q_Pe", "max(q_P, q_Pmin) if q_P > 0*q_Pmin else q_P", _CLAUSE)
 SNOW = Formula("q_Se", "(r_S if p_f > p_flim else 0)*p_f", _CLAUSE)
 W_X_COUNTED = Formula("w_x", "w_0 + w_s", _CLAUSE)
 W_X_LEFT_OUT = Formula("w_x", "w_0 + w_s if w_s > 0.05*w_0 else w_0", _CLAUSE)
@@ -85,8 +82,7 @@ def of_kind(formula: Formula, kind: int) -> Formula:
     def renamed(text: str) -> str:
         return re.sub(r"\w+", lambda word: numbered(word[0], kind) if word[0] in own else word[0], text)
 
-    units = {renamed(name): pair for name, pair in formula.units.items()} if formula.units else None
-    return Formula(renamed(formula.result), renamed(formula.text), formula.source, units=units)
+    return Formula(renamed(formula.result), renamed(formula.text), formula.source)
 
 
 def weight_of(columns: Collection[str]) -> Formula:
