@@ -401,8 +401,8 @@ class Writer(Scope):
             for name, raw in named:
                 symbol = self.symbol(name)
                 reading, was_set = self._in_force(symbol, raw)
-                detail = "set at issue" if was_set else ""
-                made.append(self.write(self._stated(symbol, reading, "given", origin, text, detail)))
+                detail, facts_of = "set at issue" if was_set else "", "" if symbol.kind == "words" else text
+                made.append(self.write(self._stated(symbol, reading, "given", origin, facts_of, detail)))
             return made
 
     def confirm(self, what: str, document: str, by: str, date: str) -> None:

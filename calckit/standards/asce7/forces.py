@@ -208,10 +208,17 @@ def drift(scope: Scope) -> Handle:
             ["delta_xs" if scaled else "delta_xe", "delta_x", "Delta", "h_sx", "Delta_a"],
             head="Story below",
         )
-        made = scope.require(
-            "Delta <= Delta_a", title=title, source=rule("12.12.1"), id_="drift", flags=_edge_flags(scope)
-        )
+        flags = [*_edge_flags(scope), *_relief_flags(scope)]
+        made = scope.require("Delta <= Delta_a", title=title, source=rule("12.12.1"), id_="drift", flags=flags)
         return put_on_check(made, "Δ", "the allowable story drift")
+
+
+def _relief_flags(scope: Scope) -> list[Flag]:
+    """What is open where a relief was answered and V_drift was never worked."""
+    if (scope.word("drift_relief") or "none") == "none" or scope.number("V_drift") is not None:
+        return []
+    text = f"{scope.id_of('drift_relief')} has no effect: asce7.analysis_model() was not run above"
+    return [Flag(text, True, "originator")]
 
 
 def _renamed_flags(scope: Scope) -> list[Flag]:

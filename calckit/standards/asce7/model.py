@@ -38,7 +38,7 @@ def analysis_model(scope: Scope) -> Handle:
 
 
 def _shear_for_drift(scope: Scope) -> Handle:
-    """V_drift: V itself without a relief; with one, C_s without eq. 12.8-5, and with it without the cap on T."""
+    """V_drift: V itself without a relief; with one, C_s without its floor, and with it without the cap on T."""
     relief = scope.word("drift_relief") or "none"
     if relief == "none":
         return scope.compute(rules.V_DRIFT_PLAIN, detail="no relief taken for drift", rests=("drift_relief",))
@@ -53,7 +53,7 @@ def _shear_for_drift(scope: Scope) -> Handle:
     plain, increased = upper(cap, f"1.5*{cap}" if beyond else "")
     reading = study(scope.calc).reading
     text = increased if reading in ("both", "exception 2") else plain
-    detail = "eq. 12.8-5 left out for drift"
+    detail = "the lower limit by S_DS left out for drift"
     if (scope.number("S_1") or 0.0) >= 0.6:
         text, detail = f"max({text}, C_sfloor1)", f"{detail}; the lower limit by S_1 stays"
     if reading == "both":

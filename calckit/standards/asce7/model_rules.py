@@ -15,8 +15,8 @@ AGREEMENT = Source("common practice, no source: model and calculation agree with
 
 SYMBOLS = (
     Symbol("with_P_delta", "the analysis model includes P-delta effects", "words", choices=("yes", "no")),
-    Symbol("drift_relief", "relief of the base shear for drift: eq. 12.8-5 left out (floor), and no upper limit on the "
-           "period (floor and period)", "words", choices=("none", "floor", "floor and period")),
+    Symbol("drift_relief", "relief of the base shear for drift: the lower limit of C_s by S_DS left out (floor), and "
+           "no upper limit on the period (floor and period)", "words", choices=("none", "floor", "floor and period")),
     Symbol("C_scapdrift", "seismic response coefficient for drift, upper limit", sub="s,cap,drift", low=0,
            low_open=True, high=50),
     Symbol("C_sdrift", "seismic response coefficient for drift", sub="s,drift", low=0, low_open=True, high=5),

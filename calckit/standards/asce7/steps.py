@@ -54,6 +54,8 @@ class Steps:
     >>> areas = "level, area, A_u [ft**2], q_D [psf], q_P [psf]\\nRoof, deck, 9000, 25, 0\\n2, slab, 9000, 60, 8"
     >>> other.asce7.weight_take_off(areas, source="S-1")
     w_x = 225.0, 630.0
+    >>> other.asce7.diaphragm_weights()
+    w_px = 225.0, 630.0
     """
 
     def __init__(self, scope: Scope) -> None:
@@ -91,6 +93,10 @@ class Steps:
         first two columns may be left out. `levels` come before it, without w_x. Answer: storage_share.
         """
         return weight.weight_take_off(self._scope, text, source)
+
+    def diaphragm_weights(self, without: Sequence[str] = ()) -> Handle:
+        """w_px (12.10.1.1): w_x of the take-off without some of its kinds of area, the walls parallel to the force."""
+        return weight.diaphragm_weights(self._scope, without)
 
     def seismic_weight(self) -> Handle:
         """W (12.7.2), the sum of w_x."""

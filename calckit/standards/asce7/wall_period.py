@@ -47,7 +47,7 @@ def period_of_walls(scope: Scope, operands: Mapping[str, Any], flags: Sequence[F
         broken.append(f"h_n = {height.line.shown} is above {limit:g} {unit}")
     if broken:
         raise ScopeError(
-            f"{scope.id_of('T_a')} by eq. 12.8-9 (12.8.2.1): {'; '.join(broken)}; set T_a_method to table"
+            f"{scope.id_of('T_a')} from the walls (12.8.2.1): {'; '.join(broken)}; set T_a_method to table"
         )
     scope.compute(rules.A_I)
     scope.compute(rules.A_EI, typed=operands)

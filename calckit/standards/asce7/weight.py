@@ -6,7 +6,7 @@ weight is used for.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import replace
 from typing import TYPE_CHECKING, Any
 
@@ -181,3 +181,24 @@ def _level_weights(scope: Scope, kinds: Mapping[str, Rows], worked: str) -> Hand
         printed = [*weights, "w_0", "w_s"]
     scope.table("level_weights", "Effective seismic weight of the levels", [*printed, "w_x"])
     return made
+
+
+def diaphragm_weights(scope: Scope, without: Sequence[str]) -> Handle:
+    """w_px from the take-off: w_x without the kinds of area that are walls parallel to the force."""
+    if scope.find("w_x") is None:
+        raise InputError("asce7.diaphragm_weights", [scope.missing("w_x")])
+    kinds: dict[str, int] = {}
+    while own := scope.calc.own_symbols.get(rules.numbered("w_u", len(kinds) + 1)):
+        kinds[own.meaning.rpartition(": ")[0]] = len(kinds) + 1
+    absent = [name for name in without if name not in kinds]
+    if absent:
+        cure = f"name kinds of area of the take-off: {'; '.join(kinds) or 'none was made'}"
+        faults = [Fault("without", "a kind of area of the take-off", name, cure) for name in absent]
+        raise InputError("asce7.diaphragm_weights", faults)
+    left_out = [kinds[name] for name in without]
+    detail = f"without {', '.join(without)}" if without else "no walls parallel to the force"
+    with scope.step():
+        made = scope.compute(rules.diaphragm_weight(left_out), detail=detail)
+        columns = ["w_x", *(rules.numbered("w_u", kind) for kind in left_out), "w_px"]
+        scope.table("diaphragm_weights", "Weights for the diaphragm forces", columns)
+        return made

@@ -44,6 +44,7 @@ SYMBOLS = (
            "it adds no more than 5 %", "words", choices=("counted", "left out up to 5 %")),
     Symbol("w_0", "effective seismic weight of level x without storage", "force", sub="x,0"),
     Symbol("w_s", "share of the storage live load at level x", "force", sub="x,s"),
+    Symbol("w_px", "weight tributary to the diaphragm at level x", "force", sub="px", low=0, low_open=True),
 )  # fmt: skip
 
 PARTITIONS = Formula("q_Pe", "max(q_P, q_Pmin) if q_P > 0*q_Pmin else q_P", _CLAUSE)
@@ -94,6 +95,15 @@ def weight_of(columns: Collection[str]) -> Formula:
     loads = ["q_D", *(name for name, of in (("q_Pe", "q_P"), ("q_Se", "p_f")) if of in columns)]
     spread = f"({' + '.join(loads)})" if len(loads) > 1 else loads[0]
     return Formula("w_u", " + ".join([f"A_u*{spread}", *(name for name in ("W_e", "W_d") if name in columns)]), _CLAUSE)
+
+
+def diaphragm_weight(kinds: Collection[int]) -> Formula:
+    """The weight of a level without some kinds of area: the walls parallel to the force.
+
+    >>> diaphragm_weight([4]).text
+    'w_x - w_u4'
+    """
+    return Formula("w_px", " - ".join(["w_x", *(numbered("w_u", kind) for kind in kinds)]), rule("12.10.1.1"))
 
 
 def sum_over(result: str, term: str, kinds: Collection[int], factor: str = "") -> Formula:

@@ -276,6 +276,22 @@ def test_twelve_stories_relieved_with_the_factor_of_the_kit() -> None:
     assert factors == {0.5726}
 
 
+def test_relief_without_the_step_that_works_it_is_open() -> None:
+    calc = begin(relief="floor")
+    calc.asce7.drift()
+    assert "drift_relief has no effect: asce7.analysis_model() was not run above" in flags(calc, "drift")
+    assert calc["delta_x"].value == pytest.approx([5.5 * each for each in (2.4, 1.7, 0.9)])
+
+
+def test_no_equation_of_7_22_is_printed() -> None:
+    calc = modeled(begin("ASCE 7-22", relief="floor and period"))
+    calc.asce7.drift()
+    own = ("V_drift", "C_sdrift", "C_scapdrift", "delta_x", "delta_xs", "r_V", "model_shear", "drift")
+    for line in (calc[name].line for name in own):
+        assert line.source is not None and line.source.equation == ""
+        assert "eq." not in f"{line.meaning} {line.detail} {flags(calc, line.symbol or line.id)}"
+
+
 def apart(edition: str = "ASCE 7-16", units: str = "US", **inputs: Any) -> Calc:
     """The separation."""
     calc = Calc(project="Demo", number="D-1", standard=edition, units=units)

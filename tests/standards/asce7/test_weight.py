@@ -183,3 +183,22 @@ def test_the_weights_carry_the_calculation() -> None:
     calc.asce7.seismic_weight()
     calc.asce7.vertical_distribution()
     assert sum(calc["F_x"].value) == pytest.approx(200)  # type: ignore[arg-type]
+
+
+def test_weights_of_the_diaphragms_leave_out_walls_parallel_to_the_force() -> None:
+    calc = taken_off()
+    x = calc.part("X", "East-west")
+    made = x.asce7.diaphragm_weights(without=["cladding"])
+    assert made.id == "X.w_px" and made.line.formula == "w_x - w_u4"
+    assert made.value == pytest.approx([ROOF + 70 - 37.5, THIRD + 25 - 75, SECOND + 93.75 - 82.5])
+    y = calc.part("Y", "North-south")
+    assert y.asce7.diaphragm_weights().value == calc["w_x"].value
+    found = audit(asdict(assemble(calc)))
+    assert found.faults == [] and found.counts
+
+
+def test_walls_that_are_not_in_the_take_off_are_refused() -> None:
+    with pytest.raises(InputError, match="given parapet; cure: name kinds of area of the take-off: deck; slab"):
+        taken_off().asce7.diaphragm_weights(without=["parapet"])
+    with pytest.raises(InputError, match=r"w_x .*: needed .*; cure: supply it with levels\(\.\.\.\), or asce7"):
+        begin().asce7.diaphragm_weights()
