@@ -100,7 +100,7 @@ MIXED = {
     "stiffness": ("kip/in", "kip/ft", "kN/mm", "N/m"),
     "line load": ("kip/ft", "plf", "kN/m", "N/mm"),
 }
-LISTS = {"w_x", "h_x", "h_sx", "wh_x", "C_vx", "F_x", "V_x", "delta_xe", "delta_x", "Delta", "P_x", "T_r"}
+LISTS = {"w_x", "h_x", "h_sx", "wh_x", "C_vx", "F_x", "V_x", "delta_xe", "delta_x", "Delta", "P_x", "T_r", "A_ei"}
 LISTS |= {f"{d}{case}" for d in ("d_1", "d_2", "D_1", "D_2") for case in ("plus", "minus")}
 LISTS |= {"K_d", "K_s", "K_1", "K_2", "b_s", "V_ys", "q_s"}
 LISTS |= {"x_i", "y_i", "k_ix", "k_iy", "V_ax", "V_ay", "b_i", "L_s", "d_s", "V_dirx", "V_diry"}
@@ -166,7 +166,7 @@ def degrees(expr: sympy.Expr, scales: dict[sympy.Symbol, sympy.Expr]) -> sympy.E
         for _, condition in expr.args:
             sides = {degrees(side, scales) for side in condition.args} if condition != sympy.true else {1}
             assert len(sides) == 1, f"{condition}: sides of unlike kind"
-        factors = {degrees(value, scales) for value, _ in expr.args}
+        factors = {degrees(value, scales) for value, _ in expr.args if value != 0}  # nothing is of every kind
         assert len(factors) == 1, f"{expr}: branches of unlike kind {factors}"
         return factors.pop()
     extended = dict(scales)

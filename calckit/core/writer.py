@@ -395,11 +395,14 @@ class Writer(Scope):
         origin = self.calc.sources.read(document, "analysis") if document.strip() else None
         with self.step():
             made = Handles()
-            for name, raw in (("V_applied", V_applied), ("W_model", W_model)):
+            named = [("V_applied", V_applied), ("W_model", W_model)]
+            if with_P_delta and "with_P_delta" in self.calc.standard.symbols:
+                named.append(("with_P_delta", with_P_delta))
+            for name, raw in named:
                 symbol = self.symbol(name)
                 reading, was_set = self._in_force(symbol, raw)
-                detail = "set at issue" if was_set else ""
-                made.append(self.write(self._stated(symbol, reading, "given", origin, text, detail)))
+                detail, facts_of = "set at issue" if was_set else "", "" if symbol.kind == "words" else text
+                made.append(self.write(self._stated(symbol, reading, "given", origin, facts_of, detail)))
             return made
 
     def confirm(self, what: str, document: str, by: str, date: str) -> None:

@@ -16,7 +16,8 @@ FIELD_OF_USE = (
     "forces (12.10.1, 12.10.2), load effects and combinations (12.4, 2.3.6, 2.4.5), reactions at the base, structural "
     "walls out of plane and their anchorage (12.11.1, 12.11.2.1).",
     "Irregularities, redundancy, the class of diaphragms, torsion and the distribution in plan follow from numbers "
-    "where they are given, else from the engineer's answers; what the seismic weight holds is the engineer's answer.",
+    "where they are given, else from the engineer's answers; without a take-off, what the seismic weight holds "
+    "is the engineer's answer.",
     "Values and rules marked as to be confirmed were not read in the printed standard by the kit's authors.",
 )
 NOT_COVERED = (
@@ -27,7 +28,7 @@ NOT_COVERED = (
     "modal and response history analysis (12.9, chapter 16); soil-structure interaction (chapter 19)",
     "the simplified method (12.14), nonbuilding structures (chapter 15), isolated and damped structures (chapters 17 "
     "and 18), existing buildings",
-    "the limit on S_DS of 12.8.1.3, periods of masonry and concrete shear walls by eq. 12.8-9, combined systems",
+    "the limit on S_DS of 12.8.1.3, combined systems",
     "local amendments, unless entered as overrides with their document",
 )
 

@@ -15,14 +15,17 @@ from calckit.standards.asce7 import (
     formulas,
     irregularity_rules,
     load_effects_rules,
+    model_rules,
     plan_rules,
+    structure_rules,
     symbols,
     wall_forces_rules,
+    weight_rules,
 )
 
 ROOMS: tuple[ModuleType, ...] = (
-    symbols, formulas, irregularity_rules, plan_rules, diaphragm_forces_rules, load_effects_rules,
-    base_reactions_rules, wall_forces_rules,
+    symbols, formulas, structure_rules, model_rules, weight_rules, irregularity_rules, plan_rules,
+    diaphragm_forces_rules, load_effects_rules, base_reactions_rules, wall_forces_rules,
 )  # fmt: skip
 """Modules with declarations: a tuple SYMBOLS, formulas by their Python names."""
 

@@ -13,15 +13,18 @@ from calckit.core.handle import Handle
 from calckit.core.record import NOT_CHECKED, Candidate, Flag
 from calckit.core.table import load
 from calckit.errors import InputError, ScopeError
-from calckit.standards.asce7 import formulas
+from calckit.standards.asce7 import formulas, model_rules
 from calckit.standards.asce7.clauses import rule
 from calckit.standards.asce7.hazard import PACKAGE, site_class, study
 from calckit.standards.asce7.irregularity import present
-from calckit.standards.asce7.structure import system_row
+from calckit.standards.asce7.margins import put_on_check, to_limit
+from calckit.standards.asce7.systems import system_row
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
 
+IN_MODEL = Flag("P-delta effects are in the model: θ/(1 + θ) is compared with the maximum (12.8.7)")
+UNDECLARED = "analysis(with_P_delta=...) does not say whether P-delta is in the model; taken as not in it"
 THRESHOLD = 0.10
 """theta at or below which P-delta effects need not be considered (12.8.7)."""
 
@@ -35,6 +38,8 @@ def base_shear(scope: Scope) -> Handle:
     with scope.step():
         _candidate_lines(scope)
         C_s = _governing(scope)
+        floors = [scope.number(name) or 0.0 for name in _floors(scope).split(", ")]
+        C_s.line.margin = to_limit("C_s", float(C_s), max(floors), "its lower limit")
         return scope.compute(formulas.V, detail=_against_computed(scope, C_s))
 
 
@@ -45,7 +50,9 @@ def _candidate_lines(scope: Scope) -> None:
     scope.compute(formulas.C_S_CAP_LONG if long else formulas.C_S_CAP, detail="T > T_L" if long else "T ≤ T_L")
     if study(scope.calc).reading in ("both", "exception 2") and _beyond(scope):
         scope.compute(formulas.C_S_CAP_INCREASED, detail="T > 1.5 T_S")
-    scope.compute(formulas.C_S_FLOOR)
+    floor = scope.compute(formulas.C_S_FLOOR)
+    words = "0.6, from which a second lower limit of C_s applies"
+    floor.line.margin = to_limit("S_1", S_1, 0.6, words) if S_1 else None
     if S_1 >= 0.6:
         scope.compute(formulas.C_S_FLOOR_S1, detail="S_1 is not less than 0.6")
 
@@ -53,6 +60,17 @@ def _candidate_lines(scope: Scope) -> None:
 def _beyond(scope: Scope) -> bool:
     """Whether T is above 1.5 T_S, where exception 2 of 11.4.8 increases the upper limit."""
     return (scope.number("T", "s") or 0.0) > 1.5 * (scope.number("T_S", "s") or 0.0)
+
+
+def upper(cap: str, increased: str) -> tuple[str, str]:
+    """C_s before its lower limits: the smaller of basic value and upper limit, plain and as 11.4.8 increases it.
+
+    `increased` names the increased upper limit; blank where the basic value alone applies.
+
+    >>> upper("C_scap", "")
+    ('min(C_sbasic, C_scap)', 'C_sbasic')
+    """
+    return f"min(C_sbasic, {cap})", f"min(C_sbasic, {increased})" if increased else "C_sbasic"
 
 
 def _floors(scope: Scope) -> str:
@@ -70,9 +88,8 @@ def _governing(scope: Scope) -> Handle:
         raise ScopeError(
             f"{scope.id_of('C_s')}: exception 3 of 11.4.8 holds for T not above T_S only; a hazard analysis is needed"
         )
-    plain = f"max(min(C_sbasic, C_scap), {_floors(scope)})"
-    increased = (
-        f"max(min(C_sbasic, C_scapinc), {_floors(scope)})" if _beyond(scope) else f"max(C_sbasic, {_floors(scope)})"
+    plain, increased = (
+        f"max({text}, {_floors(scope)})" for text in upper("C_scap", "C_scapinc" if _beyond(scope) else "")
     )
     if reading == "both":
         scope.compute(Formula("C_swithout", plain, source), detail="11.4.8 without the 50 % increase")
@@ -182,18 +199,36 @@ def drift(scope: Scope) -> Handle:
             scope.compute(formula)
             scope.table("drift", "Allowable story drift", ["h_sx", "Delta_a"], head="Story below")
             return scope.require("Delta <= Delta_a", title=title, source=rule("12.12.1"), id_="drift")
-        for each in (formulas.DELTA_X, formulas.DELTA):
-            scope.compute(each)
+        scaled = scope.find("delta_xs") is not None
+        scope.compute(model_rules.DELTA_X_SCALED if scaled else formulas.DELTA_X, flags=_renamed_flags(scope))
+        scope.compute(formulas.DELTA)
         scope.compute(formula)
         scope.table(
             "drift",
             "Displacements and story drifts",
-            ["delta_xe", "delta_x", "Delta", "h_sx", "Delta_a"],
+            ["delta_xs" if scaled else "delta_xe", "delta_x", "Delta", "h_sx", "Delta_a"],
             head="Story below",
         )
-        return scope.require(
-            "Delta <= Delta_a", title=title, source=rule("12.12.1"), id_="drift", flags=_edge_flags(scope)
-        )
+        flags = [*_edge_flags(scope), *_relief_flags(scope)]
+        made = scope.require("Delta <= Delta_a", title=title, source=rule("12.12.1"), id_="drift", flags=flags)
+        return put_on_check(made, "Δ", "the allowable story drift")
+
+
+def _relief_flags(scope: Scope) -> list[Flag]:
+    """What is open where a relief was answered and V_drift was never worked."""
+    if (scope.word("drift_relief") or "none") == "none" or scope.number("V_drift") is not None:
+        return []
+    text = f"{scope.id_of('drift_relief')} has no effect: asce7.analysis_model() was not run above"
+    return [Flag(text, True, "originator")]
+
+
+def _renamed_flags(scope: Scope) -> list[Flag]:
+    """What the kit does not know of displacements in the edition in force."""
+    edition = str(scope.calc.title_block["standard"])
+    if edition == "ASCE 7-16":
+        return []
+    unknown = f"{edition} adds the deflection of the diaphragms; worked without it, to be confirmed"
+    return [Flag(f"{scope.id_of('delta_x')}: {unknown}", True, "holder of the standard")]
 
 
 def _divided_by_rho(scope: Scope) -> bool:
@@ -223,20 +258,36 @@ def stability(scope: Scope) -> Handle:
         if scope.number("beta") is None:
             scope.state("beta", "1.0", "table", rule("12.8.7"), detail="permitted to be taken as 1.0")
         scope.compute(formulas.THETA_MAX)
-        lists = ("P_x", "Delta", "V_x", "h_sx")
-        absent = [name for name in lists if scope.find(name) is None]
+        absent = [name for name in ("P_x", "Delta", "V_x", "h_sx") if scope.find(name) is None]
         if absent:
             missing = ", ".join(f"{scope.plain(name)} ({scope.symbol(name).meaning})" for name in absent)
             return scope.verdict("stability", title, NOT_CHECKED, rule("12.8.7"), missing=missing)
-        theta = scope.compute(formulas.THETA)
-        scope.table("stability", "Stability coefficients", [*lists, "theta"], head="Story below")
-        return scope.require(
-            "theta <= theta_max",
-            title=title,
-            source=formulas.THETA.source,
-            id_="stability",
-            flags=_amplify(scope, theta),
-        )
+        theta, shears = _theta(scope)
+        included = scope.word("with_P_delta") == "yes"
+        compared = "theta_P" if included else "theta"
+        columns = ["P_x", "Delta", *shears, "h_sx", "theta"]
+        if included:
+            scope.compute(model_rules.THETA_P)
+            columns.append("theta_P")
+        scope.table("stability", "Stability coefficients", columns, head="Story below")
+        values = theta.value if isinstance(theta.value, list) else []
+        if values:
+            words = f"{THRESHOLD:.2f}, above which P-delta counts"
+            theta.line.margin = to_limit("largest θ", max(values), THRESHOLD, words)
+        flags = [IN_MODEL] if included else _amplify(scope, theta)
+        if scope.word("with_P_delta") is None and scope.number("V_applied") is not None:
+            flags.append(Flag(scope.labelled(UNDECLARED), True, "originator"))
+        source = formulas.THETA.source
+        made = scope.require(f"{compared} <= theta_max", title=title, source=source, id_="stability", flags=flags)
+        return put_on_check(made, scope.plain(compared), "its maximum")
+
+
+def _theta(scope: Scope) -> tuple[Handle, list[str]]:
+    """theta from drifts and story shears of one set of forces, and the columns of shears."""
+    if (scope.word("drift_relief") or "none") == "none" or scope.number("V_drift") is None:
+        return scope.compute(formulas.THETA), ["V_x"]
+    scope.compute(model_rules.V_XDRIFT)
+    return scope.compute(model_rules.THETA_DRIFT), ["V_x", "V_xdrift"]
 
 
 def _amplify(scope: Scope, theta: Handle) -> list[Flag]:

@@ -20,6 +20,7 @@ from calckit.core.table import load
 from calckit.errors import Fault, InputError, ScopeError
 from calckit.standards.asce7 import formulas
 from calckit.standards.asce7.clauses import rule
+from calckit.standards.asce7.margins import to_limit
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -298,4 +299,7 @@ def _governing_category(scope: Scope, risk: str, made: Sequence[Handle]) -> Hand
         if (line := handle.line).source
     ]
     rests = ("SDC_DS", "SDC_D1", "S_S", "S_1", "risk_category")
-    return scope.state("SDC", word, "table", rule("11.6"), detail=detail, flags=flags, rests=rests, candidates=compared)
+    margin = to_limit("S_1", S_1, 0.75, "0.75, from which the category is E or F") if S_1 else None
+    return scope.state(
+        "SDC", word, "table", rule("11.6"), detail=detail, flags=flags, rests=rests, candidates=compared, margin=margin
+    )

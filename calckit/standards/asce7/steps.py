@@ -16,10 +16,13 @@ from calckit.standards.asce7 import (
     hazard,
     irregularity,
     load_effects,
+    model,
     plan,
     redundancy,
     structure,
+    systems,
     wall_forces,
+    weight,
 )
 
 if TYPE_CHECKING:
@@ -56,6 +59,17 @@ class Steps:
     X.M_x = 556, 1520
     >>> x.asce7.procedure(), x.asce7.drift(), x.asce7.stability()
     (X.procedure = OK, X.drift = NOT CHECKED, X.stability = NOT CHECKED)
+    >>> _ = x.givens("delta_eM, 0.4 in, H-2\\nd_gap, 3 in, H-2")
+    >>> x.asce7.analysis_model(), x.asce7.separation()
+    (X.model_shear = NOT CHECKED, X.separation = 0.667)
+    >>> other = Calc(project="Demo", number="D-2", standard="ASCE 7-16")
+    >>> other.document("S-1", title="Take-off")
+    >>> _ = other.levels("level, h_x [ft]\\nRoof, 30\\n2, 15", source="S-1")
+    >>> areas = "level, area, A_u [ft**2], q_D [psf], q_P [psf]\\nRoof, deck, 9000, 25, 0\\n2, slab, 9000, 60, 8"
+    >>> other.asce7.weight_take_off(areas, source="S-1")
+    w_x = 225.0, 630.0
+    >>> other.asce7.diaphragm_weights()
+    w_px = 225.0, 630.0
     >>> _ = x.rows("ends", "level, d_1plus [in], d_2plus [in]\\nRoof, 0.9, 0.6\\n2, 0.4, 0.3", source="H-2")
     >>> x.asce7.end_displacements()[2:]
     [X.r_Dplus = 1.250, 1.143, X.H1a_found = yes, X.H1b_found = no, X.A_x = 1.000, 1.000]
@@ -91,7 +105,7 @@ class Steps:
     ([X.r_Ev = 0.1008, X.c_D6 = 1.301, X.c_D7 = 0.7992], X.V_h = 83.54 kip)
     >>> _ = x.givens("D, 120 kip, H-2\\nL, 40 kip, H-2\\nS, 0 kip, H-2\\nQ_E, 85 kip, H-2\\nload_method, strength, H-2")
     >>> x.asce7.load_combinations()
-    X.U_min = 10.90 kip
+    X.U_min = -14.60 kip
     >>> _ = x.givens("w_w, 84 psf, H-2\\ndiaphragm, rigid, H-2\\nW_pa, 900 lb, H-2")
     >>> x.asce7.wall_forces()[-1]
     X.F_an = 181.4 lb
@@ -125,16 +139,34 @@ class Steps:
         return hazard.design_category(self._scope)
 
     # chapter 12, the structure
+    def weight_take_off(self, text: str, source: str) -> Handle:
+        """w_x (12.7.2) from a pasted table, or "@file.csv": level, kind of area, A_u, q_D, q_P, q_L, p_f, W_e, W_d.
+
+        Areas, dead load, partitions, storage live load, snow of the flat roof, equipment, other dead load; all but the
+        first two columns may be left out. `levels` come before it, without w_x. Answer: storage_share.
+        """
+        return weight.weight_take_off(self._scope, text, source)
+
+    def diaphragm_weights(self, without: Sequence[str] = ()) -> Handle:
+        """w_px (12.10.1.1): w_x of the take-off without some of its kinds of area, the walls parallel to the force."""
+        return weight.diaphragm_weights(self._scope, without)
+
     def seismic_weight(self) -> Handle:
         """W (12.7.2), the sum of w_x."""
         return structure.seismic_weight(self._scope)
 
     def system(self) -> Handles:
-        """R, Omega_0, C_d (Table 12.2-1) and whether system and height are permitted, from the part's system."""
-        return structure.system(self._scope)
+        """R, Omega_0, C_d (Table 12.2-1) and whether system and height are permitted, from the part's system.
+
+        Answers: Omega_0_less (flexible diaphragms), height_rule (12.2.5.4, one story).
+        """
+        return systems.system(self._scope)
 
     def approximate_period(self, **typed: Any) -> Handle:
-        """T_a (12.8.2.1), by Table 12.8-2 or 0.1 N; an operand typed here (`h_n="70 ft"`) is flagged."""
+        """T_a (12.8.2.1) by T_a_method: Table 12.8-2, 0.1 N, or walls pasted with `rows` (D_i, t_i) and A_B.
+
+        An operand typed here (`h_n="70 ft"`) is flagged.
+        """
         return structure.approximate_period(self._scope, typed)
 
     def period(self) -> Handle:
@@ -154,6 +186,13 @@ class Steps:
         """k, C_vx, F_x, V_x, M_x over the height (12.8.3 to 12.8.5), with the check of their sum."""
         return forces.vertical_distribution(self._scope)
 
+    def analysis_model(self) -> Handle:
+        """V_drift by the answer drift_relief (12.8.6), and the model of `analysis` against V_drift or V, and W.
+
+        Writes the scaled displacements where the model was run with V.
+        """
+        return model.analysis_model(self._scope)
+
     def drift(self) -> Handle:
         """delta_x, Delta and Delta_a (12.8.6, 12.12.1) and the check of each story."""
         return forces.drift(self._scope)
@@ -161,6 +200,10 @@ class Steps:
     def stability(self) -> Handle:
         """theta and theta_max (12.8.7) and the check of each story."""
         return forces.stability(self._scope)
+
+    def separation(self) -> Handle:
+        """delta_M, delta_MT (12.12.3) and their check, from delta_eM, delta_M2 of a neighbor, and d_gap."""
+        return model.separation(self._scope)
 
     # chapter 12, the structure in plan
     def end_displacements(self) -> Handles:

@@ -1,6 +1,6 @@
 """Chapter 12, the structure: system, period, effective weight, irregularities and permitted procedure.
 
-Knows Tables 12.2-1, 12.6-1, 12.8-1 and 12.8-2 and the choice of T. Must not know forces.
+Knows Tables 12.6-1, 12.8-1 and 12.8-2 and the choice of T. Must not know forces.
 """
 
 from __future__ import annotations
@@ -9,16 +9,19 @@ from collections.abc import Mapping
 from typing import TYPE_CHECKING, Any
 
 from calckit import units
-from calckit.core.handle import Handle, Handles
+from calckit.core.handle import Handle
 from calckit.core.inputs import NONE
 from calckit.core.record import NOT_CHECKED, NOT_OK, OK, Candidate, Flag
-from calckit.core.table import Table, load
-from calckit.errors import Fault, InputError, ScopeError, nearest_first
+from calckit.core.table import load
+from calckit.errors import InputError, ScopeError
 from calckit.standards.asce7 import formulas
 from calckit.standards.asce7.clauses import rule
 from calckit.standards.asce7.hazard import PACKAGE, study
 from calckit.standards.asce7.irregularity import NEW, NUMBERED, edition, present
 from calckit.standards.asce7.irregularity_rules import TYPES
+from calckit.standards.asce7.margins import to_limit
+from calckit.standards.asce7.systems import height_conditions, system_row
+from calckit.standards.asce7.wall_period import period_of_walls
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -31,64 +34,16 @@ RESTS = ("SDC", "risk_category", "system", "h_n", "h_x", "T", "T_S", *NUMBERED, 
 """What the permitted procedure rests on."""
 
 
-def system_row(scope: Scope) -> tuple[str, dict[str, str], Table]:
-    """The row of Table 12.2-1 for the part's system: the whole key, or the part after the colon where unique."""
-    table = load(PACKAGE, "systems")
-    typed = scope.word("system")
-    if typed is None:
-        raise InputError("asce7.system", [scope.missing("system")])
-    typed = " ".join(typed.split())
-    matching = [key for key in table.rows if typed in (key, key.partition(": ")[2])]
-    if len(matching) > 1:
-        raise InputError(
-            "asce7.system", [Fault("system", "one row of Table 12.2-1", typed, f"write one of {'; '.join(matching)}")]
-        )
-    if not matching:
-        near = nearest_first(typed, table.rows)[:6]
-        cure = f"near names: {'; '.join(near)}"
-        raise InputError(
-            "asce7.system", [Fault("system", "a row of Table 12.2-1", typed, cure, "seismic force-resisting system")]
-        )
-    return matching[0], table.row(matching[0]), table
-
-
-def system(scope: Scope) -> Handles:
-    """R, Omega_0, C_d of one row of Table 12.2-1, and whether the system and its height are permitted."""
-    key, row, table = system_row(scope)
-    category = scope.word("SDC")
-    with scope.step():
-        names = ("R", "Omega_0", "C_d")
-        made = Handles(scope.look_up(name, table.entry(key, name), rests=("system",)) for name in names)
-        made.append(_permitted(scope, key, row, table, category))
-        return made
-
-
-def _permitted(scope: Scope, key: str, row: Mapping[str, str], table: Table, category: str | None) -> Handle:
-    source, title, rests = table.source(key), "System and height permitted", ("system", "SDC")
-
-    def say(verdict: str, detail: str = "", missing: str = "") -> Handle:
-        return scope.verdict("system_permitted", title, verdict, source, detail=detail, missing=missing, rests=rests)
-
-    if category is None:
-        return say(NOT_CHECKED, missing="SDC (seismic design category)")
-    limit = "NL" if category == "A" else row[category]
-    if limit == "NP":
-        return say(NOT_OK, f"{key} is not permitted in design category {category}")
-    if limit == "NL":
-        return say(OK, f"{key}: no height limit in design category {category}")
-    detail = f"{table.name}, row {key}, category {category}: {limit} ft; increases of 12.2.5.4 not taken"
-    scope.state("h_limit", f"{limit} ft", "table", source, detail=detail, rests=rests)
-    return scope.require("h_n <= h_limit", title=title, source=source, id_="system_permitted")
-
-
 def approximate_period(scope: Scope, typed: Mapping[str, Any]) -> Handle:
-    """T_a by Table 12.8-2, or by 0.1 N where the engineer chooses it and its conditions hold."""
+    """T_a by Table 12.8-2; by 0.1 N or from the walls where the engineer chooses it and the conditions hold."""
     method = scope.word("T_a_method") or "table"
     operands = scope.typed_in_place(typed)
     with scope.step():
         flags = _height_flags(scope)
         if method == "stories":
             return _by_stories(scope, flags)
+        if method == "walls":
+            return period_of_walls(scope, operands, flags)
         _, row, _ = system_row(scope)
         table = load(PACKAGE, "C_t")
         column = "C_t (m)" if scope.system == "SI" else "C_t (ft)"
@@ -145,8 +100,10 @@ def period(scope: Scope) -> Handle:
         compared = _candidates(scope, formula, reason)
         rests = ("T_analysis", "T_a", "T_max", "T_choice")
         T = scope.compute(formula, detail=reason, flags=flags, candidates=compared, rests=rests)
-        made = scope.number("T_analysis") is not None
-        formula = formulas.T_DRIFT_ANALYSIS if made else formulas.T_DRIFT_APPROXIMATE
+        analysis, limit = scope.number("T_analysis", "s"), scope.number("T_max", "s")
+        if analysis is not None and limit:
+            T.line.margin = to_limit("T_analysis", analysis, limit, "the upper limit C_u T_a")
+        formula = formulas.T_DRIFT_ANALYSIS if analysis is not None else formulas.T_DRIFT_APPROXIMATE
         scope.compute(formula, detail="no upper limit for drift", rests=("T_analysis",))
         return T
 
@@ -207,6 +164,7 @@ def procedure(scope: Scope) -> Handle:
         ("procedure", "Equivalent lateral force procedure permitted", "Table 12.6-1", _table_12_6_1),
     )
     with scope.step():
+        height_conditions(scope)
         for id_, title, where, decide in questions:
             verdict, detail, missing = decide(scope)
             source = rule(where, obtained="found")

@@ -33,7 +33,7 @@ SUPPLIERS = {
     "M_x": "asce7.vertical_distribution()",
     **dict.fromkeys(("r_Ev", "c_D6", "c_D7", "c_L", "c_S6", "c_D8", "c_D9", "c_D10", "c_S9"), "asce7.load_effects()"),
     "w_px": 'rows(...), column w_px, or given("w_px_basis", "w_x", ...)',
-    "w_x": "levels(...)",
+    "w_x": "levels(...), or asce7.weight_take_off(...)",
     "h_x": "levels(...)",
     "h_sx": "levels(...)",
     "delta_xe": "levels(...), column X.delta_xe",
@@ -49,6 +49,11 @@ SUPPLIERS = {
     "V_py": 'along_y="..." (the part with its V_x), or given("V_py", ...)',
     **dict.fromkeys(("V_p", "F_d"), 'direction="..." (the part with its forces), or given(...)'),
     **dict.fromkeys(("diaphragm_is", "H1a", "H1b"), "answer(...)"),
+    "V_applied": "analysis(V_applied=...)",
+    "W_model": "analysis(W_model=...)",
+    "V_drift": "asce7.analysis_model()",
+    "D_i": 'rows("walls", ...), column D_i',
+    "t_i": 'rows("walls", ...), column t_i',
 }
 """What supplies a symbol that is missing."""
 

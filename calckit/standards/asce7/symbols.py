@@ -89,7 +89,7 @@ _STRUCTURE = (
     _positive("h_limit", "height limit of the system", "length", sub="limit"),
     _positive("h_n", "structural height", "length"),
     Symbol("N", "number of stories above the base", low=1, high=200),
-    Symbol("T_a_method", "how the approximate period is found", "words", choices=("table", "stories")),
+    Symbol("T_a_method", "how the approximate period is found", "words", choices=("table", "stories", "walls")),
     _positive("C_t", "coefficient of the approximate period", high=0.2),
     _positive("x", "exponent of the approximate period", high=1),
     _period("T_a", "approximate period"),

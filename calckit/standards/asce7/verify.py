@@ -13,7 +13,7 @@ from calckit import units
 from calckit.core.calc import Calc
 from calckit.core.handle import Handle
 from calckit.errors import MismatchError
-from calckit.standards.asce7 import verify_effects, verify_plan
+from calckit.standards.asce7 import verify_effects, verify_plan, verify_structure
 
 Given = Mapping[str, Any]
 Results = dict[str, Any]
@@ -137,12 +137,35 @@ def _stockton_drift(given: Given) -> Results:
     check = calc.asce7.drift()
     if _value(calc, "r_Delta") != given["drift_limit"]:
         raise MismatchError(f"drift limit: the table gives {_value(calc, 'r_Delta')}")
-    failing = check.line.detail.partition("not met at ")[2].partition(";")[0]
     return {
         "Delta_e_in": _in(elastic, "in"),
         "Delta_in": _value(calc, "Delta", "in"),
         "Delta_a_in": _value(calc, "Delta_a", "in"),
-        "levels_failing_unrelieved": failing.split(", ") if failing else [],
+        "levels_failing_unrelieved": _failing(check),
+    } | _stockton_relieved(given)
+
+
+def _failing(check: Handle) -> list[str]:
+    """The levels at which a check is not met."""
+    failing = check.line.detail.partition("not met at ")[2].partition(";")[0]
+    return failing.split(", ") if failing else []
+
+
+def _stockton_relieved(given: Given) -> Results:
+    """The same drifts by a model run with V, scaled to the base shear without the lower limit of C_s."""
+    calc = _site_specific(given, system=_STEEL, h_n=f"{given['h_n']} ft", T_analysis=f"{given['T_analysis']} s")
+    for name, value in {"I_e": given["I_e"], "SDC": "C", "risk_category": "II", "drift_class": "all other"}.items():
+        calc.given(name, value, source="P")
+    calc.answer("drift_relief", "floor", basis="taken by the source")
+    _levels(calc, given, h_sx_in=given["h_sx_in"], w_x_kip=given["w_x"], delta_xe_in=given["delta_xe_in"])
+    for step in ("system", "seismic_weight", "approximate_period", "period", "base_shear"):
+        getattr(calc.asce7, step)()
+    calc.analysis(V_applied=f"{_value(calc, 'V', 'kip')} kip")
+    calc.asce7.analysis_model()
+    check = calc.asce7.drift()
+    return {
+        "Delta_relieved_in": _value(calc, "Delta", "in"),
+        "levels_failing_relieved": _failing(check),
     }
 
 
@@ -243,5 +266,6 @@ ADAPTERS: dict[str, Callable[[Given], Results]] = {
     "asce7.v.Cu": _period_limit,
     **verify_effects.ADAPTERS,
     **verify_plan.ADAPTERS,
+    **verify_structure.ADAPTERS,
 }
 """What runs each check, by its id."""
