@@ -30,8 +30,9 @@ _GROUND = (
     _ordinate("S_aCD", "risk-targeted ordinate of class CD at T_n", "a,CD"),
     _ordinate("S_aD", "risk-targeted ordinate of class D at T_n", "a,D"),
     _ordinate("S_an", "design ordinate at T_n", "a,n"),
-    Symbol("p_n", "product of period in s and design ordinate", layout="T_n*S_an"),
+    Symbol("p_n", "product of period in s and design ordinate"),
     _ordinate("S_amax", "largest design ordinate from 0.2 to 5 s", "a,max"),
+    _ordinate("S_a1", "design ordinate at 1 s", "a,1"),
     Symbol("p_max", "largest product of period in s and design ordinate, from 1 s on"),
     _ordinate("S_DSo", "design ordinate for short periods, from the ordinates", "DS,ord"),
     _ordinate("S_D1o", "design ordinate at 1 s, from the ordinates", "D1,ord"),
@@ -133,7 +134,7 @@ PGA_M = Formula("PGA_M", "F_PGA*PGA", rule("11.8.3", "11.8-1"))
 P_N = Formula("p_n", "T_n*S_an", rule("21.4"), units={"T_n": _S})
 S_DS_ORDINATES = Formula("S_DSo", "0.90*S_amax", rule("21.4"))
 S_D1_ORDINATES = Formula("S_D1o", "p_max", rule("21.4"))
-S_D1_ORDINATES_22 = Formula("S_D1o", 'max(0.90*p_max, level(S_an, "1 s"))', rule_of("ASCE 7-22", "21.4"))
+S_D1_ORDINATES_22 = Formula("S_D1o", "max(0.90*p_max, S_a1)", rule_of("ASCE 7-22", "21.4"))
 
 
 def in_row(result: str, column: str, row: str, source: Source) -> Formula:

@@ -81,6 +81,9 @@ def printed_ordinates(scope: Scope, text: str, source: str) -> Handles:
             shown.append("S_an")
         scope.compute(ground_rules.P_N)
         scope.table("ordinates", "Ordinates of the spectrum", [*shown, "p_n"], head="Period")
+        if basis(scope) == "printout":
+            last = ground_rules.in_row("S_a10", "S_an", f"{LAST} s", ground_rules.S_A_MULTI.source)
+            scope.compute(last, detail="periods beyond it are scaled from it")
         return Handles([*pasted, *_by_21_4(scope)])
 
 
@@ -151,6 +154,8 @@ def _by_21_4(scope: Scope) -> Handles:
         scope.compute(ground_rules.in_row(result, column, row, source), detail=words, rests=("site_class",))
     flags = [Flag(OWN_DEFAULT)] if site_class(scope) == "default" and scope.find("S_aC") is None else []
     newer = of_2022(scope)
+    if newer:
+        scope.compute(ground_rules.in_row("S_a1", "S_an", "1 s", source))
     made = [
         scope.compute(ground_rules.S_DS_ORDINATES, flags=flags),
         scope.compute(ground_rules.S_D1_ORDINATES_22 if newer else ground_rules.S_D1_ORDINATES),
@@ -233,7 +238,6 @@ def _between_ordinates(scope: Scope, periods: Sequence[float], names: list[str])
         ("T_lo", "T_n", low), ("S_alo", "S_an", low), ("T_hi", "T_n", high), ("S_ahi", "S_an", high),
     ):  # fmt: skip
         scope.write(_picked(scope, name, column, places, names))
-    _ordinate_at_10(scope)
     return scope.compute(ground_rules.S_A_MULTI)
 
 
@@ -262,10 +266,6 @@ def _picked(scope: Scope, name: str, column: str, places: Sequence[int], names: 
     return made(max(origin.decimals, 0) if typed else decimals_for([carried(value) for value in values], 4))
 
 
-def _ordinate_at_10(scope: Scope) -> Handle:
-    return scope.compute(ground_rules.in_row("S_a10", "S_an", f"{LAST:g} s", ground_rules.S_A_MULTI.source))
-
-
 def _reach(scope: Scope, longest: float) -> None:
     """Refuse periods beyond the ordinates where the rule known for them would leave a step in the spectrum."""
     T_L = scope.number("T_L", "s") or 0.0
@@ -284,7 +284,6 @@ def ordinate_at_T(scope: Scope) -> Handle:
     assert entry is not None
     knots, names = _list(scope, "T_n"), entry.line.rows
     if T > LAST:
-        _ordinate_at_10(scope)
         return scope.compute(ground_rules.S_AT_LONG)
     place = _place(knots, T)
     if T in knots:

@@ -29,6 +29,13 @@ class Steps:
     >>> T, S_a = calc.asce7.spectrum_curve(longest=2.0)
     >>> S_a[0], calc.asce7.site_specific_values("none: mapped", "none: mapped", source="H-2")
     (0.2016, [])
+    >>> calc.asce7.printed_values("S_DS, 0.50, H-2 p. 1\\nS_D1, 0.22, H-2 p. 1")[-1]
+    printed_agree = 0.790
+    >>> calc.asce7.printed_ordinates("none: mapped", source="H-2"), calc.asce7.study_floor()
+    ([], [])
+    >>> _ = calc.given("PGA", 0.26, source="H-2 p. 1")
+    >>> calc.asce7.peak_acceleration()
+    [F_PGA = 1.2, PGA_M = 0.3120]
     >>> _ = calc.givens("risk_category, II, H-2\\nh_n, 30 ft, H-2")
     >>> calc.asce7.design_category()[-1]
     SDC = D
@@ -41,6 +48,8 @@ class Steps:
     [X.R = 6, X.Omega_0 = 2, X.C_d = 5, X.system_permitted = 0.188]
     >>> x.asce7.approximate_period(), x.asce7.period(), x.asce7.base_shear()
     (X.T_a = 0.2564 s, X.T = 0.2564 s, X.V = 64.26 kip)
+    >>> x.asce7.category_conditions(), x.asce7.short_building_limit()
+    ([], [])
     >>> x.asce7.vertical_distribution()
     X.M_x = 556, 1520
     >>> x.asce7.procedure(), x.asce7.drift(), x.asce7.stability()
