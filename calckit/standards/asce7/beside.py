@@ -77,10 +77,13 @@ def printed_values(scope: Scope, text: str) -> Handles:
 
 
 def peak_acceleration(scope: Scope) -> Handles:
-    """F_PGA by Table 11.8-1 and PGA_M in 7-16; in 7-22 PGA_M is an input."""
+    """F_PGA by Table 11.8-1 and PGA_M in 7-16; in 7-22 and by a study PGA_M is an input; none without a value."""
     where = "asce7.peak_acceleration"
-    if of_2022(scope) or basis(scope) == "site-specific":
-        found = scope.find("PGA_M")
+    name = "PGA_M" if of_2022(scope) or basis(scope) == "site-specific" else "PGA"
+    found = scope.find(name)
+    if found is not None and found.line.value == NONE:
+        return Handles()
+    if name == "PGA_M":
         if found is None:
             raise InputError(where, [scope.missing("PGA_M")])
         return Handles([Handle(scope, found.line.id)])

@@ -6,13 +6,14 @@ know the structure, nor pasted ordinates.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from itertools import pairwise
 from typing import TYPE_CHECKING, Any
 
 from calckit.core.formula import Formula
 from calckit.core.handle import Handle, Handles
+from calckit.core.inputs import NONE
 from calckit.core.record import Candidate, Flag, Margin
 from calckit.core.table import load
 from calckit.errors import Fault, InputError, ScopeError
@@ -290,10 +291,23 @@ def site_specific_values(scope: Scope, S_DS: Any, S_D1: Any, source: str) -> Han
     settings = scope.book.settings
     if basis(scope) != "site-specific":
         return Handles()
-    for name in MAPPED_ONLY:
+    for name in () if of_2022(scope) else MAPPED_ONLY:
         settings.unused[name] = "hazard_basis is site-specific: site coefficients are not used"
     with scope.step():
         return Handles([scope.given("S_DS", S_DS, source), scope.given("S_D1", S_D1, source)])
+
+
+def geodatabase_values(scope: Scope, values: Mapping[str, Any], source: str) -> Handles:
+    """S_MS, S_M1, PGA_M as 7-22 reads them for the site class; nothing in 7-16, which works them out."""
+    if not of_2022(scope):
+        return Handles()
+    stated = {name: value for name, value in values.items() if not _none(value)}
+    with scope.step():
+        return Handles(scope.given(name, value, source) for name, value in stated.items())
+
+
+def _none(value: Any) -> bool:
+    return isinstance(value, str) and value.partition(":")[0].strip() == NONE
 
 
 def design_category(scope: Scope) -> Handles:

@@ -30,9 +30,11 @@ class Steps:
     >>> S_a[0], calc.asce7.site_specific_values("none: mapped", "none: mapped", source="H-2")
     (0.2016, [])
     >>> calc.asce7.printed_values("S_DS, 0.50, H-2 p. 1\\nS_D1, 0.22, H-2 p. 1")[-1]
-    printed_agree = 0.790
+    printed_agree = 0.794
     >>> calc.asce7.printed_ordinates("none: mapped", source="H-2"), calc.asce7.study_floor()
     ([], [])
+    >>> calc.asce7.geodatabase_values("none: mapped", "none: mapped", source="H-2")
+    []
     >>> _ = calc.given("PGA", 0.26, source="H-2 p. 1")
     >>> calc.asce7.peak_acceleration()
     [F_PGA = 1.2, PGA_M = 0.3120]
@@ -63,6 +65,10 @@ class Steps:
     def site_specific_values(self, S_DS: Any, S_D1: Any, source: str) -> Handles:
         """S_DS and S_D1 of a site-specific study (21.4); written only under hazard_basis site-specific."""
         return hazard.site_specific_values(self._scope, S_DS, S_D1, source)
+
+    def geodatabase_values(self, S_MS: Any, S_M1: Any, source: str, PGA_M: Any = "none: not given") -> Handles:
+        """S_MS, S_M1 and PGA_M of a printout for the site class (11.4, 11.8); written only under ASCE 7-22."""
+        return hazard.geodatabase_values(self._scope, {"S_MS": S_MS, "S_M1": S_M1, "PGA_M": PGA_M}, source)
 
     def design_spectrum(self) -> Handles:
         """S_DS, S_D1, T_0, T_S (11.4), from S_S, S_1, T_L and site_class.

@@ -17,6 +17,8 @@ SUPPLIERS = {
     "S_DS": "asce7.design_spectrum(), or asce7.site_specific_values(...)",
     "S_D1": "asce7.design_spectrum(), or asce7.site_specific_values(...)",
     "T_S": "asce7.design_spectrum()",
+    "S_MS": "asce7.geodatabase_values(...) or given(...) under 7-22, asce7.design_spectrum() under 7-16",
+    "S_M1": "asce7.geodatabase_values(...) or given(...) under 7-22, asce7.design_spectrum() under 7-16",
     "S_an": "asce7.printed_ordinates(...)",
     "F_PGA": "asce7.peak_acceleration()",
     "C_sbasic": "asce7.base_shear()",
