@@ -11,6 +11,7 @@ from dataclasses import dataclass
 from itertools import pairwise
 from typing import TYPE_CHECKING, Any
 
+from calckit.core.digits import carried, decimals_for, numeral
 from calckit.core.formula import Formula
 from calckit.core.handle import Handle, Handles
 from calckit.core.inputs import NONE
@@ -237,9 +238,15 @@ def coefficient_F_a(scope: Scope, letter: str, flags: Sequence[Flag], name: str 
     )
     if scope.word("site_class") == "D default" and value < 1.2:
         detail = f"default class D: not less than 1.2 ({found.detail})"
+        shown = found.text or numeral(carried(value), decimals_for([carried(value)], scope.symbol(name).digits))
+        compared = [
+            Candidate(found.source.where, value, "", shown, "entry of the table", False),
+            Candidate("clause 11.4.4", 1.2, "", "1.2", "least value of default class D", True),
+        ]
         return scope.state(
-            name, "1.2", "table", rule("11.4.4"), detail=detail, flags=flags, rests=("site_class", "S_S")
-        )
+            name, "1.2", "table", rule("11.4.4"), detail=detail, flags=flags, rests=("site_class", "S_S"),
+            candidates=compared,
+        )  # fmt: skip
     return scope.look_up(name, found, flags, rests=("site_class", "underlying_class", "S_S"))
 
 

@@ -35,14 +35,15 @@ def test_design_ordinates_are_two_thirds() -> None:
 def test_mapped_is_refused_with_the_cure() -> None:
     """7-22 has no site coefficients: quotients printed as F_a and F_v are not to be interpolated."""
     calc = start_22(hazard_basis="mapped")
-    error = refused(calc, InputError, r'hazard_basis: needed printout or site-specific under ASCE 7-22; given mapped',
-                    calc.asce7.design_spectrum)  # fmt: skip
+    message = "hazard_basis: needed printout or site-specific under ASCE 7-22; given mapped"
+    error = refused(calc, InputError, message, calc.asce7.design_spectrum)
     assert 'set hazard_basis to "printout" and give S_S, S_1, S_MS and S_M1' in str(error)
 
 
 def test_a_printout_is_no_basis_under_7_16() -> None:
     calc = start(S_S=1.0, S_1=0.1, T_L="8 s", site_class="C", hazard_basis="printout")
-    refused(calc, InputError, "hazard_basis: needed mapped or site-specific under ASCE 7-16", calc.asce7.design_spectrum)
+    message = "hazard_basis: needed mapped or site-specific under ASCE 7-16"
+    refused(calc, InputError, message, calc.asce7.design_spectrum)
 
 
 @pytest.mark.parametrize("word", ["A", "B", "BC", "C", "CD", "D", "DE", "E", "default"])
@@ -73,7 +74,8 @@ def test_missing_and_other_periods_are_named() -> None:
     calc.asce7.design_spectrum()
     kept = [place for place, period in enumerate(PERIODS) if period not in (0.075, 7.5)]
     text = pasted([ORDINATES[i] for i in kept], [PERIODS[i] for i in kept]) + "\n12, 0.05"
-    error = refused(calc, InputError, r"none at 0\.075 s, 7\.5 s", lambda: calc.asce7.printed_ordinates(text, source="P"))
+    message = r"none at 0\.075 s, 7\.5 s"
+    error = refused(calc, InputError, message, lambda: calc.asce7.printed_ordinates(text, source="P"))
     assert "also 12 s" in str(error)
 
 
