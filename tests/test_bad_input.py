@@ -163,7 +163,7 @@ LEVELS = r"^levels: "
         ("level, elevation [ft], w_x [kip]\n3, 36, 10\n2, 24, 10", [r"needed a last row named base with its"]),
         ("level, elevation [ft], w_x [kip]\n3, 36, 10\nbase, 40,", [r"row 1 \(3\), column elevation: needed above"]),
         ("level, h_x [ft], w_x [kip]\n3, 36, 10\nbase, 2, 10", [r"a row named base only with the column elevation"]),
-        ("", [r"needed a header row and one row a level; given no text; cure: paste the table"]),
+        ("", [r"needed a header and a row each; given no text; cure: paste the table"]),
         ("level, h_x [ft], w_x [kip]", [r"needed a row for each level under the header; given no rows"]),
         ("level, h_x [ft], Z.delta_xe [in]\n1, 12, 0.1", [r"header, column 3: needed symbol \[unit\] with a known"]),
         ("level, h_x [ft], X.delta_xe [in]\n1, 12, -0.1", [r"column X\.delta_xe: needed .* not less than 0;"]),

@@ -114,8 +114,8 @@ def test_unit_that_would_hide_a_factor(calc: Calc, text: str, unit: str, cure: s
 
 def test_operand_that_is_not_there(calc: Calc) -> None:
     calc.given("V", "10 kip", source="S-201")
-    message = r"Q_1 \(a line\): .*h_m: needed a number; given nothing; cure: supply it .*, or did you mean .*h_n"
-    refused(calc, InputError, message, lambda: calc.line("Q_1", "V*h_m", unit="kip", meaning="a line"))
+    message = r"Q_1 \(a line\): .*h_nn: needed a number; given nothing; cure: supply it .*, or did you mean .*h_n"
+    refused(calc, InputError, message, lambda: calc.line("Q_1", "V*h_nn", unit="kip", meaning="a line"))
     refused(
         calc,
         UnknownNameError,

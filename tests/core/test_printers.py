@@ -80,6 +80,7 @@ SYMBOLIC = [
     ("above(F_x)", "Σ(i ≥ x) F_x", r"\sum_{i \ge x} F_{x}", "sum_(i ≥ x) F_x"),
     ("delta_x - below(delta_x)", "δ_x - δ_x−1", r"\delta_{x} - \delta_{\mathrm{x-1}}", 'δ_x − δ_"x−1"'),
     ('level(F_x, "5")', "F_x, level 5", r"F_{\mathrm{x,\ level\ 5}}", 'F_"x, level 5"'),
+    ('level(F_x, "wall A")', "F_x, wall A", r"F_{\mathrm{x,\ wall\ A}}", 'F_"x, wall A"'),
     ("lambda_*Omega_0*C_sfloor", "λ × Ω_0 × C_s,floor", r"\lambda\,\Omega_{\mathrm{0}}\,C_{\mathrm{s,floor}}",
      'λ Ω_"0" C_"s,floor"'),
     ("wh_x/sum_wh", "w_x × h_x^k / (Σ w_i × h_i^k)", r"\frac{w_{x}\,h_{x}^{k}}{\sum w_{i}\,h_{i}^{k}}",

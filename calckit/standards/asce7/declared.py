@@ -13,6 +13,7 @@ from calckit.standards.asce7 import (
     base_reactions_rules,
     diaphragm_forces_rules,
     formulas,
+    ground_rules,
     irregularity_rules,
     load_effects_rules,
     model_rules,
@@ -24,7 +25,7 @@ from calckit.standards.asce7 import (
 )
 
 ROOMS: tuple[ModuleType, ...] = (
-    symbols, formulas, structure_rules, model_rules, weight_rules, irregularity_rules, plan_rules,
+    symbols, formulas, ground_rules, structure_rules, model_rules, weight_rules, irregularity_rules, plan_rules,
     diaphragm_forces_rules, load_effects_rules, base_reactions_rules, wall_forces_rules,
 )  # fmt: skip
 """Modules with declarations: a tuple SYMBOLS, formulas by their Python names."""

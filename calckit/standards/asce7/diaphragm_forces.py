@@ -14,7 +14,7 @@ from calckit.core.record import NOT_CHECKED, OK, Flag
 from calckit.errors import Fault, InputError, ScopeError
 from calckit.standards.asce7 import diaphragm_forces_rules as rules
 from calckit.standards.asce7.clauses import rule
-from calckit.standards.asce7.found import found, with_findings
+from calckit.standards.asce7.found import finding, with_findings
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -103,7 +103,7 @@ def _stated(scope: Scope, name: str) -> bool:
 def _transfer(scope: Scope) -> bool:
     """Transfer forces with rho, or with Omega_0 under an offset out of plane; whether they were worked."""
     id_, title, source = "transfer", "Transfer forces in the diaphragms", rule("12.10.1.1", obtained="found")
-    offset, rests = found(scope, "H4"), (*with_findings(["H4"]), "F_tx", "rho", "Omega_0")
+    offset, rests = finding(scope, "H4"), (*with_findings(["H4"]), "F_tx", "rho", "Omega_0")
     if not _listed(scope, "F_tx"):
         if _stated(scope, "F_tx") and offset != "yes":
             scope.verdict(id_, title, OK, source, detail="none to be transferred, as stated", rests=rests)
@@ -150,12 +150,12 @@ def _increase(scope: Scope) -> bool | None:
         scope.verdict(id_, title, OK, source, detail=f"design category {category}: no increase", rests=rests)
         return False
     asked = [name for name in INCREASED_BY if name in scope.calc.standard.symbols]
-    present = [name for name in asked if found(scope, name) == "yes"]
+    present = [name for name in asked if finding(scope, name) == "yes"]
     if present and category is not None:
         detail = f"irregularity {', '.join(present)}; all of F_dx, on the safe side"
         scope.compute(rules.F_J, detail=detail, rests=rests)
         return True
-    unanswered = [name for name in asked if found(scope, name) is None]
+    unanswered = [name for name in asked if finding(scope, name) is None]
     waiting = ["SDC"] if category is None else []
     if unanswered or waiting:
         missing = ", ".join([*waiting, *([f"answers {', '.join(unanswered)}"] if unanswered else [])])

@@ -13,11 +13,13 @@ from calckit.core.handle import Handle
 from calckit.core.record import NOT_CHECKED, Candidate, Flag
 from calckit.core.table import load
 from calckit.errors import InputError, ScopeError
-from calckit.standards.asce7 import formulas, model_rules
+from calckit.standards.asce7 import formulas, ground_rules, model_rules
 from calckit.standards.asce7.clauses import rule
-from calckit.standards.asce7.hazard import PACKAGE, site_class, study
-from calckit.standards.asce7.irregularity import present
+from calckit.standards.asce7.conditions import exemption_of_class_F
+from calckit.standards.asce7.found import present
+from calckit.standards.asce7.hazard import PACKAGE, basis, ground_class, of_2022, study
 from calckit.standards.asce7.margins import put_on_check, to_limit
+from calckit.standards.asce7.spectrum import multi_period, ordinate_at_T
 from calckit.standards.asce7.systems import system_row
 
 if TYPE_CHECKING:
@@ -27,12 +29,19 @@ IN_MODEL = Flag("P-delta effects are in the model: θ/(1 + θ) is compared with 
 UNDECLARED = "analysis(with_P_delta=...) does not say whether P-delta is in the model; taken as not in it"
 THRESHOLD = 0.10
 """theta at or below which P-delta effects need not be considered (12.8.7)."""
+MULTI, TWO = "multi-period", "two-period"
+METHOD_OPEN = "the larger of both methods of 12.8.1.1 is used until C_s_method is answered"
+NO_ORDINATES = "C_s by the two-period parameters alone: no ordinates of a printout for the method by S_a(T)"
 
 
 def base_shear(scope: Scope) -> Handle:
     """Every candidate of C_s, the governing one, and V."""
     needed = ("S_DS", "S_D1", "S_1", "T_L", "T_S", "R", "I_e", "T", "W")
     faults = [scope.missing(name) for name in needed if scope.number(name) is None]
+    if scope.word("C_s_method") == MULTI and not multi_period(scope):
+        if not of_2022(scope):
+            raise ScopeError("C_s_method multi-period: 12.8.1.1 of 7-16 has the two-period parameters only")
+        faults.append(scope.missing("S_an"))
     if faults:
         raise InputError("asce7.base_shear", faults)
     with scope.step():
@@ -45,12 +54,17 @@ def base_shear(scope: Scope) -> Handle:
 
 def _candidate_lines(scope: Scope) -> None:
     T, T_L, S_1 = scope.number("T", "s") or 0.0, scope.number("T_L", "s") or 0.0, scope.number("S_1") or 0.0
-    scope.compute(formulas.C_S_BASIC)
+    exemption_of_class_F(scope)
+    if multi_period(scope):
+        ordinate_at_T(scope)
+        scope.compute(ground_rules.C_S_MULTI)
+    limited = scope.number("S_DSlim") is not None
+    scope.compute(ground_rules.C_S_BASIC_LIMITED if limited else formulas.C_S_BASIC)
     long = T > T_L
     scope.compute(formulas.C_S_CAP_LONG if long else formulas.C_S_CAP, detail="T > T_L" if long else "T ≤ T_L")
     if study(scope.calc).reading in ("both", "exception 2") and _beyond(scope):
         scope.compute(formulas.C_S_CAP_INCREASED, detail="T > 1.5 T_S")
-    floor = scope.compute(formulas.C_S_FLOOR)
+    floor = scope.compute(ground_rules.C_S_FLOOR_LIMITED if limited else formulas.C_S_FLOOR)
     words = "0.6, from which a second lower limit of C_s applies"
     floor.line.margin = to_limit("S_1", S_1, 0.6, words) if S_1 else None
     if S_1 >= 0.6:
@@ -81,7 +95,7 @@ def _governing(scope: Scope) -> Handle:
     reading = study(scope.calc).reading
     source = rule("12.8.1.1", obtained="found")
     if (
-        site_class(scope.calc) == "E"
+        ground_class(scope.calc) == "E"
         and scope.word("study_exception") == "exception 3"
         and (scope.number("T", "s") or 0) > (scope.number("T_S", "s") or 0)
     ):
@@ -103,13 +117,38 @@ def _governing(scope: Scope) -> Handle:
         text, flags = "max(C_swithout, C_swith)", [flag]
     else:
         text, flags = (increased if reading == "exception 2" else plain), []
-    return scope.compute(Formula("C_s", text, source), candidates=_candidates(scope, reading), flags=flags)
+    if of_2022(scope):
+        text, flags = _by_method(scope, plain)
+    candidates = _candidates(scope, reading)
+    return scope.compute(Formula("C_s", text, source), candidates=candidates, flags=flags, rests=("C_s_method",))
+
+
+def _methods(scope: Scope) -> tuple[str, ...]:
+    """The methods of 7-22 that C_s is taken from; both while the engineer has not said which."""
+    if not multi_period(scope):
+        return (TWO,)
+    chosen = scope.word("C_s_method")
+    return (chosen,) if chosen else (MULTI, TWO)
+
+
+def _by_method(scope: Scope, two_period: str) -> tuple[str, list[Flag]]:
+    """C_s of 7-22 by the method or methods in use, with what is open."""
+    methods = _methods(scope)
+    multi = f"max(C_smulti, {_floors(scope)})"
+    if methods == (MULTI,):
+        return multi, []
+    if methods == (TWO,):
+        left = basis(scope) == "printout" and not multi_period(scope)
+        return two_period, [Flag(NO_ORDINATES)] if left else []
+    text = f"max(C_smulti, min(C_sbasic, C_scap), {_floors(scope)})"
+    return text, [Flag(f"{scope.id_of('C_s')}: {METHOD_OPEN}", True, "engineer of record")]
 
 
 def _candidates(scope: Scope, reading: str) -> list[Candidate]:
     """Every candidate in clause order with its value and reason; the one whose value is C_s governs."""
     reasons = {
-        "C_sbasic": "basic value",
+        "C_smulti": "method by S_a(T) of the multi-period spectrum",
+        "C_sbasic": "basic value with S_DS limited by 12.8.1.3" if scope.number("S_DSlim") else "basic value",
         "C_scap": "upper limit for T ≤ T_L"
         if (scope.number("T") or 0) <= (scope.number("T_L") or 0)
         else "upper limit for T > T_L",
@@ -125,6 +164,9 @@ def _candidates(scope: Scope, reading: str) -> list[Candidate]:
     if reading == "both" and not _beyond(scope):
         cap = "C_sbasic"
     upper = min(("C_sbasic", cap), key=lambda name: values[name])
+    if "C_smulti" in values:
+        before = {MULTI: "C_smulti", TWO: upper}
+        upper = max((before[method] for method in _methods(scope)), key=lambda name: values[name])
     governs = max(
         (upper, *(name for name in ("C_sfloor", "C_sfloor1") if name in values)), key=lambda name: values[name]
     )

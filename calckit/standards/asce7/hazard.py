@@ -1,21 +1,21 @@
 """Chapter 11: hazard values to design ordinates, importance factor and design category.
 
-Knows site coefficients, the site-specific basis, 11.4.8 and the category tables. Must not know the structure.
+Knows site classes, site coefficients, where the design ordinates come from, 11.4.8 and the category tables. Must not
+know the structure, nor pasted ordinates.
 """
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from itertools import pairwise
-from math import ceil
 from typing import TYPE_CHECKING, Any
 
-from calckit.core.book import Entry, this_cell
-from calckit.core.digits import typed_numeral
+from calckit.core.digits import carried, decimals_for, numeral
 from calckit.core.formula import Formula
 from calckit.core.handle import Handle, Handles
-from calckit.core.record import Candidate, Flag, Line, Margin
+from calckit.core.inputs import NONE
+from calckit.core.record import Candidate, Flag, Margin
 from calckit.core.table import load
 from calckit.errors import Fault, InputError, ScopeError
 from calckit.standards.asce7 import formulas
@@ -26,11 +26,31 @@ if TYPE_CHECKING:
     from calckit.core.scope import Scope
 
 PACKAGE = "calckit.standards.asce7"
-CURVE_POINTS = 200
 NOT_NEEDED = "not needed"
 CATEGORY_A = "design category A: the forces of 1.4.2 apply in place of 12.8, with the dead load and not W"
 CLASS_E = "class E with Supplement 3: whether S_M1 is increased as for class D is not known to the kit; not increased"
 MAPPED_ONLY = ("F_a", "F_v", "S_MS", "S_M1")
+CLASSES = {
+    "ASCE 7-16": ("A", "B", "B assumed", "C", "D", "D default", "E", "F"),
+    "ASCE 7-22": ("A", "B", "BC", "C", "CD", "D", "DE", "E", "F", "default"),
+}
+"""Site classes of each edition."""
+BASES = {"ASCE 7-16": ("mapped", "site-specific"), "ASCE 7-22": ("printout", "site-specific")}
+"""Where the design ordinates of each edition may come from, the usual way first."""
+NO_COEFFICIENTS = (
+    'set hazard_basis to "printout" and give S_S, S_1, S_MS and S_M1 of the printout for the site class: this edition '
+    "has no tables of F_a and F_v, and quotients printed under those names are not to be interpolated"
+)
+DEFAULT_CLASS = "default site class: S_MS and S_M1 are those of the most critical of classes C, CD and D"
+MAPPED_CURE = 'set it to "mapped"; compare a printout by asce7.printed_values(...)'
+EXEMPTED = (
+    "class F by liquefiable soil, exempted from the site response analysis (20.3.1): ground motion as for class {}; "
+    "the site stays class F for every other rule"
+)
+EXEMPTED_22 = "that the exemption of class F and its class hold in this edition is to be confirmed"
+RULE_FOR_A = "S_1 and S_S are so small that 7-16 gives category A directly; for this edition that is to be confirmed"
+BY_S_DS_TABLE = "Table 11.6-1 alone"
+BY_S_DS = "category by S_DS alone (11.6): its conditions are checked by asce7.category_conditions() in each direction"
 EXCEPTIONS = {"exception 1", "exception 2", "exception 3", "S_M1 increased"}
 
 
@@ -45,21 +65,38 @@ class Hazard:
     reading: str
 
 
+def of_2022(scope: Scope) -> bool:
+    """Whether the calculation is under ASCE 7-22."""
+    return bool(scope.calc.title_block["standard"] == "ASCE 7-22")
+
+
 def basis(scope: Scope) -> str:
-    """`mapped` unless the engineer says site-specific."""
-    return scope.word("hazard_basis") or "mapped"
+    """Where the design ordinates come from; unsaid, the usual way of the edition."""
+    return scope.word("hazard_basis") or BASES[scope.calc.title_block["standard"]][0]
 
 
 def site_class(scope: Scope) -> str:
-    """The letter of the site class, "B assumed" and "D default" reduced to their letter."""
+    """The letters of the site class, "B assumed" and "D default" reduced to their letter."""
     return (scope.word("site_class") or "").partition(" ")[0]
 
 
+def exempted(scope: Scope) -> bool:
+    """Whether the engineer states the exemption of class F for liquefiable soil and short periods (20.3.1)."""
+    return site_class(scope) == "F" and scope.word("liquefaction_exemption") == "yes"
+
+
+def ground_class(scope: Scope) -> str:
+    """The class that site coefficients and 11.4.8 follow: the site class, or what stands for an exempted class F."""
+    return scope.word("underlying_class") or "F" if exempted(scope) else site_class(scope)
+
+
 def study(scope: Scope) -> Hazard:
-    """Read 11.4.8 for the site class and the mapped values."""
+    """Read 11.4.8 of 7-16 for the site class and the mapped values; 7-22 asks no study of classes D and E."""
+    if of_2022(scope):
+        return _no_study_by_class(scope)
     if basis(scope) == "site-specific":
         return Hazard((), "plain")
-    letter, S_S, S_1 = site_class(scope), scope.number("S_S") or 0.0, scope.number("S_1") or 0.0
+    letter, S_S, S_1 = ground_class(scope), scope.number("S_S") or 0.0, scope.number("S_1") or 0.0
     triggered = []
     if letter == "E" and S_S >= 1.0:
         triggered.append("class E with S_S not less than 1.0")
@@ -83,29 +120,89 @@ def study(scope: Scope) -> Hazard:
     return Hazard(tuple(triggered), "increased" if wanted == "S_M1 increased" else "exception 2")
 
 
+def _no_study_by_class(scope: Scope) -> Hazard:
+    exception = scope.word("study_exception")
+    if exception in (None, NOT_NEEDED):
+        return Hazard((), "plain")
+    cure = 'answer "not needed": the rule for classes D and E is not in this edition'
+    raise InputError("design spectrum", [Fault("study_exception", repr(NOT_NEEDED), repr(exception), cure)])
+
+
 def design_spectrum(scope: Scope) -> Handles:
     """Site coefficients, S_MS, S_M1, S_DS, S_D1, T_0, T_S; from a site-specific study only the last four."""
-    faults = [scope.missing(name) for name in ("S_S", "S_1", "T_L") if scope.number(name) is None]
-    if scope.word("site_class") is None:
-        faults.append(scope.missing("site_class"))
-    if basis(scope) == "site-specific":
-        faults += [scope.missing(name) for name in ("S_DS", "S_D1") if scope.number(name) is None]
+    where = basis(scope)
+    needed = ["S_S", "S_1", "T_L"]
+    needed += {"site-specific": ["S_DS", "S_D1"], "printout": ["S_MS", "S_M1"]}.get(where, [])
+    faults = [scope.missing(name) for name in needed if scope.number(name) is None]
+    faults += _edition_faults(scope)
     if faults:
         raise InputError("asce7.design_spectrum", faults)
     with scope.step():
-        made = Handles() if basis(scope) == "site-specific" else _mapped(scope)
+        made = Handles()
+        if where == "mapped":
+            made = _mapped(scope)
+        elif where == "printout":
+            made = _of_printout(scope)
         made += [scope.compute(formulas.T_0), scope.compute(formulas.T_S)]
         if study(scope).reading == "both":
             made.append(scope.compute(formulas.T_S_INCREASED))
         return made
 
 
-def _mapped(scope: Scope) -> Handles:
-    letter, hazard = site_class(scope), study(scope)
+def _edition_faults(scope: Scope) -> list[Fault]:
+    """What the words for site class and basis lack in this edition."""
+    name = scope.calc.title_block["standard"]
+    if scope.word("site_class") is None:
+        return [scope.missing("site_class")]
+    faults = []
+    if basis(scope) not in BASES[name]:
+        cure = NO_COEFFICIENTS if of_2022(scope) else MAPPED_CURE
+        faults.append(Fault("hazard_basis", f"{' or '.join(BASES[name])} under {name}", basis(scope), cure))
+    words = [("site_class", scope.word("site_class"))]
+    if exempted(scope):
+        words.append(("underlying_class", scope.word("underlying_class")))
+    for symbol, word in words:
+        known = [each for each in CLASSES[name] if symbol == "site_class" or each not in ("F", "default")]
+        if word is None:
+            faults.append(scope.missing(symbol))
+        elif word not in known:
+            cure = "take the class by the shear wave velocity of this edition"
+            faults.append(Fault(symbol, f"one of {', '.join(known)} under {name}", word, cure))
+    return faults
+
+
+def _ground(scope: Scope) -> str:
+    """The class that the ground motion follows; class F without exemption is refused."""
+    letter = ground_class(scope)
     if letter == "F":
-        raise ScopeError("site class F: a site response analysis is needed (11.4.8); set hazard_basis to site-specific")
-    flags = _study_flags(scope, hazard)
-    made = [_F_a(scope, letter, flags), _F_v(scope, letter, hazard)]
+        clause = "11.4.7" if of_2022(scope) else "11.4.8"
+        raise ScopeError(
+            f"site class F: a site response analysis is needed ({clause}); set hazard_basis to site-specific, or "
+            "answer liquefaction_exemption and underlying_class where 20.3.1 exempts the site"
+        )
+    return letter
+
+
+def _exemption_flags(scope: Scope) -> list[Flag]:
+    if not exempted(scope):
+        return []
+    flags = [Flag(EXEMPTED.format(ground_class(scope)))]
+    return [*flags, Flag(EXEMPTED_22, True, "holder of the standard")] if of_2022(scope) else flags
+
+
+def _of_printout(scope: Scope) -> Handles:
+    """S_DS and S_D1 from the S_MS and S_M1 that a printout gives for the site class."""
+    _ground(scope)
+    flags = [*_exemption_flags(scope), *([Flag(DEFAULT_CLASS)] if site_class(scope) == "default" else [])]
+    rests = ("site_class", "hazard_basis")
+    S_DS = scope.compute(formulas.S_DS, flags=flags, rests=rests)
+    return Handles([S_DS, scope.compute(formulas.S_D1, rests=rests)])
+
+
+def _mapped(scope: Scope) -> Handles:
+    letter, hazard = _ground(scope), study(scope)
+    flags = [*_exemption_flags(scope), *_study_flags(scope, hazard)]
+    made = [coefficient_F_a(scope, letter, flags), coefficient_F_v(scope, letter)]
     increased = hazard.reading == "increased"
     made += [scope.compute(formulas.S_MS), scope.compute(formulas.S_M1_INCREASED if increased else formulas.S_M1)]
     return Handles([*made, scope.compute(formulas.S_DS), scope.compute(formulas.S_D1)])
@@ -129,9 +226,10 @@ def _study_flags(scope: Scope, hazard: Hazard) -> list[Flag]:
     return flags
 
 
-def _F_a(scope: Scope, letter: str, flags: Sequence[Flag]) -> Handle:
+def coefficient_F_a(scope: Scope, letter: str, flags: Sequence[Flag], name: str = "F_a") -> Handle:
+    """F_a of Table 11.4-1 with its special cases, written as `name`."""
     if scope.word("site_class") == "B assumed":
-        return _without_velocity(scope, "F_a", flags)
+        return without_velocity(scope, name, flags)
     table, S_S = load(PACKAGE, "F_a"), scope.number("S_S") or 0.0
     if letter == "E" and S_S > 0.75:
         return _F_a_of_class_E(scope, S_S, flags)
@@ -141,13 +239,20 @@ def _F_a(scope: Scope, letter: str, flags: Sequence[Flag]) -> Handle:
     )
     if scope.word("site_class") == "D default" and value < 1.2:
         detail = f"default class D: not less than 1.2 ({found.detail})"
+        shown = found.text or numeral(carried(value), decimals_for([carried(value)], scope.symbol(name).digits))
+        compared = [
+            Candidate(found.source.where, value, "", shown, "entry of the table", False),
+            Candidate("clause 11.4.4", 1.2, "", "1.2", "least value of default class D", True),
+        ]
         return scope.state(
-            "F_a", "1.2", "table", rule("11.4.4"), detail=detail, flags=flags, rests=("site_class", "S_S")
-        )
-    return scope.look_up("F_a", found, flags, rests=("site_class", "S_S"))
+            name, "1.2", "table", rule("11.4.4"), detail=detail, flags=flags, rests=("site_class", "S_S"),
+            candidates=compared,
+        )  # fmt: skip
+    return scope.look_up(name, found, flags, rests=("site_class", "underlying_class", "S_S"))
 
 
-def _without_velocity(scope: Scope, name: str, flags: Sequence[Flag]) -> Handle:
+def without_velocity(scope: Scope, name: str, flags: Sequence[Flag]) -> Handle:
+    """The coefficient 1.0 of class B assumed without measured velocity."""
     source, detail = rule("11.4.3", obtained="found"), "class B without measured velocity"
     return scope.state(name, "1.0", "table", source, detail=detail, flags=flags, rests=("site_class",))
 
@@ -167,9 +272,10 @@ def _F_a_of_class_E(scope: Scope, S_S: float, flags: Sequence[Flag]) -> Handle:
     return scope.look_up("F_a", found, [*flags, taken], rests=("site_class", "S_S", "study_exception"))
 
 
-def _F_v(scope: Scope, letter: str, hazard: Hazard) -> Handle:
+def coefficient_F_v(scope: Scope, letter: str, name: str = "F_v") -> Handle:
+    """F_v of Table 11.4-2, for class E by Supplement 1 alone, written as `name`."""
     if scope.word("site_class") == "B assumed":
-        return _without_velocity(scope, "F_v", [])
+        return without_velocity(scope, name, [])
     S_1, row = scope.number("S_1") or 0.0, letter
     flags: list[Flag] = []
     if letter == "E" and S_1 > 0.1:
@@ -184,69 +290,32 @@ def _F_v(scope: Scope, letter: str, hazard: Hazard) -> Handle:
             )
         row = "E, Supplement 1"
         flags = [Flag(CLASS_E, True, "holder of the standard")] if 3 in supplements and S_1 >= 0.2 else []
-    return scope.look_up("F_v", load(PACKAGE, "F_v").along(row, "S_1", S_1), flags, rests=("site_class", "S_1"))
+    found = load(PACKAGE, "F_v").along(row, "S_1", S_1)
+    return scope.look_up(name, found, flags, rests=("site_class", "underlying_class", "S_1"))
 
 
 def site_specific_values(scope: Scope, S_DS: Any, S_D1: Any, source: str) -> Handles:
     """The ordinates of a site-specific study; written only if the hazard basis is site-specific."""
     settings = scope.book.settings
-    if basis(scope) == "mapped":
+    if basis(scope) != "site-specific":
         return Handles()
-    for name in MAPPED_ONLY:
+    for name in () if of_2022(scope) else MAPPED_ONLY:
         settings.unused[name] = "hazard_basis is site-specific: site coefficients are not used"
     with scope.step():
         return Handles([scope.given("S_DS", S_DS, source), scope.given("S_D1", S_D1, source)])
 
 
-def spectrum_ordinates(scope: Scope, periods: Sequence[float]) -> Handle:
-    """S_a at the given periods in seconds: one list line and its table."""
-    faults = [
-        Fault(
-            "T_r",
-            "a period not below 0, in seconds",
-            repr(period),
-            "correct the list",
-            "period at which the spectrum is read",
-        )
-        for period in periods
-        if isinstance(period, bool) or not isinstance(period, int | float) or not 0 <= period < 1e3
-    ]
-    if faults or not periods:
-        raise InputError("asce7.spectrum_ordinates", faults or [Fault("periods", "at least one period", "none")])
-    symbol = scope.symbol("T_r")
-    numerals = [typed_numeral(period) for period in periods]
-    places = max(len(text.partition(".")[2]) for text in numerals)
-    rows = [str(number) for number in range(1, len(periods) + 1)]
-    shown = [f"{period:.{places}f}" for period in periods]
-    line = Line(
-        scope.id_of("T_r"), "given", "T_r", symbol.meaning, [float(p) for p in periods], "s", shown, part=scope.id,
-        rows=rows, typeset=scope.typeset(symbol), source=rule("11.4.6"), detail="periods chosen for the table",
-    )  # fmt: skip
+def geodatabase_values(scope: Scope, values: Mapping[str, Any], source: str) -> Handles:
+    """S_MS, S_M1, PGA_M as 7-22 reads them for the site class; nothing in 7-16, which works them out."""
+    if not of_2022(scope):
+        return Handles()
+    stated = {name: value for name, value in values.items() if not _none(value)}
     with scope.step():
-        scope.write(Entry(line, this_cell(), tuple(shown), places))
-        handle = scope.compute(formulas.S_A)
-        scope.table("spectrum", "Design spectrum", ["T_r", "S_a"], head="Point")
-        return handle
+        return Handles(scope.given(name, value, source) for name, value in stated.items())
 
 
-def spectrum_curve(scope: Scope, longest: float | None) -> tuple[list[float], list[float]]:
-    """Periods up to `longest` with the corners among them, and S_a at each, for a figure; writes no line."""
-    names = ("S_DS", "S_D1", "T_0", "T_S", "T_L")
-    faults = [scope.missing(name) for name in names if scope.number(name) is None]
-    if faults:
-        raise InputError("asce7.spectrum_curve", faults)
-    values = {name: scope.number(name) or 0.0 for name in names}
-    longest = _past_all_periods(scope) if longest is None else longest
-    corners = {values[name] for name in ("T_0", "T_S", "T_L") if values[name] <= longest}
-    periods = sorted({0.0, longest, *corners, *(longest * step / CURVE_POINTS for step in range(1, CURVE_POINTS))})
-    return periods, [formulas.S_A.value(values | {"T_r": period}) for period in periods]
-
-
-def _past_all_periods(scope: Scope) -> float:
-    """The next half second past every period of every part."""
-    parts = scope.calc.parts.values()
-    periods = [part.number(name, "s") or 0.0 for part in parts for name in ("T_a", "T_max", "T", "T_analysis")]
-    return max(2.0, 0.5 * ceil(2.2 * max(periods, default=0.0)))
+def _none(value: Any) -> bool:
+    return isinstance(value, str) and value.partition(":")[0].strip() == NONE
 
 
 def design_category(scope: Scope) -> Handles:
@@ -288,17 +357,28 @@ def _governing_category(scope: Scope, risk: str, made: Sequence[Handle]) -> Hand
     S_S, S_1 = scope.number("S_S") or 0.0, scope.number("S_1") or 0.0
     letters = [str(handle.value) for handle in made]
     word, detail = max(letters), "the more severe of the two tables"
+    flags: list[Flag] = []
     if S_1 >= 0.75:
         word, detail = ("F" if risk == "IV" else "E"), f"S_1 = {S_1:g} is not less than 0.75"
-    elif S_1 <= 0.04 and S_S <= 0.15:
+    elif scope.word("category_basis") == "S_DS alone":
+        word, detail = letters[0], BY_S_DS_TABLE
+        flags.append(Flag(BY_S_DS))
+    elif S_1 <= 0.04 and S_S <= 0.15 and not of_2022(scope):
         word, detail = "A", "S_1 not above 0.04 and S_S not above 0.15"
-    flags = [Flag(CATEGORY_A, True, "originator")] if word == "A" else []
+    elif S_1 <= 0.04 and S_S <= 0.15 and word != "A":
+        flags.append(Flag(RULE_FOR_A, True, "holder of the standard"))
+    if word == "A":
+        flags.append(Flag(CATEGORY_A, True, "originator"))
+    deciding = made[:1] if detail == BY_S_DS_TABLE else made
     compared = [
-        Candidate(line.source.where, None, "", str(line.value), line.detail, line.value == word, line.id)
+        Candidate(
+            line.source.where, None, "", str(line.value), line.detail,
+            handle in deciding and line.value == word, line.id,
+        )
         for handle in made
         if (line := handle.line).source
     ]
-    rests = ("SDC_DS", "SDC_D1", "S_S", "S_1", "risk_category")
+    rests = ("SDC_DS", "SDC_D1", "S_S", "S_1", "risk_category", "category_basis")
     margin = to_limit("S_1", S_1, 0.75, "0.75, from which the category is E or F") if S_1 else None
     return scope.state(
         "SDC", word, "table", rule("11.6"), detail=detail, flags=flags, rests=rests, candidates=compared, margin=margin

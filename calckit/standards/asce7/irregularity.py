@@ -17,11 +17,12 @@ from calckit.core.scope import OPEN_ANSWER
 from calckit.errors import Fault, InputError
 from calckit.standards.asce7 import irregularity_rules as rules
 from calckit.standards.asce7.clauses import rule, rule_of
+from calckit.standards.asce7.found import IRREGULARITIES, finding, present, with_findings
+from calckit.standards.asce7.hazard import of_2022
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
 
-NUMBERED = ("H1a", "H1b", "H2", "H3", "H4", "H5", "V1a", "V1b", "V2", "V3", "V4", "V5a", "V5b")
 AMPLIFIED = ("C", "D", "E", "F")
 """Design categories in which torsional irregularity asks for A_x (12.8.4.3)."""
 COLLECTORS = ("H1a", "H1b", "H2", "H3", "H4", "V4")
@@ -32,27 +33,6 @@ NEW = "ASCE 7-22"
 
 Over = list[tuple[str, float, str]]
 """Where a ratio stands (story), its value, and the symbol that prints it."""
-
-
-def edition(scope: Scope) -> str:
-    """The edition of the calculation, as the title block says it."""
-    return str(scope.calc.title_block["standard"])
-
-
-def irregular(scope: Scope, name: str) -> str | None:
-    """Whether a type is present, "yes" or "no": by the numbers, else as answered; None if neither says."""
-    return scope.word(f"{name}_found") or scope.word(name)
-
-
-def present(scope: Scope, names: Sequence[str]) -> tuple[list[str], list[str]]:
-    """The types among `names` that are present, and those that nothing says anything of."""
-    words = {name: irregular(scope, name) for name in names}
-    return [n for n, word in words.items() if word == "yes"], [n for n, word in words.items() if word is None]
-
-
-def diaphragm_class(scope: Scope) -> str | None:
-    """The class of the diaphragm: by calculation or description, else as answered; None if neither says."""
-    return scope.word("diaphragm_found") or scope.word("diaphragm")
 
 
 def _ratios(scope: Scope, name: str, *, down: int = 0, skip: int = 0) -> Over:
@@ -109,11 +89,11 @@ def question(scope: Scope, name: str) -> str:
 
 
 def _plan(scope: Scope) -> Source:
-    return rule_of(NEW, "Table 12.3-1") if edition(scope) == NEW else rule("Table 12.3-1", obtained="found")
+    return rule_of(NEW, "Table 12.3-1") if of_2022(scope) else rule("Table 12.3-1", obtained="found")
 
 
 def _height(scope: Scope) -> Source:
-    return rule_of(NEW, "Table 12.3-2") if edition(scope) == NEW else rule("Table 12.3-2")
+    return rule_of(NEW, "Table 12.3-2") if of_2022(scope) else rule("Table 12.3-2")
 
 
 def _alike(scope: Scope, names: Sequence[str]) -> None:
@@ -171,13 +151,13 @@ def _one_case(scope: Scope, cases: Sequence[int], formula: tuple[Formula, Formul
 def _torsional(scope: Scope) -> list[Handle]:
     """H1a and H1b from the drifts of the ends: A_x = 1, rigid or semirigid diaphragms only."""
     source, rests = _plan(scope), ("r_Dplus", "r_Dminus", "diaphragm", "diaphragm_found", "one_side")
-    if diaphragm_class(scope) == "flexible":
+    if finding(scope, "diaphragm") == "flexible":
         text = "flexible diaphragm: the types are those of rigid and semirigid diaphragms"
         return [_write(scope, name, "no", text, source, rests) for name in ("H1a", "H1b")]
     ratios = _ratios(scope, "r_Dplus") + _ratios(scope, "r_Dminus")
     beyond = {limit: [each for each in ratios if each[1] > limit] for limit in (1.2, 1.4)}
     severe = _decide(scope, "H1b", beyond[1.4], 1.4, ">", source, rests)
-    if edition(scope) != NEW or beyond[1.2]:
+    if not of_2022(scope) or beyond[1.2]:
         return [_decide(scope, "H1a", beyond[1.2], 1.2, ">", source, rests), severe]
     if scope.word("one_side") is None:
         title, missing = "Torsional irregularity by the numbers", "the answer one_side (strength on one side)"
@@ -192,7 +172,7 @@ def _amplification(scope: Scope, cases: Sequence[int]) -> list[Handle]:
     """A_x of each level (12.8-14) from the displacements of the ends, where it is asked for."""
     if (scope.word("SDC") or "") not in AMPLIFIED or not present(scope, ("H1a", "H1b"))[0]:
         return []
-    if edition(scope) == NEW:
+    if of_2022(scope):
         missing = "the rule of this edition, which is written around the ratio of drifts"
         title, source = "Amplification of accidental torsion", rule_of(NEW, "12.8.4.3")
         return [scope.verdict("amplification", title, NOT_CHECKED, source, missing=missing)]
@@ -230,7 +210,7 @@ def _corner(scope: Scope) -> list[Handle]:
     given = [name for name in ("p_x", "p_y") if scope.number(name) is not None]
     if not given:
         return []
-    if edition(scope) == NEW:
+    if of_2022(scope):
         missing = "the threshold of this edition, which may have been raised; answer H2 from the printed standard"
         title = "Re-entrant corner by the numbers"
         return [scope.verdict("H2_numbers", title, NOT_CHECKED, _plan(scope), missing=missing)]
@@ -331,7 +311,7 @@ def _stiffness(scope: Scope) -> list[Handle]:
 def _mass(scope: Scope) -> list[Handle]:
     if scope.find("w_x") is None:
         return []
-    if edition(scope) == NEW:
+    if of_2022(scope):
         text = "this edition has no irregularity of mass"
         return [_write(scope, "V2", "no", text, _height(scope), ("w_x",), exempt=True)]
     scope.compute(rules.R_W)
@@ -372,7 +352,7 @@ def _strength(scope: Scope) -> list[Handle]:
 def _consequences(scope: Scope) -> list[Handle]:
     """Lines for what irregularities bring: collectors, supports of offset walls and frames, the model."""
     category = scope.word("SDC") or ""
-    rests = ("SDC", *NUMBERED, *(f"{name}_found" for name in rules.TYPES))
+    rests = ("SDC", *with_findings(IRREGULARITIES))
     return [
         _collectors(scope, category, rests),
         _follows(scope, "discontinuous", OFFSETS, rule("12.3.3.3"), rests,

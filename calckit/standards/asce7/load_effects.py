@@ -14,7 +14,7 @@ from calckit.core.record import NOT_CHECKED, NOT_OK, OK, Line, Source
 from calckit.errors import Fault, InputError, ScopeError
 from calckit.standards.asce7 import load_effects_rules as rules
 from calckit.standards.asce7.clauses import rule, rule_of
-from calckit.standards.asce7.found import found, with_findings
+from calckit.standards.asce7.found import finding, with_findings
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -120,7 +120,7 @@ def _directions(scope: Scope) -> Handle:
 
 
 def _taken_together(scope: Scope) -> tuple[str, str, str]:
-    category, nonparallel, shared = scope.word("SDC"), found(scope, "H5"), scope.word("two_systems")
+    category, nonparallel, shared = scope.word("SDC"), finding(scope, "H5"), scope.word("two_systems")
     if category is None:
         return NOT_CHECKED, "", "SDC (seismic design category)"
     if category == "B":

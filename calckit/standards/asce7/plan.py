@@ -16,7 +16,9 @@ from calckit.core.record import NOT_CHECKED, Flag
 from calckit.errors import Fault, InputError, ScopeError, UnknownNameError
 from calckit.standards.asce7 import plan_rules as rules
 from calckit.standards.asce7.clauses import rule
-from calckit.standards.asce7.irregularity import AMPLIFIED, NEW, diaphragm_class, edition, irregular, present, question
+from calckit.standards.asce7.found import finding, present
+from calckit.standards.asce7.hazard import of_2022
+from calckit.standards.asce7.irregularity import AMPLIFIED, question
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -132,7 +134,7 @@ def _take(scope: Scope, symbol: str, listed: str, id_: str, level: str, faults: 
 # rigid
 def rigid(scope: Scope, level: str, along_x: str, along_y: str) -> Handles:
     """Relative rigidity with inherent and accidental torsion, both shifts of the mass, in one or both directions."""
-    kind = diaphragm_class(scope)
+    kind = finding(scope, "diaphragm")
     if kind in ("flexible", "semirigid"):
         cure = "use flexible_distribution" if kind == "flexible" else "paste the analysis into pasted_distribution"
         raise ScopeError(f"{scope.labelled('distribution by rigidity')}: the diaphragm is {kind}; {cure}")
@@ -240,7 +242,7 @@ def _own_ratio(scope: Scope, axis: int, direction: Scope) -> None:
     ratios = [float(carried(scope.number(f"r_u{a}{name}") or 0.0, COMPARED)) for name, _ in rules.CASES]
     word = "over 1.4" if max(ratios) > 1.4 else "over 1.2" if max(ratios) > 1.2 else "none"
     flags = []
-    said = irregular(direction, "H1a")
+    said = finding(direction, "H1a")
     if word != "none" and said == "no":
         text = f"{scope.id_of(f'plan_{a}')} is {word} in this story, but {direction.id_of('H1a')} reads no"
         flags.append(Flag(text, True, "originator"))
@@ -257,7 +259,7 @@ def _single(scope: Scope) -> bool:
 
 def _torsion_known(scope: Scope, axis: int, direction: Scope) -> tuple[bool | None, bool | None]:
     """Whether the direction has types H1a and H1b; None where nothing says so."""
-    words = [irregular(direction, name) for name in ("H1a", "H1b")]
+    words = [finding(direction, name) for name in ("H1a", "H1b")]
     severe, some = (None if word is None else word == "yes" for word in reversed(words))
     if _single(scope):
         here = scope.word(f"plan_{rules.AXES[axis][0]}")
@@ -280,7 +282,7 @@ def _factor(scope: Scope, axis: int, id_: str, level: str) -> str:
     rests = ("SDC", f"plan_{a}", f"accidental_{a}")
     if scope.word(f"accidental_{a}") == "omitted where permitted":
         needed = severe if category == "B" else some if category in AMPLIFIED else False
-        if needed is False and edition(scope) != NEW:
+        if needed is False and not of_2022(scope):
             detail = f"accidental torsion left out of the forces, design category {category}: 0"
             scope.state(name, "0", "table", rule("12.8.4.2", obtained="found"), detail=detail, rests=rests)
             return ""
@@ -292,7 +294,7 @@ def _factor(scope: Scope, axis: int, id_: str, level: str) -> str:
         return ""
     if some is None:
         return f"{direction.id_of('H1a')}, {direction.id_of('H1b')}: paste the ends, or answer them"
-    if edition(scope) == NEW:
+    if of_2022(scope):
         return f"{scope.id_of(name)}: how this edition amplifies accidental torsion is not known to the kit; give it"
     listed = f"{id_}.A_x" if id_ else "A_x"
     if _single(scope):
@@ -323,7 +325,7 @@ def _design(scope: Scope, wanted: list[int], level: str) -> Handles:
 # flexible
 def flexible(scope: Scope, level: str, direction: str) -> Handles:
     """Tributary width for the lines of vertical elements; shear, moment and chord force of simple spans."""
-    kind = diaphragm_class(scope)
+    kind = finding(scope, "diaphragm")
     if kind in ("rigid", "semirigid"):
         raise ScopeError(f"{scope.labelled('distribution by tributary width')}: the diaphragm is {kind}, not flexible")
     faults = [scope.missing(n) for n in ("b_i", "L_s", "d_s") if scope.find(n) is None]

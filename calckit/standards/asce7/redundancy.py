@@ -13,7 +13,7 @@ from calckit.core.record import Flag
 from calckit.errors import Fault, InputError
 from calckit.standards.asce7 import irregularity_rules as rules
 from calckit.standards.asce7.clauses import rule
-from calckit.standards.asce7.irregularity import irregular, present
+from calckit.standards.asce7.found import finding, present
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -105,7 +105,7 @@ def _perimeter(scope: Scope, stories: list[str]) -> Reading:
     found, unknown = present(scope, PLAN_TYPES)
     others = [part for part in scope.calc.parts.values() if part is not scope]
     own = set(found)
-    found += [f"{p.id}.{n}" for p in others for n in PLAN_TYPES if n not in own and irregular(p, n) == "yes"]
+    found += [f"{p.id}.{n}" for p in others for n in PLAN_TYPES if n not in own and finding(p, n) == "yes"]
     if found:
         return False, f"not met, irregular in plan by {', '.join(found)}"
     columns = [_by_story(scope, name, stories) for name in ("n_bay1", "n_bay2")]

@@ -16,9 +16,8 @@ from calckit.core.table import load
 from calckit.errors import InputError, ScopeError
 from calckit.standards.asce7 import formulas
 from calckit.standards.asce7.clauses import rule
-from calckit.standards.asce7.hazard import PACKAGE, study
-from calckit.standards.asce7.irregularity import NEW, NUMBERED, edition, present
-from calckit.standards.asce7.irregularity_rules import TYPES
+from calckit.standards.asce7.found import IRREGULARITIES, present, with_findings
+from calckit.standards.asce7.hazard import PACKAGE, of_2022, study
 from calckit.standards.asce7.margins import to_limit
 from calckit.standards.asce7.systems import height_conditions, system_row
 from calckit.standards.asce7.wall_period import period_of_walls
@@ -30,7 +29,7 @@ TOLERATED = {"H2", "H3", "H4", "H5", "V4", "V5a", "V5b"}
 """Irregularities with which equivalent lateral forces stay permitted up to 160 ft (Table 12.6-1)."""
 PROHIBITED = {"D": {"V5b"}, "E": {"H1b", "V1b", "V5a", "V5b"}, "F": {"H1b", "V1b", "V5a", "V5b"}}
 """Irregularities that 12.3.3.1 prohibits, by design category."""
-RESTS = ("SDC", "risk_category", "system", "h_n", "h_x", "T", "T_S", *NUMBERED, *(f"{name}_found" for name in TYPES))
+RESTS = ("SDC", "risk_category", "system", "h_n", "h_x", "T", "T_S", *with_findings(IRREGULARITIES))
 """What the permitted procedure rests on."""
 
 
@@ -177,7 +176,7 @@ def _prohibited(scope: Scope) -> tuple[str, str, str]:
     if category is None:
         return NOT_CHECKED, "", "SDC (seismic design category)"
     wanted = PROHIBITED.get(category, set())
-    there, unanswered = present(scope, NUMBERED)
+    there, unanswered = present(scope, IRREGULARITIES)
     if found := sorted(wanted & set(there)):
         return NOT_OK, f"{', '.join(found)} is prohibited in design category {category}", ""
     if waiting := sorted(wanted & set(unanswered)):
@@ -198,7 +197,7 @@ def _weak_story(scope: Scope, category: str) -> tuple[str, str, str]:
 
 
 def _table_12_6_1(scope: Scope) -> tuple[str, str, str]:
-    if edition(scope) == NEW:
+    if of_2022(scope):
         return NOT_CHECKED, "", "the rule of ASCE 7-22 on permitted procedures, which is not known to the kit"
     category, risk = scope.word("SDC"), scope.word("risk_category")
     levels, h_n = scope.find("h_x"), scope.number("h_n", "ft")
@@ -210,7 +209,7 @@ def _table_12_6_1(scope: Scope) -> tuple[str, str, str]:
         return OK, f"risk category {risk}, not more than two stories", ""
     if "light frame" in (scope.word("system") or ""):
         return OK, "light frame construction", ""
-    there, unanswered = present(scope, NUMBERED)
+    there, unanswered = present(scope, IRREGULARITIES)
     if unanswered:
         return NOT_CHECKED, "", f"answers {', '.join(unanswered)}"
     if h_n <= 160 and set(there) <= TOLERATED:

@@ -35,8 +35,14 @@ def _question(name: str, meaning: str) -> Symbol:
 _GROUND_MOTION = (
     _ordinate("S_S", "mapped risk-targeted spectral ordinate at 0.2 s"),
     _ordinate("S_1", "mapped risk-targeted spectral ordinate at 1 s"),
-    Symbol("site_class", "site class", "words", choices=("A", "B", "B assumed", "C", "D", "D default", "E", "F")),
-    Symbol("hazard_basis", "where the design ordinates come from", "words", choices=("mapped", "site-specific")),
+    Symbol(
+        "site_class", "site class", "words",
+        choices=("A", "B", "B assumed", "BC", "C", "CD", "D", "D default", "DE", "E", "F", "default"),
+    ),
+    Symbol(
+        "hazard_basis", "where the design ordinates come from", "words",
+        choices=("mapped", "printout", "site-specific"),
+    ),
     Symbol(
         "study_exception", "what is taken in place of the ground motion hazard analysis of 11.4.8", "words",
         choices=("exception 1", "exception 2", "exception 3", "S_M1 increased", "study made", "not needed"),

@@ -13,7 +13,7 @@ from calckit import units
 from calckit.core.calc import Calc
 from calckit.core.handle import Handle
 from calckit.errors import MismatchError
-from calckit.standards.asce7 import verify_effects, verify_plan, verify_structure
+from calckit.standards.asce7 import verify_effects, verify_ground, verify_plan, verify_structure
 
 Given = Mapping[str, Any]
 Results = dict[str, Any]
@@ -23,19 +23,19 @@ _MASONRY = "building frame: special reinforced masonry"
 _HOUSE = "bearing wall: light frame wood with wood panel or steel sheet"
 
 
-def _start(**inputs: Any) -> Calc:
+def _start(edition: str = "ASCE 7-16", /, **inputs: Any) -> Calc:
     """A calculation with the inputs of a check, each from the document that the check names."""
-    calc = Calc(project="Published check", number="verify")
+    calc = Calc(project="Published check", number="verify", standard=edition)
     calc.document("P", title="The document named by the check")
     for name, value in inputs.items():
         calc.given(name, value, source="P")
     return calc
 
 
-def _site_specific(given: Given, **more: Any) -> Calc:
+def _site_specific(given: Given, edition: str = "ASCE 7-16", /, **more: Any) -> Calc:
     """Started from design ordinates; S_S, T_L and the site class do not enter the quantities checked."""
     unused = {"S_S": 1.0, "S_1": given["S_1"], "T_L": f"{given.get('T_L', 8)} s", "site_class": "C"}
-    calc = _start(hazard_basis="site-specific", **unused, **more)
+    calc = _start(edition, hazard_basis="site-specific", **unused, **more)
     calc.asce7.site_specific_values(given["S_DS"], given.get("S_D1", given.get("S_D1_rounded")), source="P")
     calc.asce7.design_spectrum()
     return calc
@@ -224,8 +224,11 @@ def _house(given: Given) -> Results:
 
 
 def _spectrum(given: Given) -> Results:
-    calc = _site_specific({"S_1": 0.6, **given})
-    return {"S_a": calc.asce7.spectrum_ordinates(given["T"]).value}
+    calcs = [_site_specific({"S_1": 0.6, **given}, edition) for edition in ("ASCE 7-16", "ASCE 7-22")]
+    first, second = (calc.asce7.spectrum_ordinates(given["T"]).value for calc in calcs)
+    if first != second:
+        raise MismatchError(f"S_a: 7-16 gives {first}, the two-period spectrum of 7-22 {second}")
+    return {"S_a": first}
 
 
 def _coefficients(given: Given) -> Results:
@@ -267,5 +270,6 @@ ADAPTERS: dict[str, Callable[[Given], Results]] = {
     **verify_effects.ADAPTERS,
     **verify_plan.ADAPTERS,
     **verify_structure.ADAPTERS,
+    **verify_ground.ADAPTERS,
 }
 """What runs each check, by its id."""

@@ -13,7 +13,7 @@ from calckit.core.record import NOT_CHECKED, Flag
 from calckit.errors import Fault, InputError, ScopeError
 from calckit.standards.asce7 import wall_forces_rules as rules
 from calckit.standards.asce7.clauses import rule
-from calckit.standards.asce7.found import found, with_findings
+from calckit.standards.asce7.found import finding, with_findings
 from calckit.standards.asce7.load_effects import methods
 from calckit.standards.asce7.load_effects_rules import ALLOWABLE
 
@@ -59,7 +59,7 @@ def _above_the_roof(scope: Scope) -> list[Fault]:
 
 def _anchorage(scope: Scope) -> Handle:
     title = "Anchorage of walls"
-    kind = found(scope, "diaphragm")
+    kind = finding(scope, "diaphragm")
     flexible = kind in ("flexible", "semirigid")
     absent = [name for name in ("W_pa", *(("L_f",) if flexible else ())) if not scope.has_number(name)]
     missing = [f"{scope.plain(name)} ({scope.symbol(name).meaning})" for name in absent]

@@ -16,7 +16,7 @@ from calckit.errors import UnknownNameError
 from calckit.standards.asce7.declared import SYMBOLS
 
 PACKAGE = "calckit.standards.asce7"
-NAMES = ("C_t", "C_u", "F_a", "F_v", "I_e", "category_S_D1", "category_S_DS", "drift", "systems")
+NAMES = ("C_t", "C_u", "F_PGA", "F_a", "F_v", "I_e", "category_S_D1", "category_S_DS", "drift", "systems")
 OF_7_22 = ("systems_7_22",)
 """Tables that ASCE 7-22 alone has."""
 HEADER = (
