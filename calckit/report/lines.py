@@ -52,7 +52,7 @@ class Lines:
         }
         self._used: dict[str, list[Line]] = {}
         for line in lines:
-            for id_ in {**line.inputs, **dict.fromkeys(c.line for c in line.candidates)}:
+            for id_ in _rests_on(line):
                 self._used.setdefault(id_, []).append(line)
 
     def ref(self, id_: str) -> Ref | None:
@@ -67,7 +67,7 @@ class Lines:
 
     def inputs(self, line: Line) -> tuple[Ref, ...]:
         """The lines that a line rests on."""
-        return self.refs([*line.inputs, *(candidate.line for candidate in line.candidates)])
+        return self.refs(_rests_on(line))
 
     def used_in(self, line: Line) -> tuple[Ref, ...]:
         """The lines that rest on a line."""
@@ -163,6 +163,12 @@ class Lines:
         number = self.open_number(line, flag)
         closed_by = self.closed_by(line) if flag.open and not number else None
         return FlagView("" if _said(line, flag) else flag.text, number, flag.owner, closed_by)
+
+
+def _rests_on(line: Line) -> list[str]:
+    """What stands in a line or is compared by it, each once; what is absent is no line, even if one came later."""
+    there = [id_ for id_, operand in line.inputs.items() if not operand.is_absent()]
+    return list(dict.fromkeys([*there, *(candidate.line for candidate in line.candidates)]))
 
 
 def open_items(record: Record) -> list[OpenItem]:
