@@ -23,6 +23,8 @@ NOT_OK = "NOT OK"
 NOT_CHECKED = "NOT CHECKED"
 
 STATUSES = ("preliminary", "for check", "checked", "for construction", "superseded", "void")
+WITHDRAWN = ("superseded", "void")
+"""Statuses that withdraw a revision: marked at the head of every sheet, written beside the files they withdraw."""
 
 TO_BE_CONFIRMED = "to be confirmed against the standard"
 
