@@ -166,8 +166,8 @@ def issue(
 ) -> Issued:
     """Issue a notebook into a folder; `former` is an issued file of the earlier revision.
 
-    Raises as `produce` does, and CommandError if the former file cannot be used, if files of an issued revision stand there or a file cannot be written;
-    earlier files are then as they were.
+    Raises as `produce` does, and CommandError if the former file cannot be used, if files of an issued revision stand
+    there or a file cannot be written; earlier files are then as they were.
     """
     report = produce(notebook, settings, formats, revised.open_former(former) if former else None)
     notices = [*report.notices, *_earlier(folder, report.name)]

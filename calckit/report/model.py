@@ -374,8 +374,9 @@ class View:
     `short_hash` stands in the footer of every sheet, `standing` ("SUPERSEDED", "VOID") at its head unless it is blank.
     Sheets are counted from `first_sheet` and named with `sheet_prefix`. `sign_off` are (role, printed name).
     `seal_fields` take the place of the clear space for seal and signature in a preliminary issue; `seal_caption` stands
-    above either. `left_open` is said on the cover of an issue for construction with open items. `revised` is None in an issue that names no former one. `counts` are the checks by verdict. `margins` say
-    how near a value stands to the next limit. `notices` are for the reader of this copy (characters not printed).
+    above either. `left_open` is said on the cover of an issue for construction with open items. `revised` is None in an
+    issue that names no former one. `counts` are the checks by verdict. `margins` say how near a value stands to the
+    next limit. `notices` are for the reader of this copy (characters not printed).
     """
 
     paper: Literal["Letter", "A4"]

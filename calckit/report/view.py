@@ -69,8 +69,8 @@ def build(record: Record, content: Content, revised: Revised | None = None) -> V
     """The document model of a record.
 
     `content` is the notebook in order: ("prose", blocks) for a Markdown cell, ("cell", k) for the k-th code cell that
-    ran. A heading of level 1 or 2 starts a section. `revised` is what changed against the former issue. Raises KeyError if the record misses a field of the title block or
-    a printed form.
+    ran. A heading of level 1 or 2 starts a section. `revised` is what changed against the former issue.
+    Raises KeyError if the record misses a field of the title block or a printed form.
     """
     facts = record.calculation
     lines = Lines(record, dict(revised.was) if revised else {})

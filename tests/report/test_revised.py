@@ -135,7 +135,8 @@ def thick_rules(found: Sheets, number: int) -> list[tuple[float, float]]:
 def test_the_section_tells_each_kind_of_change_in_both_files() -> None:
     wanted = (
         "What changed since revision A", "Inputs changed: 1", "800 kip", "880 kip", "+10.0 %",
-        "Results moved: on the summary sheets: 1", "250.0 kip", "Lines added: 1", "w_roof", "Lines removed: 1", "N-gone",
+        "Results moved: on the summary sheets: 1", "250.0 kip", "Lines added: 1", "w_roof", "Lines removed: 1",
+        "N-gone",
         "Open items closed: 1", "a question since answered",
         "Held against C-207, revision A, for check, 2026-11-01 (C-207_A.record.json)",
     )  # fmt: skip
@@ -249,7 +250,7 @@ def test_texts_are_data() -> None:
     [
         ({"number": "C-9"}, "it is calculation C-9, this one is C-207; cure: name a file of this one"),
         ({"revision": "B"}, "it is revision B itself; cure: name the file of the earlier revision, or give this one"),
-        ({"revisions": [ROW_A, ROW_B], "revision": "C"}, "it came after revision B; cure: name the file of the earlier"),
+        ({"revisions": [ROW_A, ROW_B], "revision": "C"}, "it came after revision B; cure: name the file of the"),
     ],
 )
 def test_a_file_that_is_no_former_issue(fields: dict[str, Any], message: str) -> None:

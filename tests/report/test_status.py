@@ -103,8 +103,8 @@ def test_the_cover_says_which_items_stay_open_and_why() -> None:
     record = sample.record()
     counts = [sum(item.group == group for item in record.open_items) for group in ("open", "confirm")]
     said = (
-        f"Issued for construction with open items: {counts[0]} to be closed (No. 1 to {counts[0]}) and {counts[1]} to be "
-        f"confirmed against the standard (No. 1 to {counts[1]}). Reason given: survey follows by addendum, J. Doe"
+        f"Issued for construction with open items: {counts[0]} to be closed (No. 1 to {counts[0]}) and {counts[1]} to "
+        f"be confirmed against the standard (No. 1 to {counts[1]}). Reason given: survey follows by addendum, J. Doe"
     )
     assert squeezed(said) in squeezed(in_pdf(**fields).reader.pages[0].extract_text())
     assert f"<strong>{said}</strong>" in in_html(**fields)
@@ -137,7 +137,7 @@ def test_every_sheet_of_a_withdrawn_revision_bears_the_word(status: str) -> None
         assert mark.y <= 792 - 36 and all(run.y < mark.y for run in runs if run is not mark), "above all other text"
     page = in_html(status=status)
     assert f'<p class="standing">{word}</p>' in page
-    assert f'@top-center {{ width: 20%;' in page and f'content: "[ " "{word}" " ]"; }}' in page
+    assert "@top-center { width: 20%;" in page and f'content: "[ " "{word}" " ]"; }}' in page
 
 
 def test_a_revision_in_force_bears_no_mark() -> None:
