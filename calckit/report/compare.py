@@ -26,7 +26,8 @@ CAUTION = (
 )
 _LONG = 64  # characters of old and new together above which each stands on a row of its own at the terminal
 _SHORT = 160  # characters of a notebook text that are shown
-_SET_VALUE = "set value "
+SET_VALUE = "set value "
+"""How a difference in the settings names a value that was set for the issue."""
 _NO_PARCEL = "settings, files and text cells were not compared: a record file does not hold them"
 
 
@@ -164,7 +165,7 @@ def _entries(parcel: Parcel, titles: Container[str]) -> Iterator[tuple[str, str]
         values: Mapping[str, str] = settings.get("set") or {}
         named: Mapping[str, str] = settings.get("files") or {}
         register: str = settings.get("confirmed") or ""
-        found = [*((f"{_SET_VALUE}{id_}", str(value)) for id_, value in values.items() if id_ not in titles)]
+        found = [*((f"{SET_VALUE}{id_}", str(value)) for id_, value in values.items() if id_ not in titles)]
         found += [(f"file {name}", _content(text.encode())) for name, text in named.items()]
     except (ValueError, AttributeError) as error:
         raise MismatchError(f"the attached settings cannot be read: {error}") from error
@@ -277,7 +278,7 @@ def narrative(comparison: Comparison) -> list[str]:
     for lead, changes in (
         ("", changed.criteria),
         ("Input ", changed.inputs),
-        ("", tuple(one for one in comparison.settings if not one.id.startswith(_SET_VALUE))),  # its line says more
+        ("", tuple(one for one in comparison.settings if not one.id.startswith(SET_VALUE))),  # its line says more
         ("Override of ", changed.overrides),
         ("Line ", changed.formulas),
         ("Decision at ", changed.decisions),
@@ -345,7 +346,7 @@ def _former(steps: list[Step]) -> str:
     rows = [step for step in steps if step.what.startswith("row ")]
     values = [step.old for step in steps if not step.what]
     if rows:
-        return "; ".join(f"{step.what.removeprefix('row ')}: {step.old}" for step in rows)
+        return ", ".join(f"{step.old} at {step.what.removeprefix('row ')}" for step in rows)
     return values[0] if values else "; ".join(f"{step.what}: {step.old}" for step in steps)
 
 

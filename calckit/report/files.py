@@ -13,21 +13,27 @@ from collections.abc import Mapping, Sequence
 from contextlib import suppress
 from pathlib import Path
 
+from calckit.core.record import WITHDRAWN
 from calckit.errors import CommandError
 
 _UNFIT = re.compile(r'[<>:"/\\|?*\x00-\x1f\x7f]|^[. ]|[. ]$')
 
 
-def report_name(number: str, revision: str, stem: str) -> str:
+def report_name(number: str, revision: str, stem: str, status: str = "") -> str:
     """The name of an issue, without ending: `<number>_<revision>`, the notebook's stem if the number is blank.
+
+    A revision that is withdrawn has its status at the end, so that the files that were in force stay beside it.
 
     >>> report_name("C-101/2", "A", "building"), report_name("", "A", "building")
     ('C-101-2_A', 'building')
+    >>> report_name("C-101", "A", "building", "superseded")
+    'C-101_A_superseded'
     """
     number, revision = number.strip(), revision.strip()
+    ending = f"_{status}" if status in WITHDRAWN else ""
     if not number:
-        return stem
-    return _UNFIT.sub("-", f"{number}_{revision}" if revision else number)
+        return stem + ending
+    return _UNFIT.sub("-", f"{number}_{revision}" if revision else number) + ending
 
 
 def replace_together(folder: Path, files: Mapping[str, bytes]) -> list[Path]:

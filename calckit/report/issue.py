@@ -19,14 +19,16 @@ from calckit.core.record import (
     NOT_OK,
     STATUSES,
     TO_BE_CONFIRMED,
+    WITHDRAWN,
     Line,
     Record,
     from_json,
     lines_hash,
 )
 from calckit.errors import CommandError, MismatchError, NotebookError
-from calckit.report import enclosures, html, pdf, seal, view
+from calckit.report import enclosures, html, pdf, revised, seal, view
 from calckit.report.attachments import Attachment, Parcel, inputs_hash
+from calckit.report.compare import Issue
 from calckit.report.files import replace_together, report_name
 from calckit.report.model import Block, Content, View
 from calckit.report.notebook import Notebook
@@ -36,6 +38,7 @@ from calckit.report.run import Outcome, Problem, Settings, run
 
 FORMATS = ("html", "pdf")
 _REPLACEABLE = ("preliminary", "for check")
+_WITHDRAW = '; to withdraw it, issue with --status superseded or void, which writes beside it'
 _DAY = re.compile(r"\d{4}-\d{2}-\d{2}")
 
 
@@ -98,9 +101,12 @@ def settings_from(
     return Settings(values, files, status, day, next(iter(register.values()), None))
 
 
-def produce(notebook: Notebook, settings: Settings, formats: Sequence[str] = FORMATS) -> Report:
+def produce(
+    notebook: Notebook, settings: Settings, formats: Sequence[str] = FORMATS, former: Issue | None = None
+) -> Report:
     """Run the notebook and make the report in these formats; nothing is written.
 
+    With the `former` issue named, what changed since is told and flagged.
     Raises NotebookError if a cell raises, and CommandError if a set value is at fault or the issue is refused.
     """
     with ThreadPoolExecutor(len(FORMATS)) as pool:
@@ -114,11 +120,12 @@ def produce(notebook: Notebook, settings: Settings, formats: Sequence[str] = FOR
         record.lines_hash = lines_hash(record.lines)
         record.seals = None
         parcel = Parcel(notebook.stem, notebook.bare(), given, outcome.files, record.to_json().encode())
-        model = view.build(record, _content(notebook, record))
+        changed = revised.revised(former, record, parcel) if former else None
+        model = view.build(record, _content(notebook, record), changed)
         writers = {form: pool.submit(_WRITERS[form], model, record, outcome, parcel.pack()) for form in formats}
         written = {form: writer.result() for form, writer in writers.items()}
     fields = record.calculation
-    name = report_name(fields.get("number", ""), fields.get("revision", ""), notebook.stem)
+    name = report_name(fields.get("number", ""), fields.get("revision", ""), notebook.stem, fields["status"])
     notices = [notice for _, said in written.values() for notice in said]
     return Report(name, record, {form: seal.apply(data) for form, (data, _) in written.items()}, notices)
 
@@ -150,13 +157,19 @@ def _pdf(model: View, record: Record, outcome: Outcome, attached: Sequence[Attac
 _WRITERS = {"html": _html, "pdf": _pdf}
 
 
-def issue(notebook: Notebook, settings: Settings, folder: Path, formats: Sequence[str] = FORMATS) -> Issued:
-    """Issue a notebook into a folder.
+def issue(
+    notebook: Notebook,
+    settings: Settings,
+    folder: Path,
+    formats: Sequence[str] = FORMATS,
+    former: Path | None = None,
+) -> Issued:
+    """Issue a notebook into a folder; `former` is an issued file of the earlier revision.
 
-    Raises as `produce` does, and CommandError if files of an issued revision stand there or a file cannot be written;
-    earlier files are then as they were.
+    Raises as `produce` does, and CommandError if the former file cannot be used, if files of an issued revision stand
+    there or a file cannot be written; earlier files are then as they were.
     """
-    report = produce(notebook, settings, formats)
+    report = produce(notebook, settings, formats, revised.open_former(former) if former else None)
     notices = [*report.notices, *_earlier(folder, report.name)]
     seals = {form: seal.seal_of(data) for form, data in report.files.items()}
     for form in FORMATS:
@@ -267,13 +280,15 @@ def _refuse_status(record: Record) -> None:
     faults = []
     if status == "checked" and originator and originator.casefold() == fields.get("checked_by", "").strip().casefold():
         faults.append(f"checked_by is the originator, {originator}; cure: another person checks it")
-    if status == "for construction" and record.open_items:
+    if status == "for construction" and record.open_items and not fields.get("open_items_accepted", "").strip():
         ids = ", ".join(item.id for item in record.open_items[:6])
         more = len(record.open_items) - 6
         faults.append(
             f"{len(record.open_items)} open items: {ids}{f' and {more} more' if more > 0 else ''}; "
-            'cure: close them, or issue "for check"'
+            'cure: close them, issue "for check", or say on the cover why they stay open, '
+            'Calc(open_items_accepted="reason, by whom")'
         )
+    faults += revised.revision_faults(record)
     if not fields["date"]:
         faults.append('no date; cure: write Calc(date="2026-12-01"), or give --date')
     if faults:
@@ -306,7 +321,7 @@ def _refuse_status_of(path: Path, record: Record | None) -> None:
     if status not in _REPLACEABLE:
         raise CommandError(
             f'{path} is issued with status "{status}" and is never overwritten; cure: give the calculation its next '
-            "revision, Calc(revision=...)"
+            "revision, Calc(revision=...)" + _WITHDRAW * (status not in WITHDRAWN)
         )
 
 
