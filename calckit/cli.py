@@ -81,6 +81,9 @@ def _parser() -> argparse.ArgumentParser:
     issue.add_argument("--status", metavar="WORD", help=f"one of: {', '.join(STATUSES)}")
     issue.add_argument("--date", metavar="DAY", help="date of the issue, such as 2026-12-01")
     issue.add_argument("--confirmed", metavar="FILE", help="office register of values confirmed against the standard")
+    issue.add_argument(
+        "--check-log", metavar="FILE", type=Path, help="check log (CSV): print its marks and comments, tie its new rows"
+    )
     issue.add_argument("--only", choices=("html", "pdf"), help="write this form alone")
     issue.set_defaults(command=_issue)
 
@@ -176,7 +179,7 @@ def _issue(arguments: argparse.Namespace) -> int:
     word.start()
     try:
         formats = (arguments.only,) if arguments.only else issue.FORMATS
-        issued = issue.issue(source, settings, arguments.to, formats)
+        issued = issue.issue(source, settings, arguments.to, formats, check_log=arguments.check_log)
     finally:
         word.cancel()
     print(issued.text)

@@ -23,6 +23,7 @@ NOT_OK = "NOT OK"
 NOT_CHECKED = "NOT CHECKED"
 
 STATUSES = ("preliminary", "for check", "checked", "for construction", "superseded", "void")
+CHECK_LEVELS = ("", "self", "other person", "other organization")
 
 TO_BE_CONFIRMED = "to be confirmed against the standard"
 

@@ -9,7 +9,10 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import Literal
+from typing import TYPE_CHECKING, Literal
+
+if TYPE_CHECKING:
+    from calckit.report.checked import CheckedView
 
 # --- the text of the notebook's Markdown cells
 
@@ -362,7 +365,8 @@ class SoftwareView:
 class View:
     """The whole report.
 
-    `short_hash` stands in the footer of every sheet. `sign_off` are (role, printed name). `seal_fields` take the place
+    `short_hash` stands in the footer of every sheet. `sign_off` are (role, printed name), `check` (label, entry) of how
+    the check was made, `checked` is None in an issue without a check log. `seal_fields` take the place
     of the clear space for seal and signature in a preliminary issue. `counts` are the checks by verdict. `margins` say
     how near a value stands to the next limit. `notices` are for the reader of this copy (characters not printed).
     """
@@ -374,6 +378,7 @@ class View:
     revisions: tuple[Revision, ...]
     statements: tuple[Statement, ...]
     sign_off: tuple[tuple[str, str], ...]
+    check: tuple[tuple[str, str], ...]
     seal_fields: tuple[tuple[str, str], ...]
     answer: tuple[SummaryView, ...]
     drawings: tuple[SummaryView, ...]
@@ -393,4 +398,5 @@ class View:
     field_of_use: tuple[str, ...]
     not_covered: tuple[str, ...]
     cautions: tuple[str, ...]
+    checked: CheckedView | None = None
     notices: tuple[str, ...] = ()

@@ -12,6 +12,7 @@ from typing import Any
 
 from calckit import units
 from calckit.core.record import NOT_CHECKED, NOT_OK, OK, Line, OpenItem, Record, Summary, Table, digest
+from calckit.report import checked, checklog
 from calckit.report.lines import Lines, open_items, source, typeset
 from calckit.report.model import (
     AssumptionView,
@@ -81,6 +82,7 @@ def build(record: Record, content: Content) -> View:
         revisions=_revisions(facts),
         statements=tuple(_statements(record, lines)),
         sign_off=tuple(zip(_ROLES, (facts["prepared_by"], facts["checked_by"], ""), strict=True)),
+        check=checked.sign_off(facts),
         seal_fields=_seal_fields(facts),
         answer=_summaries(record, "answer", lines),
         drawings=_summaries(record, "drawings", lines),
@@ -139,9 +141,9 @@ def _statements(record: Record, lines: Lines) -> Iterator[Statement]:
     yield Statement("Open items in all", str(open_ones) if open_ones else "none")
     unread = len(record.open_items) - open_ones
     yield Statement("Tables and clauses to be confirmed against the standard", str(unread) if unread else "none")
-    originator, checker = facts["prepared_by"].strip(), facts["checked_by"].strip()
-    if originator and originator.casefold() == checker.casefold():
-        yield Statement("Self-check", f"{originator} is named both as originator and as checker")
+    said = checklog.self_check(facts)
+    if said:
+        yield Statement("Self-check", said.partition(": ")[2])
 
 
 def _statement(label: str, found: list[Line]) -> Statement:
