@@ -9,7 +9,6 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, replace
 from pathlib import Path
-from typing import Any
 
 from calckit.core.record import Line, Record, from_json
 from calckit.report import checklog
@@ -121,14 +120,20 @@ class CheckedView:
     counts: tuple[tuple[str, int], ...]
 
 
-def sign_off(facts: Mapping[str, Any]) -> tuple[tuple[str, str], ...]:
-    """What the sign-off block says of the check: as entered in the title block, blank until then.
+def sign_off(record: Record) -> tuple[tuple[str, str], ...]:
+    """What the sign-off block says of the check: as entered in the title block, else with room to write.
 
-    >>> sign_off({"check_level": "other person"})[0]
+    >>> sign_off(Record({"check_level": "other person"}))[0]
     ('Level of the check', 'other person')
     """
-    stated = ((_LEVEL, facts.get("check_level", "")), (_METHOD, facts.get("check_method", "")))
-    return (*stated, (_LINES, ""), (_INPUTS, ""))
+    facts = record.calculation
+    inputs = sum(line.kind in checklog.INPUT_KINDS for line in record.lines)
+    return (
+        (_LEVEL, facts.get("check_level", "")),
+        (_METHOD, facts.get("check_method", "")),
+        (_LINES, f"_____ of {len(record.lines)}"),
+        (_INPUTS, f"_____ of {inputs}"),
+    )
 
 
 def former_beside(folder: Path, name: str, record: Record) -> Record | None:

@@ -193,7 +193,7 @@ def issue(
     contents = {f"{report.name}.{form}": data for form, data in report.files.items()}
     if check_log and report.laid and report.laid.tied:
         if checklog.read(check_log) != log:
-            raise CommandError(f"{check_log} was changed while the notebook ran; nothing was written; cure: issue again")
+            raise CommandError(f"{check_log} was changed while the notebook ran; nothing was written; issue again")
         contents = {str(check_log.resolve()): report.laid.log.to_csv().encode(), **contents}
     contents[report.name + RECORD_ENDING] = report.record.sealed(seals).to_json().encode()
     paths = replace_together(folder, contents)

@@ -35,7 +35,7 @@ def respond(log_path: Path, report: Path, to: Path) -> str:
     record = record_of(seal.issued_bytes(data))
     log = checklog.read(log_path)
     marks = checklog.expand(log, record)
-    comments = checked.comments(marks)
+    comments = sorted(checked.comments(marks), key=lambda one: one.number)
     if not comments:
         raise CommandError(f"{log_path} holds no comment to be answered")
     path = to / (_name(record, report) + _ENDING) if to.is_dir() else to

@@ -82,7 +82,7 @@ def build(record: Record, content: Content) -> View:
         revisions=_revisions(facts),
         statements=tuple(_statements(record, lines)),
         sign_off=tuple(zip(_ROLES, (facts["prepared_by"], facts["checked_by"], ""), strict=True)),
-        check=checked.sign_off(facts),
+        check=checked.sign_off(record),
         seal_fields=_seal_fields(facts),
         answer=_summaries(record, "answer", lines),
         drawings=_summaries(record, "drawings", lines),
