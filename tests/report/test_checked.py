@@ -402,9 +402,10 @@ def test_former_is_the_record_at_the_target_else_the_latest_of_another_revision(
     (tmp_path / "broken.record.json").write_text("{}")
     save("other", number="C-9", date="2026-12-30")
     assert found() == ""
-    save("C-207_A", revision="A", date="2026-11-01")
-    save("C-207_B", revision="B", date="2026-12-01")
-    assert found() == "B"
+    for days, latest in ((("2026-11-01", "2026-12-01"), "B"), (("2026-12-02", "2026-12-01"), "A")):
+        for revision, day in zip("AB", days, strict=True):
+            save(f"C-207_{revision}", revision=revision, date=day)
+        assert found() == latest  # whatever the order of the folder
     save("C-207_C", revision="C", date="2026-10-01")
     assert found() == "C"
 
