@@ -84,6 +84,9 @@ def _parser() -> argparse.ArgumentParser:
     issue.add_argument(
         "--former", metavar="FILE", type=Path, help="issued file of the earlier revision: changes since are flagged"
     )
+    issue.add_argument(
+        "--check-log", metavar="FILE", type=Path, help="check log (CSV): print its marks and comments, tie its new rows"
+    )
     issue.add_argument("--only", choices=("html", "pdf"), help="write this form alone")
     issue.set_defaults(command=_issue)
 
@@ -98,6 +101,12 @@ def _parser() -> argparse.ArgumentParser:
     comments.add_argument("file", metavar="PDF", type=Path)
     comments.add_argument("--check-log", metavar="FILE", type=Path, required=True, help="check log (CSV) to add to")
     comments.set_defaults(command=_comments)
+
+    respond = commands.add_parser("respond", help="write the response to a check log's comments, to be signed by hand")
+    respond.add_argument("log", metavar="LOG", type=Path, help="check log (CSV) with the answers")
+    respond.add_argument("--report", metavar="FILE", type=Path, required=True, help="the issued PDF that meets them")
+    respond.add_argument("--to", metavar="PATH", type=Path, default=Path(), help="file or folder to write to")
+    respond.set_defaults(command=_respond)
 
     files = commands.add_parser("files", help="write a signature report: files with digests, to be signed by hand")
     files.add_argument("files", metavar="FILE", type=Path, nargs="+")
@@ -179,7 +188,9 @@ def _issue(arguments: argparse.Namespace) -> int:
     word.start()
     try:
         formats = (arguments.only,) if arguments.only else issue.FORMATS
-        issued = issue.issue(source, settings, arguments.to, formats, arguments.former)
+        issued = issue.issue(
+            source, settings, arguments.to, formats, former=arguments.former, check_log=arguments.check_log
+        )
     finally:
         word.cancel()
     print(issued.text)
@@ -216,6 +227,13 @@ def _comments(arguments: argparse.Namespace) -> int:
     from calckit.report import comments
 
     print(comments.collect(arguments.file, arguments.check_log))
+    return DONE
+
+
+def _respond(arguments: argparse.Namespace) -> int:
+    from calckit.report import respond
+
+    print(respond.respond(arguments.log, arguments.report, arguments.to))
     return DONE
 
 

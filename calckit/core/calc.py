@@ -14,7 +14,7 @@ from typing import Any
 from calckit.core import settings
 from calckit.core.book import Book, _shell
 from calckit.core.outputs import Outputs
-from calckit.core.record import STATUSES, Enclosure
+from calckit.core.record import CHECK_LEVELS, STATUSES, Enclosure
 from calckit.core.sources import Document, Sources
 from calckit.core.standard import edition
 from calckit.core.symbol import Symbol
@@ -44,8 +44,10 @@ class Calc(Writer):
     not answered; () for none), with `supplements_source`. `first_sheet` and `sheet_prefix` number the sheets ("Sheet
     S-12 of S-30"). A preliminary issue prints `preliminary_fields` under `preliminary_caption` in place of the clear
     space (with () it keeps the space); above the space stands `seal_caption`. `open_items_accepted` is the reason why
-    an issue for construction may leave items open; the cover prints it. Raises InputError naming every bad field at
-    once.
+    an issue for construction may leave items open; the cover prints it. `check_level` (self, other person, other
+    organization) and `check_method` (line by line, alternative method, independent recalculation, comparison with a
+    proven case, or in other words) stay blank until the checker states them. Raises InputError naming every bad field
+    at once.
 
     >>> calc = Calc(project="Harbor Street Clinic", number="C-101", standard="ASCE 7-16")
     >>> calc.document("S-201", title="Framing elevations", revision="2", date="2026-11-14")
@@ -72,6 +74,8 @@ class Calc(Writer):
         purpose: str = "",
         prepared_by: str = "",
         checked_by: str = "",
+        check_level: str = "",
+        check_method: str = "",
         units: str = "US",
         paper: str = "Letter",
         standard: str = "ASCE 7-16",
@@ -253,9 +257,11 @@ def _typed_field(name: str, text: str, own: Any, run: settings.Settings) -> Any:
 
 
 def _field_fault(name: str, value: Any) -> Fault | None:
-    choices = {"status": STATUSES, "units": ("US", "SI"), "paper": ("Letter", "A4")}.get(name)
+    choices = {
+        "status": STATUSES, "units": ("US", "SI"), "paper": ("Letter", "A4"), "check_level": CHECK_LEVELS
+    }.get(name)  # fmt: skip
     if choices and value not in choices:
-        return Fault(name, f"one of {', '.join(choices)}", repr(value))
+        return Fault(name, f"one of {', '.join(filter(None, choices))}", repr(value))
     if name == "project" and not str(value).strip():
         return Fault(name, "the project's name", "blank")
     if name == "date" and value:

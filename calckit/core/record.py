@@ -25,6 +25,7 @@ NOT_CHECKED = "NOT CHECKED"
 STATUSES = ("preliminary", "for check", "checked", "for construction", "superseded", "void")
 WITHDRAWN = ("superseded", "void")
 """Statuses that withdraw a revision: marked at the head of every sheet, written beside the files they withdraw."""
+CHECK_LEVELS = ("", "self", "other person", "other organization")
 
 TO_BE_CONFIRMED = "to be confirmed against the standard"
 

@@ -39,6 +39,7 @@ def report_name(number: str, revision: str, stem: str, status: str = "") -> str:
 def replace_together(folder: Path, files: Mapping[str, bytes]) -> list[Path]:
     """Write files under these names into a folder: all of them, or none.
 
+    A name may be a full path to a file elsewhere.
     Each is written and flushed under a temporary name first; then they take their places in the order given. If one
     cannot, those before it get their earlier content back. The last file should be the one that names the others, so
     that a power cut between two renames leaves a set that shows it.
@@ -52,8 +53,8 @@ def replace_together(folder: Path, files: Mapping[str, bytes]) -> list[Path]:
     """
     token = secrets.token_hex(4)
     targets = [folder / name for name in files]
-    new = [folder / f".{name}.{token}.new" for name in files]
-    old = [folder / f".{name}.{token}.old" for name in files]
+    new = [target.with_name(f".{target.name}.{token}.new") for target in targets]
+    old = [target.with_name(f".{target.name}.{token}.old") for target in targets]
     at, moved = folder, 0
     try:
         folder.mkdir(parents=True, exist_ok=True)
@@ -78,7 +79,8 @@ def replace_together(folder: Path, files: Mapping[str, bytes]) -> list[Path]:
             ) from error
         raise
     _discard(old)
-    _flush_folder(folder)
+    for parent in {target.parent for target in targets}:
+        _flush_folder(parent)
     return targets
 
 

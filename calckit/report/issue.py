@@ -9,7 +9,7 @@ import os
 import re
 from collections.abc import Mapping, Sequence
 from concurrent.futures import ThreadPoolExecutor
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import UTC, date, datetime
 from pathlib import Path
 from typing import Literal
@@ -26,7 +26,7 @@ from calckit.core.record import (
     lines_hash,
 )
 from calckit.errors import CommandError, MismatchError, NotebookError
-from calckit.report import enclosures, html, pdf, revised, seal, view
+from calckit.report import checked, checklog, enclosures, html, pdf, revised, seal, view
 from calckit.report.attachments import Attachment, Parcel, inputs_hash
 from calckit.report.compare import Issue
 from calckit.report.files import replace_together, report_name
@@ -44,13 +44,14 @@ _DAY = re.compile(r"\d{4}-\d{2}-\d{2}")
 
 @dataclass(frozen=True)
 class Report:
-    """A calculation ready to be written: its `record` without seals, the sealed files by format, and `notices` of what
-    a file cannot show as it was typed."""
+    """A calculation ready to be written: its `record` without seals, the sealed files by format, `notices` of what a
+    file cannot show as it was typed, and the check log `laid` over it."""
 
     name: str
     record: Record
     files: Mapping[str, bytes]
     notices: Sequence[str] = ()
+    laid: checked.Laid | None = None
 
 
 @dataclass(frozen=True)
@@ -102,12 +103,21 @@ def settings_from(
 
 
 def produce(
-    notebook: Notebook, settings: Settings, formats: Sequence[str] = FORMATS, former: Issue | None = None
+    notebook: Notebook,
+    settings: Settings,
+    formats: Sequence[str] = FORMATS,
+    *,
+    former: Issue | None = None,
+    log: checklog.Log | None = None,
+    folder: Path = Path(),
 ) -> Report:
     """Run the notebook and make the report in these formats; nothing is written.
 
-    With the `former` issue named, what changed since is told and flagged.
-    Raises NotebookError if a cell raises, and CommandError if a set value is at fault or the issue is refused.
+    With the `former` issue named, what changed since is told and flagged. With a check log it is the checker's copy;
+    new rows of the log were set on the former issue, named or lying in the folder.
+
+    Raises NotebookError if a cell raises, CommandError if a set value is at fault or the issue is refused, and
+    InputError if a row of the log stands on no line.
     """
     with ThreadPoolExecutor(len(FORMATS)) as pool:
         if "html" in formats:
@@ -119,15 +129,20 @@ def produce(
         record.inputs = inputs_hash(record, given, outcome.files)
         record.lines_hash = lines_hash(record.lines)
         record.seals = None
+        fields = record.calculation
+        name = report_name(fields.get("number", ""), fields.get("revision", ""), notebook.stem, fields["status"])
         parcel = Parcel(notebook.stem, notebook.bare(), given, outcome.files, record.to_json().encode())
         changed = revised.revised(former, record, parcel) if former else None
         model = view.build(record, _content(notebook, record), changed)
+        before = former.record if former else checked.former_beside(folder, name, record)
+        laid = checked.lay(log, record, before) if log else None
+        if laid:
+            model = checked.onto(model, record, laid)
+            parcel = replace(parcel, check_log=laid.log.to_csv().encode())
         writers = {form: pool.submit(_WRITERS[form], model, record, outcome, parcel.pack()) for form in formats}
         written = {form: writer.result() for form, writer in writers.items()}
-    fields = record.calculation
-    name = report_name(fields.get("number", ""), fields.get("revision", ""), notebook.stem, fields["status"])
     notices = [notice for _, said in written.values() for notice in said]
-    return Report(name, record, {form: seal.apply(data) for form, (data, _) in written.items()}, notices)
+    return Report(name, record, {form: seal.apply(data) for form, (data, _) in written.items()}, notices, laid)
 
 
 def _accepted(notebook: Notebook, settings: Settings, outcome: Outcome) -> Record:
@@ -162,14 +177,20 @@ def issue(
     settings: Settings,
     folder: Path,
     formats: Sequence[str] = FORMATS,
+    *,
     former: Path | None = None,
+    check_log: Path | None = None,
 ) -> Issued:
-    """Issue a notebook into a folder; `former` is an issued file of the earlier revision.
+    """Issue a notebook into a folder.
+
+    `former` is an issued file of the earlier revision; the check log, if there is one, gets its new rows tied.
 
     Raises as `produce` does, and CommandError if the former file cannot be used, if files of an issued revision stand
-    there or a file cannot be written; earlier files are then as they were.
+    there, or a file cannot be read or written; earlier files, the log among them, are then as they were.
     """
-    report = produce(notebook, settings, formats, revised.open_former(former) if former else None)
+    log = checklog.read(check_log) if check_log else None
+    earlier = revised.open_former(former) if former else None
+    report = produce(notebook, settings, formats, former=earlier, log=log, folder=folder)
     notices = [*report.notices, *_earlier(folder, report.name)]
     seals = {form: seal.seal_of(data) for form, data in report.files.items()}
     for form in FORMATS:
@@ -180,9 +201,15 @@ def issue(
             else:
                 notices.append(f"note: {left} stands from another issue and does not belong to these files")
     contents = {f"{report.name}.{form}": data for form, data in report.files.items()}
+    if check_log and report.laid and report.laid.tied:
+        if checklog.read(check_log) != log:
+            raise CommandError(f"{check_log} was changed while the notebook ran; nothing was written; issue again")
+        contents = {str(check_log.resolve()): report.laid.log.to_csv().encode(), **contents}
     contents[report.name + RECORD_ENDING] = report.record.sealed(seals).to_json().encode()
     paths = replace_together(folder, contents)
     words = [title(report.record), *(f"  {path}" for path in paths), *notices, *account(report.record)]
+    if report.laid:
+        words += checked.account(report.laid, report.record)
     return Issued(paths, "\n".join(words))
 
 
@@ -276,10 +303,12 @@ def _problem(problem: Problem) -> str:
 def _refuse_status(record: Record) -> None:
     """Refuse a status that the calculation's own content contradicts."""
     fields = record.calculation
-    status, originator = fields["status"], fields.get("prepared_by", "").strip()
+    status, said = fields["status"], checklog.self_check(fields)
     faults = []
-    if status == "checked" and originator and originator.casefold() == fields.get("checked_by", "").strip().casefold():
-        faults.append(f"checked_by is the originator, {originator}; cure: another person checks it")
+    if status == "checked" and said:
+        faults.append(f"{said}; cure: another person checks it")
+    elif status == "checked" and fields.get("check_level") == "self":
+        faults.append('check_level is "self"; cure: another person checks it, and check_level says so')
     if status == "for construction" and record.open_items and not fields.get("open_items_accepted", "").strip():
         ids = ", ".join(item.id for item in record.open_items[:6])
         more = len(record.open_items) - 6

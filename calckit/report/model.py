@@ -12,6 +12,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Literal
 
 if TYPE_CHECKING:
+    from calckit.report.checked import CheckedView
     from calckit.report.revised import Revised
 
 # --- the text of the notebook's Markdown cells
@@ -373,11 +374,12 @@ class View:
     """The whole report.
 
     `short_hash` stands in the footer of every sheet, `standing` ("SUPERSEDED", "VOID") at its head unless it is blank.
-    Sheets are counted from `first_sheet` and named with `sheet_prefix`. `sign_off` are (role, printed name).
-    `seal_fields` take the place of the clear space for seal and signature in a preliminary issue; `seal_caption` stands
-    above either. `left_open` is said on the cover of an issue for construction with open items. `revised` is None in an
-    issue that names no former one. `counts` are the checks by verdict. `margins` say how near a value stands to the
-    next limit. `notices` are for the reader of this copy (characters not printed).
+    Sheets are counted from `first_sheet` and named with `sheet_prefix`. `sign_off` are (role, printed name), `check`
+    (label, entry) of how the check was made, `checked` is None in an issue without a check log. `seal_fields` take the
+    place of the clear space for seal and signature in a preliminary issue; `seal_caption` stands above either.
+    `left_open` is said on the cover of an issue for construction with open items. `revised` is None in an issue that
+    names no former one. `counts` are the checks by verdict. `margins` say how near a value stands to the next limit.
+    `notices` are for the reader of this copy (characters not printed).
     """
 
     paper: Literal["Letter", "A4"]
@@ -389,6 +391,7 @@ class View:
     left_open: str
     sign_off: tuple[tuple[str, str], ...]
     seal_caption: str
+    check: tuple[tuple[str, str], ...]
     seal_fields: tuple[tuple[str, str], ...]
     standing: str
     first_sheet: int
@@ -412,4 +415,5 @@ class View:
     not_covered: tuple[str, ...]
     cautions: tuple[str, ...]
     revised: Revised | None = None
+    checked: CheckedView | None = None
     notices: tuple[str, ...] = ()

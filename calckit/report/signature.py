@@ -7,25 +7,18 @@ person, and changes none of the files.
 from __future__ import annotations
 
 import hashlib
-import json
 import os
 from collections.abc import Sequence
 from dataclasses import dataclass
 from datetime import UTC, datetime
-from importlib import resources
 from pathlib import Path
-from tempfile import TemporaryDirectory
-
-import typst
 
 from calckit.core.record import Record, from_json
 from calckit.errors import CommandError, MismatchError
-from calckit.report import seal
+from calckit.report import seal, small_document
 from calckit.report.files import replace_together, report_name
-from calckit.report.glyphs import STANDARDS, code_point, lacking
 from calckit.report.recheck import record_of, title
 
-_TEMPLATE = resources.files("calckit.report").joinpath("assets", "signature.typ")
 _ENDING = "_signature.pdf"
 
 
@@ -110,20 +103,7 @@ def render(listed: Sequence[Listed]) -> bytes:
             for item in listed
         ],
     }
-    text = json.dumps(data, ensure_ascii=False)
-    for character in sorted(lacking(set(text))):
-        text = text.replace(character, f"[{code_point(character)}]")
-    with TemporaryDirectory(prefix="calckit-") as folder:
-        source = Path(folder) / "signature.typ"
-        source.write_bytes(_TEMPLATE.read_bytes())
-        source.with_name("signature.json").write_text(text, encoding="utf-8")
-        try:
-            return typst.compile(
-                str(source), root=folder, ignore_system_fonts=True, pdf_standards=[*STANDARDS],
-                timestamp=int(_day(records).timestamp()),
-            )  # fmt: skip
-        except typst.TypstError as error:
-            raise CommandError(f"the signature report cannot be set: {error.message}") from error
+    return small_document.typeset("signature.typ", data, _day(records), "the signature report")
 
 
 def _is_record(name: str) -> bool:

@@ -12,6 +12,7 @@ from typing import TYPE_CHECKING, Any
 
 from calckit import units
 from calckit.core.record import NOT_CHECKED, NOT_OK, OK, WITHDRAWN, Line, OpenItem, Record, Summary, Table, digest
+from calckit.report import checked, checklog
 from calckit.report.lines import Lines, open_items, source, typeset
 from calckit.report.model import (
     AssumptionView,
@@ -86,6 +87,7 @@ def build(record: Record, content: Content, revised: Revised | None = None) -> V
         statements=tuple(_statements(record, lines)),
         left_open=_left_open(record),
         sign_off=tuple(zip(_ROLES, (facts["prepared_by"], facts["checked_by"], ""), strict=True)),
+        check=checked.sign_off(record),
         seal_caption=seal_caption,
         seal_fields=seal_fields,
         standing=facts["status"].upper() if facts["status"] in WITHDRAWN else "",
@@ -160,9 +162,9 @@ def _statements(record: Record, lines: Lines) -> Iterator[Statement]:
     yield Statement("Open items in all", str(open_ones) if open_ones else "none")
     unread = len(record.open_items) - open_ones
     yield Statement("Tables and clauses to be confirmed against the standard", str(unread) if unread else "none")
-    originator, checker = facts["prepared_by"].strip(), facts["checked_by"].strip()
-    if originator and originator.casefold() == checker.casefold():
-        yield Statement("Self-check", f"{originator} is named both as originator and as checker")
+    said = checklog.self_check(facts)
+    if said:
+        yield Statement("Self-check", said.partition(": ")[2])
 
 
 def _left_open(record: Record) -> str:

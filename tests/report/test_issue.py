@@ -165,7 +165,8 @@ def test_a_notebook_without_a_calculation(source: Notebook, monkeypatch: pytest.
 @pytest.mark.parametrize(
     ("fields", "message"),
     [
-        ({"status": "checked", "checked_by": " j. doe"}, "checked_by is the originator, J. Doe; cure: another person"),
+        ({"status": "checked", "checked_by": " j.  doe"}, "self-check: J. Doe is named both .*; cure: another person"),
+        ({"status": "checked", "check_level": "self"}, 'check_level is "self"; cure: another person checks it'),
         ({"status": "for construction"}, "2 open items: h_n-1, confirm-12.8.2.1; cure: close them"),
         ({"date": ""}, r"no date; cure: write Calc\(date="),
     ],
