@@ -82,6 +82,9 @@ def _parser() -> argparse.ArgumentParser:
     issue.add_argument("--date", metavar="DAY", help="date of the issue, such as 2026-12-01")
     issue.add_argument("--confirmed", metavar="FILE", help="office register of values confirmed against the standard")
     issue.add_argument("--only", choices=("html", "pdf"), help="write this form alone")
+    issue.add_argument(
+        "--short", action="store_true", help="inputs, results and the path between; beside the full form, as *_short"
+    )
     issue.set_defaults(command=_issue)
 
     recheck = commands.add_parser("recheck", help="hold an issued PDF or HTML file against itself")
@@ -176,7 +179,7 @@ def _issue(arguments: argparse.Namespace) -> int:
     word.start()
     try:
         formats = (arguments.only,) if arguments.only else issue.FORMATS
-        issued = issue.issue(source, settings, arguments.to, formats)
+        issued = issue.issue(source, settings, arguments.to, formats, short=arguments.short)
     finally:
         word.cancel()
     print(issued.text)

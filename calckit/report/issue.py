@@ -33,6 +33,7 @@ from calckit.report.notebook import Notebook
 from calckit.report.prose import blocks
 from calckit.report.recheck import RECORD_ENDING, kind_of, record_of, title
 from calckit.report.run import Outcome, Problem, Settings, run
+from calckit.report.short import NAME_ENDING, shorten
 
 FORMATS = ("html", "pdf")
 _REPLACEABLE = ("preliminary", "for check")
@@ -98,8 +99,10 @@ def settings_from(
     return Settings(values, files, status, day, next(iter(register.values()), None))
 
 
-def produce(notebook: Notebook, settings: Settings, formats: Sequence[str] = FORMATS) -> Report:
-    """Run the notebook and make the report in these formats; nothing is written.
+def produce(
+    notebook: Notebook, settings: Settings, formats: Sequence[str] = FORMATS, *, short: bool = False
+) -> Report:
+    """Run the notebook and make the report in these formats, whole or in its short form; nothing is written.
 
     Raises NotebookError if a cell raises, and CommandError if a set value is at fault or the issue is refused.
     """
@@ -115,10 +118,13 @@ def produce(notebook: Notebook, settings: Settings, formats: Sequence[str] = FOR
         record.seals = None
         parcel = Parcel(notebook.stem, notebook.bare(), given, outcome.files, record.to_json().encode())
         model = view.build(record, _content(notebook, record))
+        if short:
+            model = shorten(model, record)
         writers = {form: pool.submit(_WRITERS[form], model, record, outcome, parcel.pack()) for form in formats}
         written = {form: writer.result() for form, writer in writers.items()}
     fields = record.calculation
     name = report_name(fields.get("number", ""), fields.get("revision", ""), notebook.stem)
+    name += NAME_ENDING if short else ""
     notices = [notice for _, said in written.values() for notice in said]
     return Report(name, record, {form: seal.apply(data) for form, (data, _) in written.items()}, notices)
 
@@ -150,14 +156,18 @@ def _pdf(model: View, record: Record, outcome: Outcome, attached: Sequence[Attac
 _WRITERS = {"html": _html, "pdf": _pdf}
 
 
-def issue(notebook: Notebook, settings: Settings, folder: Path, formats: Sequence[str] = FORMATS) -> Issued:
-    """Issue a notebook into a folder.
+def issue(
+    notebook: Notebook, settings: Settings, folder: Path, formats: Sequence[str] = FORMATS, *, short: bool = False
+) -> Issued:
+    """Issue a notebook into a folder, whole or in its short form.
 
     Raises as `produce` does, and CommandError if files of an issued revision stand there or a file cannot be written;
     earlier files are then as they were.
     """
-    report = produce(notebook, settings, formats)
+    report = produce(notebook, settings, formats, short=short)
     notices = [*report.notices, *_earlier(folder, report.name)]
+    if short:
+        notices += _full_form(folder / (report.name.removesuffix(NAME_ENDING) + RECORD_ENDING), report.record)
     seals = {form: seal.seal_of(data) for form, data in report.files.items()}
     for form in FORMATS:
         left = folder / f"{report.name}.{form}"
@@ -297,6 +307,17 @@ def _earlier(folder: Path, name: str) -> list[str]:
     if not strangers:
         return []
     return [f"note: the earlier files were a mixed set; not named by their record: {', '.join(strangers)}"]
+
+
+def _full_form(place: Path, record: Record) -> list[str]:
+    """A note if the full form that a short one names does not stand beside it."""
+    found = _record(place) if place.is_file() else None
+    content = view.content_of(record)
+    if found and view.content_of(found) == content:
+        return []
+    stands = f"has content {view.content_of(found)}" if found else "is not there"
+    return [f"note: the short form names a full form of content {content}; {place.name} {stands}; "
+            "cure: issue without --short, too"]
 
 
 def _refuse_status_of(path: Path, record: Record | None) -> None:

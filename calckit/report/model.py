@@ -9,7 +9,10 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import Literal
+from typing import TYPE_CHECKING, Literal
+
+if TYPE_CHECKING:
+    from calckit.report.matters import MattersView
 
 # --- the text of the notebook's Markdown cells
 
@@ -70,10 +73,11 @@ class Typeset:
 
 @dataclass(frozen=True)
 class Ref:
-    """A line by number and id; its anchor is `line-<n>`."""
+    """A line by number and id; its anchor is `line-<n>`, unless the line is not `here` in a short form."""
 
     n: int
     id: str
+    here: bool = True
 
 
 @dataclass(frozen=True)
@@ -365,6 +369,8 @@ class View:
     `short_hash` stands in the footer of every sheet. `sign_off` are (role, printed name). `seal_fields` take the place
     of the clear space for seal and signature in a preliminary issue. `counts` are the checks by verdict. `margins` say
     how near a value stands to the next limit. `notices` are for the reader of this copy (characters not printed).
+    `matters` is None where the answer has no numbers, and in the short form. `short_of` names the full form, and is
+    blank in it; `short_note` is what the short form says of itself.
     """
 
     paper: Literal["Letter", "A4"]
@@ -394,3 +400,6 @@ class View:
     not_covered: tuple[str, ...]
     cautions: tuple[str, ...]
     notices: tuple[str, ...] = ()
+    matters: MattersView | None = None
+    short_of: str = ""
+    short_note: str = ""

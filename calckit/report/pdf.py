@@ -27,7 +27,7 @@ from calckit.report.glyphs import STANDARDS, code_point, lacking
 from calckit.report.model import View
 
 _ASSETS = resources.files("calckit.report").joinpath("assets")
-_TEMPLATES = ("report.typ", "pieces.typ", "enclosures.typ")
+_TEMPLATES = ("report.typ", "pieces.typ", "enclosures.typ", "matters.typ")
 _NOT_PRINTED = ("latex", "mathml", "svg")
 _EXCERPT = 60
 _SVG = re.compile(r"<svg\b[^>]*>", re.DOTALL)

@@ -12,6 +12,7 @@ from typing import Any
 
 from calckit import units
 from calckit.core.record import NOT_CHECKED, NOT_OK, OK, Line, OpenItem, Record, Summary, Table, digest
+from calckit.report import matters
 from calckit.report.lines import Lines, open_items, source, typeset
 from calckit.report.model import (
     AssumptionView,
@@ -62,6 +63,11 @@ _ROLES = ("Prepared by", "Checked by", "Engineer of record")
 _FIRST = "Calculation"
 
 
+def content_of(record: Record) -> str:
+    """The first digits over the three hashes: what identifies the content on every sheet."""
+    return digest(record.source + record.inputs + record.lines_hash)[:8]
+
+
 def build(record: Record, content: Content) -> View:
     """The document model of a record.
 
@@ -77,7 +83,7 @@ def build(record: Record, content: Content) -> View:
         paper=facts["paper"],
         title=" - ".join(part for part in (facts["number"], facts["subject"], facts["project"]) if part),
         title_block=TitleBlock(**{name: facts[name] for name in TitleBlock.__dataclass_fields__}),
-        short_hash=digest(record.source + record.inputs + record.lines_hash)[:8],
+        short_hash=content_of(record),
         revisions=_revisions(facts),
         statements=tuple(_statements(record, lines)),
         sign_off=tuple(zip(_ROLES, (facts["prepared_by"], facts["checked_by"], ""), strict=True)),
@@ -104,6 +110,7 @@ def build(record: Record, content: Content) -> View:
         field_of_use=tuple(record.field_of_use),
         not_covered=tuple(record.not_covered),
         cautions=CAUTIONS,
+        matters=matters.build(record, lines),
     )
 
 
