@@ -15,6 +15,8 @@ from calckit.report import influence
 from calckit.report.lines import Lines
 from calckit.report.model import Item, LineView, Ref, SectionView, TableView, View
 
+_RESULTS = ("computed", "analysis", "check")
+
 NAME_ENDING = "_short"
 """What the file name of a short form has behind that of the full one."""
 
@@ -22,19 +24,22 @@ NAME_ENDING = "_short"
 def path(record: Record) -> set[str]:
     """The ids of the lines from the inputs to the governing results, and of the checks that are not OK or not made.
 
+    Where no answer names a result, those count that no other line uses.
+
     >>> from tests.report.sample import record
     >>> {"h_n", "X.T_a", "X.V"} <= path(record()), "X.F_x" in path(record())
     (True, False)
     """
     lines = Lines(record)
-    found = {line.id for line in record.lines if line.verdict in (NOT_OK, NOT_CHECKED)}
-    ahead = influence.governing(record)
+    walked = set[str]()
+    ends = [line.id for line in record.lines if line.kind in _RESULTS and not lines.used_in(line)]
+    ahead = influence.governing(record) or ends
     while ahead:
-        id_ = ahead.pop()
-        if id_ not in found:
-            ahead += [ref.id for ref in lines.inputs(lines.by_id[id_])]
-        found.add(id_)
-    return found
+        line = lines.by_id[ahead.pop()]
+        if line.id not in walked:
+            ahead += [ref.id for ref in lines.inputs(line)]
+        walked.add(line.id)
+    return walked | {line.id for line in record.lines if line.verdict in (NOT_OK, NOT_CHECKED)}
 
 
 def shorten(view: View, record: Record) -> View:

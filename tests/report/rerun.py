@@ -11,6 +11,7 @@ from typing import Any
 
 import pytest
 
+from calckit import plots
 from calckit.core import calc, settings
 from calckit.core.assemble import assemble
 from calckit.core.record import Record
@@ -21,21 +22,27 @@ from tests.template_runs import LEVELS, SECOND_PASS, TEMPLATE
 def rerun(values: Mapping[str, str], files: Mapping[str, str]) -> Record:
     """The record of a clean run with these set values and the texts of the files behind @.
 
-    Raises ValueError naming what is wrong with a set value; figures are drawn into the air.
+    Raises ValueError naming what is wrong with a set value; no figure is drawn.
     """
     run = settings.Settings(Path("run"), dict(values), dict(files))
     with pytest.MonkeyPatch.context() as patch:
         patch.setattr(settings, "current", lambda: run)
-        patch.setattr(calc.Calc, "figure", lambda *_, **__: None)
+        patch.setattr(calc.Calc, "figure", _nothing)
+        for name in plots.__all__:
+            patch.setattr(plots, name, _nothing)
         names: dict[str, Any] = {}
         for cell in notebook.read(TEMPLATE).cells:
             if cell.runs:
-                exec(cell.text, names)  # noqa: S102
+                exec(cell.text, names)
     made = calc.current()
     assert made
     if run.invalid or run.unused:
         raise ValueError(f"{run.invalid | run.unused}")
     return assemble(made)
+
+
+def _nothing(*_: object, **__: object) -> None:
+    pass
 
 
 def second_pass(values: Mapping[str, str] | None = None, levels: str = LEVELS) -> Record:
