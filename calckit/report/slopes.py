@@ -236,13 +236,14 @@ class Chain:
         numbers = [Dual(value) for value in _numbers(source.value)]
         moved = numbers[seed.place].value
         numbers[seed.place] = Dual(moved, seed.side * moved / 100)
-        return self._duals(self.lines[id_], {seed.line: numbers}, met)
+        return self._duals(self.lines[id_], seed.line, {seed.line: numbers}, met)
 
-    def _duals(self, line: Line, known: dict[str, list[Dual]], met: Met) -> list[Dual]:
+    def _duals(self, line: Line, seed: str, known: dict[str, list[Dual]], met: Met) -> list[Dual]:
         if line.id not in known:
             known[line.id] = [Dual(value) for value in _numbers(line.value)]
             operands = {
-                key: self._operand(line.inputs[key], source, known, met) for key, source in self._sources(line).items()
+                key: self._operand(line.inputs[key], source, seed, known, met)
+                for key, source in self._sources(line).items()
             }
             moved = any(dual.slope for duals in operands.values() for dual in duals)
             if moved and line.formula is not None and not self._why_dead(line):
@@ -253,13 +254,13 @@ class Chain:
         return known[line.id]
 
     def _operand(
-        self, operand: Operand, source: Line | None, known: dict[str, list[Dual]], met: Met
+        self, operand: Operand, source: Line | None, seed: str, known: dict[str, list[Dual]], met: Met
     ) -> list[Dual]:
         values = _numbers(operand.value)
-        if source is None:
+        if source is None or seed not in self.upstream(source.id):
             return [Dual(value) for value in values]
         factor = float(units.factor(source.unit, operand.unit))
-        slopes = [dual.slope * factor for dual in self._duals(source, known, met)]
+        slopes = [dual.slope * factor for dual in self._duals(source, seed, known, met)]
         return [Dual(value, slope) for value, slope in zip(values, slopes, strict=True)]
 
     def _work(self, line: Line, operands: Mapping[str, list[Dual]], met: Met) -> list[Dual]:
