@@ -88,6 +88,9 @@ def _parser() -> argparse.ArgumentParser:
         "--check-log", metavar="FILE", type=Path, help="check log (CSV): print its marks and comments, tie its new rows"
     )
     issue.add_argument("--only", choices=("html", "pdf"), help="write this form alone")
+    issue.add_argument(
+        "--short", action="store_true", help="inputs, results and the path between; beside the full form, as *_short"
+    )
     issue.set_defaults(command=_issue)
 
     recheck = commands.add_parser("recheck", help="hold an issued PDF or HTML file against itself")
@@ -189,8 +192,9 @@ def _issue(arguments: argparse.Namespace) -> int:
     try:
         formats = (arguments.only,) if arguments.only else issue.FORMATS
         issued = issue.issue(
-            source, settings, arguments.to, formats, former=arguments.former, check_log=arguments.check_log
-        )
+            source, settings, arguments.to, formats,
+            former=arguments.former, check_log=arguments.check_log, short=arguments.short,
+        )  # fmt: skip
     finally:
         word.cancel()
     print(issued.text)

@@ -35,6 +35,7 @@ from calckit.report.notebook import Notebook
 from calckit.report.prose import blocks
 from calckit.report.recheck import RECORD_ENDING, kind_of, record_of, title
 from calckit.report.run import Outcome, Problem, Settings, run
+from calckit.report.short import NAME_ENDING, shorten
 
 FORMATS = ("html", "pdf")
 _REPLACEABLE = ("preliminary", "for check")
@@ -110,8 +111,9 @@ def produce(
     former: Issue | None = None,
     log: checklog.Log | None = None,
     folder: Path = Path(),
+    short: bool = False,
 ) -> Report:
-    """Run the notebook and make the report in these formats; nothing is written.
+    """Run the notebook and make the report in these formats, whole or in its short form; nothing is written.
 
     With the `former` issue named, what changed since is told and flagged. With a check log it is the checker's copy;
     new rows of the log were set on the former issue, named or lying in the folder.
@@ -139,8 +141,11 @@ def produce(
         if laid:
             model = checked.onto(model, record, laid)
             parcel = replace(parcel, check_log=laid.log.to_csv().encode())
+        if short:
+            model = shorten(model, record)
         writers = {form: pool.submit(_WRITERS[form], model, record, outcome, parcel.pack()) for form in formats}
         written = {form: writer.result() for form, writer in writers.items()}
+    name += NAME_ENDING if short else ""
     notices = [notice for _, said in written.values() for notice in said]
     return Report(name, record, {form: seal.apply(data) for form, (data, _) in written.items()}, notices, laid)
 
@@ -180,8 +185,9 @@ def issue(
     *,
     former: Path | None = None,
     check_log: Path | None = None,
+    short: bool = False,
 ) -> Issued:
-    """Issue a notebook into a folder.
+    """Issue a notebook into a folder, whole or in its short form.
 
     `former` is an issued file of the earlier revision; the check log, if there is one, gets its new rows tied.
 
@@ -190,8 +196,10 @@ def issue(
     """
     log = checklog.read(check_log) if check_log else None
     earlier = revised.open_former(former) if former else None
-    report = produce(notebook, settings, formats, former=earlier, log=log, folder=folder)
+    report = produce(notebook, settings, formats, former=earlier, log=log, folder=folder, short=short)
     notices = [*report.notices, *_earlier(folder, report.name)]
+    if short:
+        notices += _full_form(folder / (report.name.removesuffix(NAME_ENDING) + RECORD_ENDING), report.record)
     seals = {form: seal.seal_of(data) for form, data in report.files.items()}
     for form in FORMATS:
         left = folder / f"{report.name}.{form}"
@@ -341,6 +349,17 @@ def _earlier(folder: Path, name: str) -> list[str]:
     if not strangers:
         return []
     return [f"note: the earlier files were a mixed set; not named by their record: {', '.join(strangers)}"]
+
+
+def _full_form(place: Path, record: Record) -> list[str]:
+    """A note if the full form that a short one names does not stand beside it."""
+    found = _record(place) if place.is_file() else None
+    content = view.content_of(record)
+    if found and view.content_of(found) == content:
+        return []
+    stands = f"has content {view.content_of(found)}" if found else "is not there"
+    return [f"note: the short form names a full form of content {content}; {place.name} {stands}; "
+            "cure: issue without --short, too"]
 
 
 def _refuse_status_of(path: Path, record: Record | None) -> None:

@@ -13,6 +13,7 @@ from typing import TYPE_CHECKING, Literal
 
 if TYPE_CHECKING:
     from calckit.report.checked import CheckedView
+    from calckit.report.matters import MattersView
     from calckit.report.revised import Revised
 
 # --- the text of the notebook's Markdown cells
@@ -74,10 +75,11 @@ class Typeset:
 
 @dataclass(frozen=True)
 class Ref:
-    """A line by number and id; its anchor is `line-<n>`."""
+    """A line by number and id; its anchor is `line-<n>`, unless the line is not `here` in a short form."""
 
     n: int
     id: str
+    here: bool = True
 
 
 @dataclass(frozen=True)
@@ -380,6 +382,8 @@ class View:
     `left_open` is said on the cover of an issue for construction with open items. `revised` is None in an issue that
     names no former one. `counts` are the checks by verdict. `margins` say how near a value stands to the next limit.
     `notices` are for the reader of this copy (characters not printed).
+    `matters` is None where the answer has no numbers, and in the short form. `short_of` names the full form, and is
+    blank in it; `short_note` is what the short form says of itself.
     """
 
     paper: Literal["Letter", "A4"]
@@ -417,3 +421,6 @@ class View:
     revised: Revised | None = None
     checked: CheckedView | None = None
     notices: tuple[str, ...] = ()
+    matters: MattersView | None = None
+    short_of: str = ""
+    short_note: str = ""

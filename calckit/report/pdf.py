@@ -27,7 +27,9 @@ from calckit.report.glyphs import STANDARDS, code_point, lacking
 from calckit.report.model import View
 
 _ASSETS = resources.files("calckit.report").joinpath("assets")
-_TEMPLATES = ("report.typ", "pieces.typ", "sheets.typ", "revised.typ", "checked.typ", "enclosures.typ")
+_TEMPLATES = (
+    "report.typ", "pieces.typ", "sheets.typ", "revised.typ", "checked.typ", "matters.typ", "enclosures.typ",
+)  # fmt: skip
 _NOT_PRINTED = ("latex", "mathml", "svg")
 _UNSETTLED = "Sheets are not named beside the lines of this copy, as they could not be settled; each number is a link."
 _EXCERPT = 60

@@ -12,7 +12,7 @@ from typing import TYPE_CHECKING, Any
 
 from calckit import units
 from calckit.core.record import NOT_CHECKED, NOT_OK, OK, WITHDRAWN, Line, OpenItem, Record, Summary, Table, digest
-from calckit.report import checked, checklog
+from calckit.report import checked, checklog, matters
 from calckit.report.lines import Lines, open_items, source, typeset
 from calckit.report.model import (
     AssumptionView,
@@ -66,6 +66,11 @@ _ROLES = ("Prepared by", "Checked by", "Engineer of record")
 _FIRST = "Calculation"
 
 
+def content_of(record: Record) -> str:
+    """The first digits over the three hashes: what identifies the content on every sheet."""
+    return digest(record.source + record.inputs + record.lines_hash)[:8]
+
+
 def build(record: Record, content: Content, revised: Revised | None = None) -> View:
     """The document model of a record.
 
@@ -82,7 +87,7 @@ def build(record: Record, content: Content, revised: Revised | None = None) -> V
         paper=facts["paper"],
         title=" - ".join(part for part in (facts["number"], facts["subject"], facts["project"]) if part),
         title_block=TitleBlock(**{name: facts[name] for name in TitleBlock.__dataclass_fields__}),
-        short_hash=digest(record.source + record.inputs + record.lines_hash)[:8],
+        short_hash=content_of(record),
         revisions=_revisions(facts, revised),
         statements=tuple(_statements(record, lines)),
         left_open=_left_open(record),
@@ -116,6 +121,7 @@ def build(record: Record, content: Content, revised: Revised | None = None) -> V
         not_covered=tuple(record.not_covered),
         cautions=CAUTIONS,
         revised=revised,
+        matters=matters.build(record, lines),
     )
 
 
