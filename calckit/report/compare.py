@@ -110,7 +110,7 @@ def open_issue(path: Path) -> Issue:
     except MismatchError as error:
         raise MismatchError(f"{path}: {error}") from error
     record = _record(path, parcel.record)
-    faults = [verdict.text()] if verdict.state == "altered" else []
+    faults = ["; ".join([verdict.text(), *verdict.changes])] if verdict.state == "altered" else []
     faults += _altered_lines(record)
     faults += [finding.text for finding in beside(path, data) if not finding.good]
     remarks = (verdict.text(),) if verdict.state == "added" else ()

@@ -44,7 +44,7 @@ def recheck(path: Path) -> list[Finding]:
     """
     data = read(path)
     verdict = seal.check(data)
-    findings = [Finding("seal", verdict.state != "altered", verdict.text())]
+    findings = [Finding("seal", verdict.state != "altered", "\n".join([verdict.text(), *verdict.changes]))]
     try:
         parcel = parcel_of(seal.issued_bytes(data))
         record = from_json(parcel.record.decode())
