@@ -8,7 +8,7 @@ those in force. Must not know what a report says, nor how it is sealed.
 from __future__ import annotations
 
 import io
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator
 from typing import Any
 
 _OF_A_SHEET = {"/Annots", "/Parent", "/Tabs", "/LastModified", "/PieceInfo"}
@@ -54,7 +54,7 @@ def _changes(issued: bytes, now: bytes) -> Iterator[str]:
         return
     if len(old.pages) != len(new.pages):
         yield f"sheets: {len(new.pages)} in place of {len(old.pages)}"
-    held = _Held(*({page.indirect_reference.idnum: place for place, page in enumerate(r.pages)} for r in (old, new)))  # type: ignore[union-attr]
+    held = _Held(old, new)
     for number, (page, other) in enumerate(zip(old.pages, new.pages, strict=False), 1):
         yield from (f"sheet {number}: {key}" for key in held.differing(page, other, _OF_A_SHEET))
     before, after = ({name: list(data) for name, data in reader.attachments.items()} for reader in (old, new))
@@ -70,20 +70,26 @@ def _changes(issued: bytes, now: bytes) -> Iterator[str]:
 
 
 class _Held:
-    """Objects of two readings of a file, held against each other; a page stands for its place, an annotation for any."""
+    """Objects of two readings of a file held against each other; a page stands for its place, an annotation for any."""
 
-    def __init__(self, old_pages: Mapping[int, int], new_pages: Mapping[int, int]) -> None:
-        self._pages = (old_pages, new_pages)
+    def __init__(self, old: Any, new: Any) -> None:
+        self._pages = tuple(
+            {page.indirect_reference.idnum: place for place, page in enumerate(reader.pages)} for reader in (old, new)
+        )
+        places = [{**reader.xref.get(0, {}), **reader.xref_objStm} for reader in (old, new)]
+        moved = [number for number, place in places[0].items() if places[1].get(number) != place]
+        self._only_marked = all(number in self._pages[0] or _of_marks(old, number) for number in moved)
 
     def differing(self, old: Any, new: Any, but: set[str]) -> Iterator[str]:
         """The entries of two dictionaries that differ, in words; those in `but` are left out."""
         for key in sorted((old.keys() | new.keys()) - but):
-            if key not in old or key not in new or not self.same(old.raw_get(key), new.raw_get(key)):
+            if not self.same(_raw(old, key), _raw(new, key)):
                 yield _CALLED.get(key, key.removeprefix("/"))
 
     def same(self, old: Any, new: Any) -> bool:
         """Whether two objects are the same with everything they lead to."""
-        waiting, met = [(old, new)], set()
+        waiting: list[tuple[Any, Any]] = [(old, new)]
+        met = set()
         while waiting:
             a, b = waiting.pop()
             numbers = getattr(a, "idnum", None), getattr(b, "idnum", None)
@@ -96,17 +102,15 @@ class _Held:
                 if numbers in met:
                     continue
                 met.add(numbers)
+                if self._only_marked and numbers[0] == numbers[1]:
+                    continue  # neither it nor anything it leads to was written again
             a, b = a.get_object(), b.get_object()
             if isinstance(a, dict) and isinstance(b, dict):
                 if "/Rect" in a and "/Rect" in b:
                     continue
-                coded = hasattr(a, "get_data")
-                if coded != hasattr(b, "get_data") or (coded and a.get_data() != b.get_data()):
+                if not _same_data(a, b):
                     return False
-                keys = a.keys() - (_CODING if coded else set())
-                if keys != b.keys() - (_CODING if coded else set()):
-                    return False
-                waiting += [(a.raw_get(key), b.raw_get(key)) for key in keys]
+                waiting += [(_raw(a, key), _raw(b, key)) for key in (a.keys() | b.keys()) - _CODING]
             elif isinstance(a, list) and isinstance(b, list):
                 if len(a) != len(b):
                     return False
@@ -114,3 +118,25 @@ class _Held:
             elif a != b:
                 return False
         return True
+
+
+def _raw(entries: Any, key: str) -> Any:
+    """An entry as it stands, not what it refers to."""
+    from pypdf.generic import NullObject
+
+    return entries.raw_get(key) if key in entries else NullObject()
+
+
+def _same_data(a: Any, b: Any) -> bool:
+    if hasattr(a, "get_data") and hasattr(b, "get_data"):
+        return bool(a.get_data() == b.get_data())
+    return hasattr(a, "get_data") == hasattr(b, "get_data")
+
+
+def _of_marks(reader: Any, number: int) -> bool:
+    """Whether this object may differ wherever it stands, or is held on its own."""
+    from pypdf.generic import IndirectObject
+
+    found = reader.get_object(IndirectObject(number, 0, reader))
+    kind = found.get("/Type") if isinstance(found, dict) else None
+    return kind in ("/Catalog", "/Pages", "/Metadata", "/Annot") or number == reader.trailer.raw_get("/Info").idnum

@@ -9,12 +9,13 @@ import os
 import re
 import secrets
 import shutil
-from collections.abc import Mapping, Sequence
+from collections.abc import Container, Iterable, Mapping, Sequence
 from contextlib import suppress
 from pathlib import Path
 
 from calckit.errors import CommandError
 
+_TEMPORARY = re.compile(r"\.(.+)\.[0-9a-f]{8}\.(?:new|old)")
 _UNFIT = re.compile(r'[<>:"/\\|?*\x00-\x1f\x7f]|^[. ]|[. ]$')
 
 
@@ -35,7 +36,8 @@ def replace_together(folder: Path, files: Mapping[str, bytes]) -> list[Path]:
 
     Each is written and flushed under a temporary name first; then they take their places in the order given. If one
     cannot, those before it get their earlier content back. The last file should be the one that names the others, so
-    that a power cut between two renames leaves a set that shows it.
+    that a power cut between two renames leaves a set that shows it. What an earlier call that was broken off left
+    behind is removed: parts at once, kept copies after the files have taken their places.
 
     Raises CommandError naming the file that could not be written; every earlier file is then as it was.
 
@@ -48,9 +50,10 @@ def replace_together(folder: Path, files: Mapping[str, bytes]) -> list[Path]:
     targets = [folder / name for name in files]
     new = [folder / f".{name}.{token}.new" for name in files]
     old = [folder / f".{name}.{token}.old" for name in files]
-    at, moved = folder, 0
+    at, moved, had = folder, 0, set[Path]()
     try:
         folder.mkdir(parents=True, exist_ok=True)
+        _discard(part for part in leftovers(folder, files) if part.suffix == ".new")
         for at, part, data in zip(targets, new, files.values(), strict=True):  # noqa: B007
             _write(part, data)
         for at, keep in zip(targets, old, strict=True):
@@ -58,12 +61,13 @@ def replace_together(folder: Path, files: Mapping[str, bytes]) -> list[Path]:
                 raise IsADirectoryError("a folder has this name")
             if at.exists():
                 shutil.copy2(at, keep)
+                had.add(at)
         for at, part in zip(targets, new, strict=True):
             os.replace(part, at)
             moved += 1
     except BaseException as error:
         _discard(new)
-        _put_back(targets[:moved], old[:moved])
+        _put_back(targets[:moved], old[:moved], had)
         _discard(old)
         if isinstance(error, OSError):
             raise CommandError(
@@ -72,23 +76,35 @@ def replace_together(folder: Path, files: Mapping[str, bytes]) -> list[Path]:
             ) from error
         raise
     _discard(old)
+    _discard(leftovers(folder, files))
     _flush_folder(folder)
     return targets
 
 
-def _put_back(targets: Sequence[Path], kept: Sequence[Path]) -> None:
+def leftovers(folder: Path, names: Iterable[str]) -> list[Path]:
+    """Temporary files under these names in a folder, as a writing that was broken off leaves them behind.
+
+    >>> leftovers(Path("no such folder"), ["a.txt"])
+    []
+    """
+    names = set(names)
+    entries = sorted(folder.iterdir()) if folder.is_dir() else []
+    return [path for path in entries if (found := _TEMPORARY.fullmatch(path.name)) and found[1] in names]
+
+
+def _put_back(targets: Sequence[Path], kept: Sequence[Path], had: Container[Path]) -> None:
     """Give the targets their earlier content; what cannot be given back stays in its kept copy, which is named."""
     stuck = []
     for target, keep in zip(targets, kept, strict=True):
         try:
-            os.replace(keep, target) if keep.exists() else target.unlink()
+            os.replace(keep, target) if target in had else target.unlink()
         except OSError:
             stuck.append(f"{target} (its earlier content: {keep})")
     if stuck:
         raise CommandError(f"the writing failed half-way, and these could not be put back: {', '.join(stuck)}")
 
 
-def _discard(paths: Sequence[Path]) -> None:
+def _discard(paths: Iterable[Path]) -> None:
     for path in paths:
         with suppress(OSError):
             path.unlink(missing_ok=True)

@@ -27,7 +27,7 @@ from calckit.core.record import (
 from calckit.errors import CommandError, MismatchError, NotebookError
 from calckit.report import enclosures, html, pdf, seal, view
 from calckit.report.attachments import Attachment, Parcel, inputs_hash
-from calckit.report.files import replace_together, report_name
+from calckit.report.files import leftovers, replace_together, report_name
 from calckit.report.model import Block, Content, View
 from calckit.report.notebook import Notebook
 from calckit.report.prose import blocks
@@ -36,6 +36,7 @@ from calckit.report.run import Outcome, Problem, Settings, run
 
 FORMATS = ("html", "pdf")
 _REPLACEABLE = ("preliminary", "for check")
+_MIXED = "; no record beside it names it: move it away if it is left of a writing that was broken off"
 _DAY = re.compile(r"\d{4}-\d{2}-\d{2}")
 
 
@@ -168,6 +169,9 @@ def issue(notebook: Notebook, settings: Settings, folder: Path, formats: Sequenc
                 notices.append(f"note: {left} stands from another issue and does not belong to these files")
     contents = {f"{report.name}.{form}": data for form, data in report.files.items()}
     contents[report.name + RECORD_ENDING] = report.record.sealed(seals).to_json().encode()
+    if left_behind := leftovers(folder, contents):
+        names = ", ".join(path.name for path in left_behind)
+        notices.append(f"note: removed what a writing that was broken off left behind: {names}")
     paths = replace_together(folder, contents)
     words = [title(report.record), *(f"  {path}" for path in paths), *notices, *account(report.record)]
     return Issued(paths, "\n".join(words))
@@ -291,7 +295,7 @@ def _earlier(folder: Path, name: str) -> list[str]:
         if path.is_file():
             data = path.read_bytes()
             named = record is not None and (record.seals or {}).get(kind_of(data)) == seal.seal_of(data)
-            _refuse_status_of(path, record if named else _attached(data))
+            _refuse_status_of(path, record if named else _attached(data), "" if named else _MIXED)
             if not named:
                 strangers.append(path.name)
     if not strangers:
@@ -299,14 +303,14 @@ def _earlier(folder: Path, name: str) -> list[str]:
     return [f"note: the earlier files were a mixed set; not named by their record: {', '.join(strangers)}"]
 
 
-def _refuse_status_of(path: Path, record: Record | None) -> None:
+def _refuse_status_of(path: Path, record: Record | None, mixed: str = "") -> None:
     if record is None:
         raise CommandError(f"{path} stands there and holds no record that can be read; cure: move it away")
     status = record.calculation.get("status")
     if status not in _REPLACEABLE:
         raise CommandError(
-            f'{path} is issued with status "{status}" and is never overwritten; cure: give the calculation its next '
-            "revision, Calc(revision=...)"
+            f'{path} is issued with status "{status}" and is never overwritten{mixed}; cure: give the calculation its '
+            "next revision, Calc(revision=...)"
         )
 
 

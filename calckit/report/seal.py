@@ -89,10 +89,26 @@ def check(data: bytes) -> Verdict:
     Marks and signatures are appended to a PDF, so each beginning of it that is itself a whole file is tried; what is
     appended may not change what the reader sees of the issued part. Anything appended to an HTML file makes it altered.
     """
+    end = _end(data)
+    if end is None:
+        return Verdict("altered", seal_of(data))
+    if end == len(data):
+        return Verdict("intact", seal_of(data))
+    changed = tuple(additions.changes(data[:end], data))
+    return Verdict("altered" if changed else "added", seal_of(data), len(data) - end, changed)
+
+
+def issued_bytes(data: bytes) -> bytes:
+    """The file without what was added after issue."""
+    return data[: _end(data)]
+
+
+def _end(data: bytes) -> int | None:
+    """Where the issued part ends; None if the seal fits no beginning of the file."""
     seals = list(_SEAL.finditer(data))[: _copies(data)]
     digits = {seal[1] for seal in seals}
     if len(seals) != _copies(data) or len(digits) != 1:
-        return Verdict("altered", seal_of(data))
+        return None
     seal = digits.pop().decode()
     ends = [len(data)]
     if is_pdf(data):
@@ -106,16 +122,8 @@ def check(data: bytes) -> Verdict:
         digest.update(memoryview(blank)[done:end])
         done = end
         if digest.copy().hexdigest() == seal:
-            if end == len(data):
-                return Verdict("intact", seal)
-            changed = tuple(additions.changes(data[:end], data))
-            return Verdict("altered" if changed else "added", seal, len(data) - end, changed)
-    return Verdict("altered", seal)
-
-
-def issued_bytes(data: bytes) -> bytes:
-    """The file without what was added after issue."""
-    return data[: len(data) - check(data).added]
+            return end
+    return None
 
 
 def _copies(data: bytes) -> int:

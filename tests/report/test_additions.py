@@ -1,7 +1,6 @@
 """What bytes added to an issued PDF change: marks and signatures nothing, anything else is an alteration and is named.
 
-The updates are written by pypdf, a general-purpose library, as ISO 32000-1, 7.5.6, describes: appended to the file as it
-was.
+The updates are written by pypdf, a general-purpose library, as ISO 32000-1, 7.5.6, describes: appended to the file.
 """
 
 import io
@@ -84,18 +83,27 @@ def viewer(writer: pypdf.PdfWriter) -> None:
     writer.add_metadata({"/Producer": "a viewer", "/ModDate": "D:20261205000000Z"})
 
 
-@pytest.mark.parametrize("update", [comment, highlight, signature, viewer])
-def test_marks_and_signatures_change_nothing(update: Update, issued: bytes, tmp_path: Path) -> None:
-    data = updated(issued, update)
+@pytest.fixture(scope="module")
+def marked(issued: bytes) -> bytes:
+    """The same with comments of a reader."""
+    return updated(issued, comment)
+
+
+@pytest.mark.parametrize("updates", [(comment,), (signature,), (highlight, viewer, comment, signature)])
+def test_marks_and_signatures_change_nothing(updates: tuple[Update, ...], issued: bytes) -> None:
+    data = updated(issued, *updates)
     assert changes(issued, data) == []
     assert seal.check(data) == seal.Verdict("added", seal.seal_of(issued), len(data) - len(issued))
+
+
+def test_recheck_of_a_signed_report(issued: bytes, tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
     path = tmp_path / "C-101_A.pdf"
-    path.write_bytes(data)
+    path.write_bytes(updated(issued, signature))
     assert cli.main(["recheck", str(path)]) == 0
-
-
-def test_marks_over_marks_change_nothing(issued: bytes) -> None:
-    assert changes(issued, updated(issued, comment, highlight, signature, comment)) == []
+    said = capsys.readouterr()
+    added = path.stat().st_size - len(issued)
+    assert said.out.splitlines()[1].split(maxsplit=1) == ["seal", f"{added} bytes added after issue"]
+    assert said.err == ""
 
 
 def contents(writer: pypdf.PdfWriter) -> None:
@@ -193,20 +201,24 @@ def stand_in(writer: pypdf.PdfWriter) -> None:
         (stand_in, ["form that stands in for the sheets"]),
     ],
 )
-def test_what_is_altered_is_named(
-    update: Update, said: list[str], issued: bytes, tmp_path: Path, capsys: pytest.CaptureFixture[str]
-) -> None:
-    data = updated(issued, comment, update)
+def test_what_is_altered_is_named(update: Update, said: list[str], issued: bytes, marked: bytes) -> None:
+    data = updated(marked, update)
     assert changes(issued, data) == said
     verdict = seal.check(data)
     assert (verdict.state, list(verdict.changes)) == ("altered", said)
+    assert parcel_of(seal.issued_bytes(data)) == parcel_of(issued)  # the attachments are read as they were issued
+
+
+def test_recheck_names_what_is_altered(
+    issued: bytes, marked: bytes, tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    data = updated(marked, contents, attachment)
     path = tmp_path / "C-101_A.pdf"
     path.write_bytes(data)
     assert cli.main(["recheck", str(path)]) == 4
     words = [line.strip() for line in capsys.readouterr().out.splitlines()]
     assert words[1].split(maxsplit=1) == ["seal", f"altered by {len(data) - len(issued)} bytes added after issue"]
-    assert words[2 : 2 + len(said)] == said
-    assert parcel_of(seal.issued_bytes(data)) == parcel_of(issued)  # the attachments are read as they were issued
+    assert words[2:4] == ["sheet 5: contents", "attachment record.json: replaced"]
 
 
 def test_a_sheet_that_was_added_is_counted(issued: bytes) -> None:
