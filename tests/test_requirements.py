@@ -19,7 +19,8 @@ PENDING = {"B5", "B6", "C2", "C3", "C6", "C10", "C12", "E3"}
 
 
 def test_every_requirement_has_its_row_once() -> None:
-    assert [row["id"] for row in ROWS] == [f"{group}{n}" for group, count in COUNTS.items() for n in range(1, count + 1)]
+    ids = [f"{group}{number}" for group, count in COUNTS.items() for number in range(1, count + 1)]
+    assert [row["id"] for row in ROWS] == ids
     assert all(row["requirement"].strip() for row in ROWS)
 
 
@@ -30,7 +31,7 @@ def test_no_row_is_blank() -> None:
 
 
 def test_the_named_tests_exist() -> None:
-    named = sorted({test for row in ROWS for test in row.get("tests", [])} | {t for m in mutations.ALL for t in m.tests})
+    named = sorted({test for row in ROWS for test in row.get("tests", [])})
     command = [sys.executable, "-m", "pytest", "--collect-only", "-q", "-p", "no:cacheprovider", *named]
     result = subprocess.run(command, cwd=ROOT, capture_output=True, text=True, check=False)
     assert result.returncode == 0, result.stdout[-3000:] + result.stderr

@@ -38,11 +38,10 @@ def issued(form: str) -> bytes:
 
 
 def faults(folder: Path, form: str, data: bytes) -> dict[str, list[str]]:
-    """What recheck finds at fault, and that the command says so by its exit code."""
+    """What recheck finds at fault."""
     path = folder / f"changed.{form}"
     path.write_bytes(data)
-    found = {finding.what: finding.text.splitlines() for finding in recheck(path) if not finding.good}
-    return found
+    return {finding.what: finding.text.splitlines() for finding in recheck(path) if not finding.good}
 
 
 def attached(data: bytes, name: str, change: Callable[[bytes], bytes]) -> bytes:
