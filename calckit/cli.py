@@ -227,9 +227,19 @@ def _print_findings(findings: Sequence[Finding]) -> bool:
     return all(finding.good for finding in findings)
 
 
+def _say_mixed(path: Path) -> None:
+    """Say if a report belongs to another issue than the files beside it."""
+    from calckit.report.recheck import beside, read
+
+    for finding in beside(path, read(path)):
+        if not finding.good:
+            print(f"note: {finding.text}", file=sys.stderr)
+
+
 def _comments(arguments: argparse.Namespace) -> int:
     from calckit.report import comments
 
+    _say_mixed(arguments.file)
     print(comments.collect(arguments.file, arguments.check_log))
     return DONE
 
@@ -262,6 +272,7 @@ def _compare(arguments: argparse.Namespace) -> int:
 def _extract(arguments: argparse.Namespace) -> int:
     from calckit.report import extract
 
+    _say_mixed(arguments.file)
     ids = [id_.strip() for id_ in arguments.ask.split(",") if id_.strip()]
     print(*extract.export(arguments.file, ids, arguments.to), sep="\n")
     return DONE
@@ -270,6 +281,7 @@ def _extract(arguments: argparse.Namespace) -> int:
 def _reconcile(arguments: argparse.Namespace) -> int:
     from calckit.report import reconcile
 
+    _say_mixed(arguments.file)
     rows = reconcile.reconcile(arguments.file, arguments.csv)
     print(reconcile.text(rows))
     return DONE if all(row.settled for row in rows) else MISMATCH

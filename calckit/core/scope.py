@@ -26,6 +26,8 @@ if TYPE_CHECKING:
     from calckit.core.calc import Calc
 
 OPEN_ANSWER = "not answered"
+DEFAULT = "default"
+"""What the input list says of a choice that nobody made."""
 _ID = re.compile(r"[\w.\-]+\Z")
 
 
@@ -87,6 +89,13 @@ class Scope:
         entry = self.find(name)
         value = entry.line.value if entry else None
         return value if isinstance(value, str) and value not in (NONE, OPEN_ANSWER) else None
+
+    def choice(self, name: str, usual: str, source: Source) -> str:
+        """The word chosen; where nobody chose, a line among the inputs says that the usual one is taken by default."""
+        entry = self.find(name)
+        if entry is None or entry.line.detail == DEFAULT:
+            self.state(name, usual, "given", source, detail=DEFAULT)
+        return self.word(name) or usual
 
     def number(self, name: str, unit: str = "") -> float | None:
         """The number a name stands for here, in `unit` (blank: in its own); None if there is none."""

@@ -18,7 +18,7 @@ from calckit.report.attachments import Parcel
 from calckit.report.changes import Change, Changed, Changes, between
 from calckit.report.files import replace_together
 from calckit.report.line_changes import NONE, Step
-from calckit.report.recheck import RECORD_ENDING, beside, parcel_of, read, title
+from calckit.report.recheck import beside, parcel_of, read, strangers, title
 
 CAUTION = (
     "This comparison states what differs between two files. It does not say why, nor whether a change is right; that "
@@ -111,7 +111,7 @@ def open_issue(path: Path) -> Issue:
     except MismatchError as error:
         raise MismatchError(f"{path}: {error}") from error
     record = _record(path, parcel.record)
-    faults = [verdict.text()] if verdict.state == "altered" else []
+    faults = ["; ".join([verdict.text(), *verdict.changes])] if verdict.state == "altered" else []
     faults += _altered_lines(record)
     faults += [finding.text for finding in beside(path, data) if not finding.good]
     remarks = (verdict.text(),) if verdict.state == "added" else ()
@@ -124,13 +124,7 @@ def _record_file(path: Path) -> Issue:
     except OSError as error:
         raise CommandError(f"{path} cannot be read: {error.strerror}") from error
     record = _record(path, data)
-    faults = _altered_lines(record)
-    stem = path.name.removesuffix(RECORD_ENDING)
-    for form, named in (record.seals or {}).items():
-        other = path.with_name(f"{stem}.{form}")
-        if other.is_file() and (found := other.read_bytes()) and seal.seal_of(found) != named:
-            faults.append(f"{other.name} beside it belongs to another issue: the files are a mixed set")
-    return Issue(path.name, record, None, tuple(faults))
+    return Issue(path.name, record, None, (*_altered_lines(record), *strangers(record, path)))
 
 
 def _record(path: Path, data: bytes) -> Record:

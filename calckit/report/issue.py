@@ -29,7 +29,7 @@ from calckit.errors import CommandError, MismatchError, NotebookError
 from calckit.report import checked, checklog, enclosures, html, pdf, revised, seal, view
 from calckit.report.attachments import Attachment, Parcel, inputs_hash
 from calckit.report.compare import Issue
-from calckit.report.files import replace_together, report_name
+from calckit.report.files import leftovers, replace_together, report_name
 from calckit.report.model import Block, Content, View
 from calckit.report.notebook import Notebook
 from calckit.report.prose import blocks
@@ -40,6 +40,7 @@ from calckit.report.short import NAME_ENDING, shorten
 FORMATS = ("html", "pdf")
 _REPLACEABLE = ("preliminary", "for check")
 _WITHDRAW = '; to withdraw it, issue with --status superseded or void, which writes beside it'
+_MIXED = "; no record beside it names it: move it away if it is left of a writing that was broken off"
 _DAY = re.compile(r"\d{4}-\d{2}-\d{2}")
 
 
@@ -214,6 +215,9 @@ def issue(
             raise CommandError(f"{check_log} was changed while the notebook ran; nothing was written; issue again")
         contents = {str(check_log.resolve()): report.laid.log.to_csv().encode(), **contents}
     contents[report.name + RECORD_ENDING] = report.record.sealed(seals).to_json().encode()
+    if left_behind := leftovers(folder, contents):
+        names = ", ".join(path.name for path in left_behind)
+        notices.append(f"note: removed what a writing that was broken off left behind: {names}")
     paths = replace_together(folder, contents)
     words = [title(report.record), *(f"  {path}" for path in paths), *notices, *account(report.record)]
     if report.laid:
@@ -343,7 +347,7 @@ def _earlier(folder: Path, name: str) -> list[str]:
         if path.is_file():
             data = path.read_bytes()
             named = record is not None and (record.seals or {}).get(kind_of(data)) == seal.seal_of(data)
-            _refuse_status_of(path, record if named else _attached(data))
+            _refuse_status_of(path, record if named else _attached(data), "" if named else _MIXED)
             if not named:
                 strangers.append(path.name)
     if not strangers:
@@ -362,14 +366,14 @@ def _full_form(place: Path, record: Record) -> list[str]:
             "cure: issue without --short, too"]
 
 
-def _refuse_status_of(path: Path, record: Record | None) -> None:
+def _refuse_status_of(path: Path, record: Record | None, mixed: str = "") -> None:
     if record is None:
         raise CommandError(f"{path} stands there and holds no record that can be read; cure: move it away")
     status = record.calculation.get("status")
     if status not in _REPLACEABLE:
         raise CommandError(
-            f'{path} is issued with status "{status}" and is never overwritten; cure: give the calculation its next '
-            "revision, Calc(revision=...)" + _WITHDRAW * (status not in WITHDRAWN)
+            f'{path} is issued with status "{status}" and is never overwritten{mixed}; cure: give the calculation its '
+            "next revision, Calc(revision=...)" + _WITHDRAW * (status not in WITHDRAWN)
         )
 
 

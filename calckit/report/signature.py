@@ -17,7 +17,7 @@ from calckit.core.record import Record, from_json
 from calckit.errors import CommandError, MismatchError
 from calckit.report import seal, small_document
 from calckit.report.files import replace_together, report_name
-from calckit.report.recheck import record_of, title
+from calckit.report.recheck import beside, record_of, strangers, title
 
 _ENDING = "_signature.pdf"
 
@@ -26,7 +26,8 @@ _ENDING = "_signature.pdf"
 class Listed:
     """One file as the sheet names it.
 
-    `record` is the record that it is or carries, `verdict` what its seal says; None where it has none.
+    `record` is the record that it is or carries, `verdict` what its seal says; None where it has none. `strangers` say
+    which files beside it belong to another issue.
     """
 
     name: str
@@ -35,6 +36,7 @@ class Listed:
     sha1: str
     record: Record | None
     verdict: seal.Verdict | None
+    strangers: Sequence[str] = ()
 
 
 def write(files: Sequence[Path], to: Path) -> str:
@@ -54,6 +56,7 @@ def write(files: Sequence[Path], to: Path) -> str:
         for item in listed
         if item.verdict and item.verdict.state != "intact"
     ]
+    words += [f"note: {item.name}: {said}" for item in listed for said in item.strangers]
     if len({_issue(item.record) for item in listed if item.record}) > 1:
         words.append("note: the files belong to more than one issue")
     return "\n".join(words)
@@ -72,7 +75,8 @@ def look(files: Sequence[Path]) -> list[Listed]:
         sealed = not _is_record(path.name) and seal.seal_of(data)
         verdict = seal.check(data) if sealed else None
         sha256 = hashlib.sha256(data).hexdigest()
-        found.append(Listed(path.name, len(data), sha256, sha1, _record(path.name, data), verdict))
+        record = _record(path.name, data)
+        found.append(Listed(path.name, len(data), sha256, sha1, record, verdict, _strangers(path, data, record)))
     if faults:
         raise CommandError("\n".join(faults))
     return found
@@ -116,6 +120,14 @@ def _record(name: str, data: bytes) -> Record | None:
         return from_json(data.decode()) if _is_record(name) else record_of(seal.issued_bytes(data))
     except (MismatchError, ValueError, KeyError, TypeError):
         return None
+
+
+def _strangers(path: Path, data: bytes, record: Record | None) -> list[str]:
+    if record is None:
+        return []
+    if _is_record(path.name):
+        return strangers(record, path)
+    return [finding.text for finding in beside(path, data) if not finding.good]
 
 
 def _issue(record: Record | None) -> tuple[str, str]:

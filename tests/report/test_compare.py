@@ -182,7 +182,7 @@ def test_a_mixed_set_is_said_from_either_side(folder: Path) -> None:
     assert said == {
         "C-7_A.html": ("C-7_A.record.json belongs to another issue: the files are a mixed set",),
         "C-7_A.record.json": ("C-7_A.html beside it belongs to another issue: the files are a mixed set",),
-        "C-7_A.pdf": (),
+        "C-7_A.pdf": ("C-7_A.html beside it belongs to another issue: the files are a mixed set",),
     }
 
 

@@ -15,7 +15,7 @@ from calckit.core.book import Entry, this_cell
 from calckit.core.digits import typed_numeral
 from calckit.core.formula import Formula
 from calckit.core.handle import Handle, Handles
-from calckit.core.record import Candidate, Flag, Line, Margin
+from calckit.core.record import Candidate, Flag, Line, Margin, Source
 from calckit.core.table import load
 from calckit.errors import Fault, InputError, ScopeError
 from calckit.standards.asce7 import formulas
@@ -91,7 +91,8 @@ def design_spectrum(scope: Scope) -> Handles:
     if faults:
         raise InputError("asce7.design_spectrum", faults)
     with scope.step():
-        made = Handles() if basis(scope) == "site-specific" else _mapped(scope)
+        taken = scope.choice("hazard_basis", "mapped", Source(formulas.NAME, "11.4.4"))
+        made = Handles() if taken == "site-specific" else _mapped(scope)
         made += [scope.compute(formulas.T_0), scope.compute(formulas.T_S)]
         if study(scope).reading == "both":
             made.append(scope.compute(formulas.T_S_INCREASED))

@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, Any
 from calckit import units
 from calckit.core.handle import Handle, Handles
 from calckit.core.inputs import NONE
-from calckit.core.record import NOT_CHECKED, NOT_OK, OK, Candidate, Flag
+from calckit.core.record import NOT_CHECKED, NOT_OK, OK, Candidate, Flag, Source
 from calckit.core.table import Table, load
 from calckit.errors import Fault, InputError, ScopeError, nearest_first
 from calckit.standards.asce7 import formulas
@@ -82,9 +82,9 @@ def _permitted(scope: Scope, key: str, row: Mapping[str, str], table: Table, cat
 
 def approximate_period(scope: Scope, typed: Mapping[str, Any]) -> Handle:
     """T_a by Table 12.8-2, or by 0.1 N where the engineer chooses it and its conditions hold."""
-    method = scope.word("T_a_method") or "table"
     operands = scope.typed_in_place(typed)
     with scope.step():
+        method = scope.choice("T_a_method", "table", Source(formulas.NAME, "12.8.2.1"))
         flags = _height_flags(scope)
         if method == "stories":
             return _by_stories(scope, flags)
