@@ -74,11 +74,12 @@ class _Held:
 
     def __init__(self, old: Any, new: Any) -> None:
         self._pages = tuple(
-            {page.indirect_reference.idnum: place for place, page in enumerate(reader.pages)} for reader in (old, new)
+            {_number(page.indirect_reference): place for place, page in enumerate(reader.pages)}
+            for reader in (old, new)
         )
         places = [{**reader.xref.get(0, {}), **reader.xref_objStm} for reader in (old, new)]
         moved = [number for number, place in places[0].items() if places[1].get(number) != place]
-        self._only_marked = all(number in self._pages[0] or _of_marks(old, number) for number in moved)
+        self._only_marked = all((number, 0) in self._pages[0] or _of_marks(old, number) for number in moved)
 
     def differing(self, old: Any, new: Any, but: set[str]) -> Iterator[str]:
         """The entries of two dictionaries that differ, in words; those in `but` are left out."""
@@ -92,7 +93,7 @@ class _Held:
         met = set()
         while waiting:
             a, b = waiting.pop()
-            numbers = getattr(a, "idnum", None), getattr(b, "idnum", None)
+            numbers = _number(a), _number(b)
             places = [pages.get(number) for pages, number in zip(self._pages, numbers, strict=True)]
             if places != [None, None]:
                 if places[0] != places[1]:
@@ -118,6 +119,11 @@ class _Held:
             elif a != b:
                 return False
         return True
+
+
+def _number(thing: Any) -> tuple[int, int] | None:
+    """Number and generation of a reference; None if it is none."""
+    return (thing.idnum, thing.generation) if hasattr(thing, "generation") else None
 
 
 def _raw(entries: Any, key: str) -> Any:

@@ -115,3 +115,24 @@ def row_of(line: Line) -> str:
     """The source of a line's row in the HTML file."""
     (found,) = re.findall(rf'<tr id="line-{line.n}".*?(?=<tr id="line-|</section>)', page(), flags=re.DOTALL)
     return str(found)
+
+
+def everywhere(*words: str) -> list[tuple[int, str]]:
+    """Of these words, those missing on a sheet."""
+    return [(n, word) for n, text in enumerate(sheet_texts(), 1) for word in words if squeezed(word) not in text[:420]]
+
+
+def formulas(row: str) -> str:
+    """The formulas of a row as a reader without eyesight is told them."""
+    return squeezed(unescape("".join(re.findall(r'(?:alttext|aria-label)="([^"]*)"', row))))
+
+
+def plain(row: str) -> str:
+    """The words of a row, without blanks."""
+    return squeezed(unescape(re.sub("<[^>]*>", " ", row)))
+
+
+def section(title: str, until: str) -> str:
+    """The words of the PDF between two headings, the contents left out."""
+    text = "".join(sheet_texts()[1:])
+    return text[text.index(squeezed(title)) : text.index(squeezed(until))]

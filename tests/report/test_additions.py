@@ -237,6 +237,31 @@ def test_a_font_that_was_exchanged_is_named_on_each_of_its_sheets(issued: bytes)
     assert all(re.fullmatch(r"sheet \d+: resources", said) for said in found)
 
 
+def test_another_generation_of_an_object_is_another_object(issued: bytes) -> None:
+    """Written by hand: the first sheet takes its contents from a later generation of the same object number."""
+    page = pypdf.PdfReader(io.BytesIO(issued)).pages[0].indirect_reference
+    assert page is not None
+    found = re.search(rb"\n%d 0 obj\n(.*?)\nendobj" % page.idnum, issued, re.DOTALL)
+    assert found is not None
+    contents = re.search(rb"/Contents (\d+) 0 R", found[1])
+    root, size = re.search(rb"/Root (\d+) 0 R", issued), re.search(rb"/Size (\d+)", issued)
+    start = re.findall(rb"startxref\s+(\d+)", issued)[-1]
+    assert contents and root and size
+    number = int(contents[1])
+    data, places = issued + b"\n", {}
+    body = found[1].replace(contents[0], b"/Contents %d 1 R" % number)
+    for name, text in ((page.idnum, body), (number, b"<</Length 0>>\nstream\n\nendstream")):
+        places[name] = len(data)
+        data += b"%d %d obj\n%s\nendobj\n" % (name, int(name == number), text)
+    table = len(data)
+    data += b"xref\n"
+    for name, place in sorted(places.items()):
+        data += b"%d 1\n%010d %05d n \n" % (name, place, int(name == number))
+    data += b"trailer\n<</Size %s/Root %s 0 R/Prev %s>>\nstartxref\n%d\n%%%%EOF\n" % (size[1], root[1], start, table)
+    assert pypdf.PdfReader(io.BytesIO(data)).pages[0].get_contents().get_data() == b""  # type: ignore[union-attr]
+    assert changes(issued, data) == ["sheet 1: contents"]
+
+
 def test_what_cannot_be_read_counts_as_altered(issued: bytes) -> None:
     broken = issued + b"\n1 0 obj\n<<>>\nendobj\nstartxref\n7\n%%EOF\n"
     assert seal.check(broken).state == "altered"
