@@ -23,10 +23,12 @@ _SAID = re.compile(r": assert |AssertionError|DID NOT RAISE|substring not found"
 
 TYPST = "calckit/report/assets/report.typ"
 PIECES = "calckit/report/assets/pieces.typ"
+SHEETS = "calckit/report/assets/sheets.typ"
 PAGE = "calckit/report/assets/report.html.j2"
 VIEW = "calckit/report/view.py"
 LINES = "calckit/report/lines.py"
 LOG = "calckit/report/checklog.py"
+CHECKED = "calckit/report/checked.py"
 ISSUE = "calckit/report/issue.py"
 
 ROWS = "tests/report/test_requirement_rows.py::test_"
@@ -34,6 +36,8 @@ PACKAGE = "tests/report/test_requirement_package.py::test_"
 OF_PDF = "tests/report/test_pdf.py::test_"
 OF_LOG = "tests/report/test_checklog.py::test_"
 OF_ISSUE = "tests/report/test_issue.py::test_"
+OF_STATUS = "tests/report/test_status.py::test_"
+OF_CHECK = "tests/report/test_checked.py::test_"
 
 
 @dataclass(frozen=True)
@@ -54,7 +58,7 @@ def _of(rows: str, file: str, old: str, new: str, *tests: str) -> Mutation:
 ALL = [
     _of("A1", TYPST, 'field("Project", strong(sheet-title.project))', 'field("Project", [])',
         ROWS + "a1_a5_project_place_and_number_stand_on_every_sheet"),
-    _of("A2", TYPST, "of #counter(page).final().first()*", "of 99*", ROWS + "a2_sheets_are_counted_truly"),
+    _of("A2", SHEETS, "of #sheet-text(counter(page).final().first())*", "of 99*", ROWS + "a2_sheets_are_counted_truly"),
     _of("A3", TYPST, 'field("Date", sheet-title.date)', 'field("Date", [])',
         ROWS + "a3_revision_and_day_stand_on_every_sheet"),
     _of("A4", TYPST, "#let initials = [initials #blank(38pt) date #blank(50pt)]", "#let initials = []",
@@ -100,6 +104,10 @@ ALL = [
         PACKAGE + "b4_the_frame_for_seal_and_signature_is_51_mm_each_way_and_empty"),
     _of("B5", TYPST, 'field("Status", strong(upper(sheet-title.status)))', "[]",
         PACKAGE + "b5_the_status_stands_on_every_sheet"),
+    _of("B5", SHEETS, '#let standing = if view.standing != ""', '#let standing = if view.standing == "never"',
+        OF_STATUS + "every_sheet_of_a_withdrawn_revision_bears_the_word"),
+    _of("B6 E3", VIEW, 'for name in facts["preliminary_fields"])', 'for name in ("Purpose", "Date"))',
+        OF_STATUS + "fields_of_a_preliminary_issue_are_a_setting"),
     _of("B6", VIEW, 'if facts["status"] != "preliminary"', 'if facts["status"] != "never"',
         OF_PDF + "a_preliminary_issue_has_fields_in_place_of_the_seal"),
     _of("B7", "calckit/core/calc.py", "if not row[name].strip()", "if name not in row",
@@ -134,6 +142,12 @@ ALL = [
         "author: (),", PACKAGE + "b23_title_author_and_language_stand_in_the_metadata"),
     _of("C1", ISSUE, '    if status == "checked" and ', '    if status == "never" and ',
         OF_ISSUE + "what_the_calculation_contradicts_is_refused"),
+    _of("C2", CHECKED, '(_LEVEL, facts.get("check_level", "")),', '(_LEVEL, ""),',
+        OF_CHECK + "level_and_method_stand_on_the_cover_and_under_check"),
+    _of("C3", CHECKED, '(_METHOD, facts.get("check_method", "")),', '(_METHOD, ""),',
+        OF_CHECK + "level_and_method_stand_on_the_cover_and_under_check"),
+    _of("C6", CHECKED, "_INPUTS: _checked(marks.inputs)}", "_INPUTS: _checked(marks.coverage)}",
+        OF_CHECK + "coverage_of_lines_and_of_inputs"),
     _of("C4", PAGE, '<span class="mark" aria-hidden="true"></span>', "",
         PACKAGE + "c4_a_mark_can_stand_against_every_line"),
     _of("C5", LOG, 'unmarked = found.pop("")', 'unmarked = found.pop("")[:1]',
@@ -146,6 +160,8 @@ ALL = [
         OF_LOG + "only_who_made_a_comment_closes_it"),
     _of("C10", "calckit/report/compare.py", 'listed = ("inputs", "results",', 'listed = ("inputs",',
         "tests/report/test_compare.py::test_changed_lines"),
+    _of("C10", PIECES, 'if line.was != "" { par(was(line.was)) }', "",
+        "tests/report/test_revised.py::test_the_old_value_stands_beside_the_result_in_both_files"),
     _of("C11", "calckit/report/changes.py", "moved |= after.keys() - before.keys()", "moved -= before.keys()",
         "tests/report/test_changes.py::test_one_story_weight_lists_the_given_and_every_moved_result_and_nothing_else"),
     _of("C12", LOG, "if line and digits == _mark_of(line)]", "if line]",
