@@ -107,8 +107,8 @@ def build(record: Record, lines: Lines) -> MattersView | None:
 
     >>> from tests.report.sample import record
     >>> found = build(record(), Lines(record()))
-    >>> [(row.ref.id, row.level, row.effects[0].text) for row in found.tables[0].rows[:2]]
-    [('S_1', '', '+1.000'), ('h_n', '', '−0.800')]
+    >>> [(row.ref.id, row.effects[4].text) for row in found.tables[0].rows]  # an overridden value counts as an input
+    [('Y.C_s', '+1.000')]
     """
     ids = influence.governing(record)
     if not ids:
