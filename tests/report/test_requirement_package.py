@@ -85,7 +85,9 @@ def test_b4_the_frame_for_seal_and_signature_is_51_mm_each_way_and_empty() -> No
     side = 51 / 25.4 * 72
     found = [box for box in frames(1) if box[2] - box[0] >= side and box[3] - box[1] >= side]
     label = next(run for run in issued.sheets().body(1) if run.text.startswith("Seal and signature"))
-    (left, bottom, right, top) = next(box for box in found if abs(box[0] - label.x0) < 2 and box[3] < label.y)
+    below = [box for box in found if abs(box[0] - label.x0) < 2 and box[3] < label.y]
+    assert len(below) == 1
+    left, bottom, right, top = below[0]
     for run in issued.sheets().runs(1):
         assert not (run.x1 > left and run.x0 < right and bottom < run.y < top), run.text
     inner = [box for box in frames(1) if box[0] > left and box[2] < right and box[1] > bottom and box[3] < top]
