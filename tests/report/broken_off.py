@@ -35,7 +35,7 @@ def report(record: Record) -> issue.Report:
 
 def write(folder: Path, made: issue.Report) -> str:
     """The writing half of an issue; what the terminal says."""
-    issue.produce = lambda *_: made  # type: ignore[assignment]
+    issue.produce = lambda *_, **__: made  # type: ignore[assignment]
     return issue.issue(notebook.Notebook("demo", Path(), (), {}), Settings(), folder).text
 
 
