@@ -81,7 +81,16 @@ def _parser() -> argparse.ArgumentParser:
     issue.add_argument("--status", metavar="WORD", help=f"one of: {', '.join(STATUSES)}")
     issue.add_argument("--date", metavar="DAY", help="date of the issue, such as 2026-12-01")
     issue.add_argument("--confirmed", metavar="FILE", help="office register of values confirmed against the standard")
+    issue.add_argument(
+        "--former", metavar="FILE", type=Path, help="issued file of the earlier revision: changes since are flagged"
+    )
+    issue.add_argument(
+        "--check-log", metavar="FILE", type=Path, help="check log (CSV): print its marks and comments, tie its new rows"
+    )
     issue.add_argument("--only", choices=("html", "pdf"), help="write this form alone")
+    issue.add_argument(
+        "--short", action="store_true", help="inputs, results and the path between; beside the full form, as *_short"
+    )
     issue.set_defaults(command=_issue)
 
     recheck = commands.add_parser("recheck", help="hold an issued PDF or HTML file against itself")
@@ -95,6 +104,12 @@ def _parser() -> argparse.ArgumentParser:
     comments.add_argument("file", metavar="PDF", type=Path)
     comments.add_argument("--check-log", metavar="FILE", type=Path, required=True, help="check log (CSV) to add to")
     comments.set_defaults(command=_comments)
+
+    respond = commands.add_parser("respond", help="write the response to a check log's comments, to be signed by hand")
+    respond.add_argument("log", metavar="LOG", type=Path, help="check log (CSV) with the answers")
+    respond.add_argument("--report", metavar="FILE", type=Path, required=True, help="the issued PDF that meets them")
+    respond.add_argument("--to", metavar="PATH", type=Path, default=Path(), help="file or folder to write to")
+    respond.set_defaults(command=_respond)
 
     files = commands.add_parser("files", help="write a signature report: files with digests, to be signed by hand")
     files.add_argument("files", metavar="FILE", type=Path, nargs="+")
@@ -176,7 +191,10 @@ def _issue(arguments: argparse.Namespace) -> int:
     word.start()
     try:
         formats = (arguments.only,) if arguments.only else issue.FORMATS
-        issued = issue.issue(source, settings, arguments.to, formats)
+        issued = issue.issue(
+            source, settings, arguments.to, formats,
+            former=arguments.former, check_log=arguments.check_log, short=arguments.short,
+        )  # fmt: skip
     finally:
         word.cancel()
     print(issued.text)
@@ -209,10 +227,27 @@ def _print_findings(findings: Sequence[Finding]) -> bool:
     return all(finding.good for finding in findings)
 
 
+def _say_mixed(path: Path) -> None:
+    """Say if a report belongs to another issue than the files beside it."""
+    from calckit.report.recheck import beside, read
+
+    for finding in beside(path, read(path)):
+        if not finding.good:
+            print(f"note: {finding.text}", file=sys.stderr)
+
+
 def _comments(arguments: argparse.Namespace) -> int:
     from calckit.report import comments
 
+    _say_mixed(arguments.file)
     print(comments.collect(arguments.file, arguments.check_log))
+    return DONE
+
+
+def _respond(arguments: argparse.Namespace) -> int:
+    from calckit.report import respond
+
+    print(respond.respond(arguments.log, arguments.report, arguments.to))
     return DONE
 
 
@@ -237,6 +272,7 @@ def _compare(arguments: argparse.Namespace) -> int:
 def _extract(arguments: argparse.Namespace) -> int:
     from calckit.report import extract
 
+    _say_mixed(arguments.file)
     ids = [id_.strip() for id_ in arguments.ask.split(",") if id_.strip()]
     print(*extract.export(arguments.file, ids, arguments.to), sep="\n")
     return DONE
@@ -245,6 +281,7 @@ def _extract(arguments: argparse.Namespace) -> int:
 def _reconcile(arguments: argparse.Namespace) -> int:
     from calckit.report import reconcile
 
+    _say_mixed(arguments.file)
     rows = reconcile.reconcile(arguments.file, arguments.csv)
     print(reconcile.text(rows))
     return DONE if all(row.settled for row in rows) else MISMATCH

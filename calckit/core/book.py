@@ -13,7 +13,7 @@ from dataclasses import dataclass, field, replace
 from graphlib import CycleError, TopologicalSorter
 from typing import Any
 
-from calckit.core.record import Figure, Line, Table, canonical, digest
+from calckit.core.record import Figure, Line, Operand, Table, canonical, digest
 from calckit.core.settings import Settings, current
 from calckit.errors import DuplicateError
 
@@ -206,12 +206,16 @@ class Book:
 
     def _outdated(self, line: Line, stale: Mapping[str, object]) -> list[str]:
         """Operands that are not what they were, or are themselves stale; one typed in place has no line behind it."""
-        now = {name: self.find(line.part, name) for name, operand in line.inputs.items() if operand.content}
-        return [
-            name
-            for name, entry in now.items()
-            if entry is None or entry.line.content != line.inputs[name].content or entry.line.id in stale
-        ]
+        found = []
+        for name, operand in line.inputs.items():
+            entry = self.find(line.part, name)
+            if operand.is_absent():
+                changed = entry is not None
+            else:
+                changed = entry is None or entry.line.content != operand.content or entry.line.id in stale
+            if changed and (operand.content or operand.is_absent()):
+                found.append(name)
+        return found
 
     def behind(self, ids: Iterable[str], stale: Mapping[str, Sequence[str]]) -> tuple[list[str], list[Cell]]:
         """Why lines are stale: what has become of the operands it began with, and the cells to run, in order."""
@@ -228,7 +232,7 @@ class Book:
             for name in stale[id_]:
                 found = self.find(line.part, name)
                 if found is None or found.line.id not in stale:
-                    causes[f"{name} {_became(name, found)}"] = None
+                    causes[f"{name} {_became(name, line.inputs[name], found)}"] = None
                     continue
                 needs |= {found.cell} - {cell}
                 ahead.append(found.line.id)
@@ -256,7 +260,9 @@ class Book:
         return lines
 
 
-def _became(name: str, found: Entry | None) -> str:
+def _became(name: str, operand: Operand, found: Entry | None) -> str:
+    if operand.is_absent():
+        return "is there now"
     if found is None:
         return "is gone"
     return "changed" if found.line.id == name else f"is {found.line.id} now"

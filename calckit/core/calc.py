@@ -14,13 +14,17 @@ from typing import Any
 from calckit.core import settings
 from calckit.core.book import Book, _shell
 from calckit.core.outputs import Outputs
-from calckit.core.record import STATUSES, Enclosure
+from calckit.core.record import CHECK_LEVELS, STATUSES, Enclosure
 from calckit.core.sources import Document, Sources
 from calckit.core.standard import edition
 from calckit.core.symbol import Symbol
 from calckit.core.writer import Writer
 from calckit.errors import DuplicateError, Fault, InputError, UnknownNameError
 
+PRELIMINARY_FIELDS = ("Purpose", "Engineer of record", "License number", "Date")
+"""What a preliminary issue prints in place of the clear space for the seal."""
+
+_LISTS = ("amendments", "preliminary_fields")
 _current: list[Calc] = []
 
 
@@ -37,7 +41,13 @@ class Calc(Writer):
 
     Arguments are the fields of the title block; `standard` names the standard in one edition, `units` the unit set
     ("US" or "SI") in which empirical formulas are worked and results are shown, `supplements` those in force (None:
-    not answered; () for none), with `supplements_source`. Raises InputError naming every bad field at once.
+    not answered; () for none), with `supplements_source`. `first_sheet` and `sheet_prefix` number the sheets ("Sheet
+    S-12 of S-30"). A preliminary issue prints `preliminary_fields` under `preliminary_caption` in place of the clear
+    space (with () it keeps the space); above the space stands `seal_caption`. `open_items_accepted` is the reason why
+    an issue for construction may leave items open; the cover prints it. `check_level` (self, other person, other
+    organization) and `check_method` (line by line, alternative method, independent recalculation, comparison with a
+    proven case, or in other words) stay blank until the checker states them. Raises InputError naming every bad field
+    at once.
 
     >>> calc = Calc(project="Harbor Street Clinic", number="C-101", standard="ASCE 7-16")
     >>> calc.document("S-201", title="Framing elevations", revision="2", date="2026-11-14")
@@ -64,11 +74,19 @@ class Calc(Writer):
         purpose: str = "",
         prepared_by: str = "",
         checked_by: str = "",
+        check_level: str = "",
+        check_method: str = "",
         units: str = "US",
         paper: str = "Letter",
         standard: str = "ASCE 7-16",
         supplements: Sequence[int] | None = None,
         supplements_source: str = "",
+        first_sheet: int = 1,
+        sheet_prefix: str = "",
+        seal_caption: str = "Seal and signature",
+        preliminary_caption: str = "Preliminary issue, not for construction",
+        preliminary_fields: Sequence[str] = PRELIMINARY_FIELDS,
+        open_items_accepted: str = "",
     ) -> None:
         fields = {name: value for name, value in locals().items() if name != "self" and not name.startswith("__")}
         self.superseded = False
@@ -150,7 +168,16 @@ class Calc(Writer):
         return dependency(self.book, self[name].id)
 
     def revise(self, revision: str, *, date: str, reason: str, by: str, sheets: str = "") -> None:
-        """A row of the revision table."""
+        """A row of the revision table; every revision but the first needs one before it is issued.
+
+        `reason` says what changed and why; with `sheets` blank the report of an issue that names the former one
+        (`--former`) says which sheets changed. Raises InputError naming every blank field, DuplicateError for a second
+        row of one revision.
+
+        >>> Calc(project="Demo", number="D-1").revise("B", date="2026-12-08", reason=" ", by="originator")
+        Traceback (most recent call last):
+        calckit.errors.InputError: revise: revise reason: needed text; given blank
+        """
         row = {"revision": revision, "date": date, "reason": reason, "by": by, "sheets": sheets}
         faults = [
             Fault(f"revise {name}", "text", "blank")
@@ -191,7 +218,8 @@ def current() -> Calc | None:
 
 def _title_block(fields: dict[str, Any], run: settings.Settings) -> dict[str, Any]:
     block = dict(fields)
-    block["amendments"] = list(block["amendments"])
+    for name in _LISTS:
+        block[name] = [block[name]] if isinstance(block[name], str) else list(block[name])
     for name in block:
         found = run.value(name)
         if found:
@@ -208,8 +236,10 @@ def _title_block(fields: dict[str, Any], run: settings.Settings) -> dict[str, An
 
 def _typed_field(name: str, text: str, own: Any, run: settings.Settings) -> Any:
     value: Any = text
-    if name == "amendments":
+    if name in _LISTS:
         value = [part.strip() for part in text.split(";") if part.strip()]
+    if name == "first_sheet" and text.strip().isdecimal():
+        value = int(text)
     if name == "supplements":
         words = [part.strip() for part in text.split(",") if part.strip()]
         numbers = words != ["none"]
@@ -227,9 +257,11 @@ def _typed_field(name: str, text: str, own: Any, run: settings.Settings) -> Any:
 
 
 def _field_fault(name: str, value: Any) -> Fault | None:
-    choices = {"status": STATUSES, "units": ("US", "SI"), "paper": ("Letter", "A4")}.get(name)
+    choices = {
+        "status": STATUSES, "units": ("US", "SI"), "paper": ("Letter", "A4"), "check_level": CHECK_LEVELS
+    }.get(name)  # fmt: skip
     if choices and value not in choices:
-        return Fault(name, f"one of {', '.join(choices)}", repr(value))
+        return Fault(name, f"one of {', '.join(filter(None, choices))}", repr(value))
     if name == "project" and not str(value).strip():
         return Fault(name, "the project's name", "blank")
     if name == "date" and value:
@@ -241,6 +273,12 @@ def _field_fault(name: str, value: Any) -> Fault | None:
         if not all(isinstance(number, int) for number in value):
             return Fault(name, "numbers of the supplements in force, or none", repr(value), 'write "1,3" or "none"')
         return None
-    if name != "amendments" and value is not None and not isinstance(value, str):
+    if name == "first_sheet":
+        good = isinstance(value, int) and not isinstance(value, bool) and value >= 1
+        return None if good else Fault(name, "a whole number from 1 up", repr(value))
+    texts = value if name in _LISTS else [value]
+    if value is not None and not all(isinstance(text, str) for text in texts):
         return Fault(name, "text", repr(value))
+    if name == "preliminary_fields" and not all(text.strip() for text in value):
+        return Fault(name, "a name for every field, or none", repr(value))
     return None

@@ -23,6 +23,9 @@ NOT_OK = "NOT OK"
 NOT_CHECKED = "NOT CHECKED"
 
 STATUSES = ("preliminary", "for check", "checked", "for construction", "superseded", "void")
+WITHDRAWN = ("superseded", "void")
+"""Statuses that withdraw a revision: marked at the head of every sheet, written beside the files they withdraw."""
+CHECK_LEVELS = ("", "self", "other person", "other organization")
 
 TO_BE_CONFIRMED = "to be confirmed against the standard"
 
@@ -56,12 +59,24 @@ class Source:
 
 @dataclass
 class Operand:
-    """One input of a line as it stood when the line was written: value in `unit`, printed form, content hash."""
+    """One input of a line as it stood when the line was written: value in `unit`, printed form, content hash.
+
+    What a check that was not made waits for and no line gave is absent: it has no value and no content. One typed in
+    place has a value and no content.
+    """
 
     value: Value
     unit: str
     shown: str | list[str]
     content: str = ""
+
+    def is_absent(self) -> bool:
+        """Whether no line gave this operand when it was asked for.
+
+        >>> Operand(None, "", "").is_absent(), Operand(1.0, "ft", "1 ft").is_absent()
+        (True, False)
+        """
+        return self.value is None and not self.content
 
 
 @dataclass

@@ -17,7 +17,7 @@ from calckit.core.book import Entry, this_cell
 from calckit.core.formula import Formula
 from calckit.core.handle import Handle
 from calckit.core.inputs import NONE, Reading, read
-from calckit.core.record import NOT_OK, Candidate, Flag, Line, Margin, Operand, Override, Source
+from calckit.core.record import NOT_CHECKED, NOT_OK, Candidate, Flag, Line, Margin, Operand, Override, Source
 from calckit.core.symbol import Symbol
 from calckit.errors import Fault, InputError, StaleObjectError, UnknownNameError, nearest_first
 
@@ -26,6 +26,8 @@ if TYPE_CHECKING:
     from calckit.core.calc import Calc
 
 OPEN_ANSWER = "not answered"
+DEFAULT = "default"
+"""What the input list says of a choice that nobody made."""
 _ID = re.compile(r"[\w.\-]+\Z")
 
 
@@ -88,6 +90,13 @@ class Scope:
         value = entry.line.value if entry else None
         return value if isinstance(value, str) and value not in (NONE, OPEN_ANSWER) else None
 
+    def choice(self, name: str, usual: str, source: Source) -> str:
+        """The word chosen; where nobody chose, a line among the inputs says that the usual one is taken by default."""
+        entry = self.find(name)
+        if entry is None or entry.line.detail == DEFAULT:
+            self.state(name, usual, "given", source, detail=DEFAULT)
+        return self.word(name) or usual
+
     def number(self, name: str, unit: str = "") -> float | None:
         """The number a name stands for here, in `unit` (blank: in its own); None if there is none."""
         entry = self.find(name)
@@ -140,12 +149,17 @@ class Scope:
     def write(self, entry: Entry, rests: Sequence[str] = ()) -> Handle:
         """Write one line: the single place where set values and overrides of computed lines take effect.
 
-        `rests` are symbols that the line rests on without standing in its formula: what chose a row or a branch.
+        `rests` are symbols that the line rests on without standing in its formula: what chose a row or a branch, what a
+        check that is not made waits for. Of these, what no line gives yet is recorded as absent.
         """
         line = entry.line
-        for found in filter(None, map(self.find, rests)):
-            chosen = found.line
-            line.inputs.setdefault(chosen.id, Operand(chosen.value, chosen.unit, chosen.shown, chosen.content))
+        for name in rests:
+            found = self.find(name)
+            if found:
+                chosen = found.line
+                line.inputs.setdefault(chosen.id, Operand(chosen.value, chosen.unit, chosen.shown, chosen.content))
+            elif line.verdict == NOT_CHECKED:
+                line.inputs[name] = Operand(None, "", "")
         if line.kind in ("computed", "table", "analysis") and not isinstance(line.value, list):
             self._put_in_force(entry)
         if line.source:
@@ -267,7 +281,7 @@ class Scope:
             raise UnknownNameError(f"check {title!r}: symbol", unknown[0], known)
         if absent:
             missing = ", ".join(f"{self.plain(name)} ({self.symbol(name).meaning})" for name in absent)
-            return self.write(work.not_checked(self, id_, title, missing, source, relation))
+            return self.write(work.not_checked(self, id_, title, missing, source, relation), absent)
         with self.step():
             entry = work.check(self, id_, formula, title=title, flags=flags)
             handle = self.write(entry)
@@ -279,7 +293,7 @@ class Scope:
         self, id_: str, title: str, verdict: str, source: Source, *, detail: str = "", missing: str = "",
         rests: Sequence[str] = (),
     ) -> Handle:  # fmt: skip
-        """A check decided by a rule that is no relation of numbers."""
+        """A check decided by a rule that is no relation of numbers; `rests` as in `write`, what is missing included."""
         line = Line(
             self.id_of(id_),
             "check",

@@ -14,6 +14,7 @@ from calckit.errors import MismatchError
 
 RECORD = "record.json"
 SETTINGS = "settings.json"
+CHECK_LOG = "check_log.csv"
 _FILE = "file-"
 _GIVEN = ("given", "assumption", "judgment")
 _MEDIA = {".csv": "text/csv", ".tsv": "text/tab-separated-values", ".txt": "text/plain", ".json": "application/json"}
@@ -39,13 +40,15 @@ class Attachment:
 
 @dataclass(frozen=True)
 class Parcel:
-    """Everything that is attached: `files` maps the name used in the notebook to the content."""
+    """Everything that is attached: `files` maps the name used in the notebook to the content, `check_log` is None in an
+    issue without one."""
 
     stem: str
     notebook: bytes
     settings: bytes
     files: Mapping[str, bytes]
     record: bytes
+    check_log: bytes | None = None
 
     def pack(self) -> list[Attachment]:
         """The attachments, in the order of the reader's interest.
@@ -57,6 +60,8 @@ class Parcel:
             Attachment(_FILE + quote(name, safe=" "), data, _media(name), f"File read by the notebook: {name}", "data")
             for name, data in sorted(self.files.items())
         ]
+        if self.check_log is not None:
+            files.append(Attachment(CHECK_LOG, self.check_log, "text/csv", "Check log: marks and comments", "data"))
         return [
             Attachment(
                 f"{self.stem}.ipynb", self.notebook, "application/x-ipynb+json", "Source notebook, no outputs", "source"
@@ -84,7 +89,9 @@ def unpack(attached: Mapping[str, bytes]) -> Parcel:
         raise MismatchError(f"the attachments of an issued report are not there: {', '.join(missing)}")
     files = {unquote(name.removeprefix(_FILE)): data for name, data in attached.items() if name.startswith(_FILE)}
     stem = notebooks[0].removesuffix(".ipynb")
-    return Parcel(stem, attached[notebooks[0]], attached[SETTINGS], files, attached[RECORD])
+    return Parcel(
+        stem, attached[notebooks[0]], attached[SETTINGS], files, attached[RECORD], attached.get(CHECK_LOG)
+    )
 
 
 def inputs_hash(record: Record, settings: bytes, files: Mapping[str, bytes]) -> str:

@@ -116,6 +116,26 @@ def comments_of(data: bytes) -> list[Comment]:
     return found
 
 
+def sheets_of_lines(data: bytes, record: Record) -> dict[int, str]:
+    """The name of the sheet on which each line of an issued PDF begins, by the number of the line.
+
+    Raises MismatchError if the file is damaged.
+    """
+    from pypdf import PdfReader
+
+    facts, found = record.calculation, dict[int, str]()
+    first, prefix = facts.get("first_sheet", 1), facts.get("sheet_prefix", "")
+    try:
+        pages = PdfReader(io.BytesIO(data)).pages
+        for place in range(len(pages)):
+            for row in _drawn_rows(pages[place]):
+                found.setdefault(row.number, f"{prefix}{place + first}")
+    except Exception as error:  # a damaged file may raise anything in the reader
+        raise MismatchError(f"the sheets cannot be read from the PDF: {error}") from error
+    found.pop(0, None)  # a row that goes on from the sheet before
+    return found
+
+
 # --- annotations
 
 
@@ -216,13 +236,17 @@ def _said(entry: checklog.Entry) -> str:
 
 def _rows(pages: Sequence[Any], sheet: int) -> list[_Row]:
     """The stretches of a sheet that lines take up, from top to bottom; a row without a number goes on from before."""
-    drawn = _Drawn()
-    pages[sheet - 1].extract_text(visitor_operand_before=drawn.operator, visitor_text=drawn.text)
-    rows = list(drawn.rows())
+    rows = _drawn_rows(pages[sheet - 1])
     if rows and not rows[0].number:
         before = next((above[-1].number for at in range(sheet - 1, 0, -1) if (above := _rows(pages, at))), 0)
         rows[0] = replace(rows[0], number=before)
     return rows
+
+
+def _drawn_rows(page: Any) -> list[_Row]:
+    drawn = _Drawn()
+    page.extract_text(visitor_operand_before=drawn.operator, visitor_text=drawn.text)
+    return list(drawn.rows())
 
 
 @dataclass

@@ -18,7 +18,7 @@ from calckit.report.attachments import Parcel
 from calckit.report.changes import Change, Changed, Changes, between
 from calckit.report.files import replace_together
 from calckit.report.line_changes import NONE, Step
-from calckit.report.recheck import RECORD_ENDING, beside, parcel_of, read, title
+from calckit.report.recheck import beside, parcel_of, read, strangers, title
 
 CAUTION = (
     "This comparison states what differs between two files. It does not say why, nor whether a change is right; that "
@@ -26,7 +26,8 @@ CAUTION = (
 )
 _LONG = 64  # characters of old and new together above which each stands on a row of its own at the terminal
 _SHORT = 160  # characters of a notebook text that are shown
-_SET_VALUE = "set value "
+SET_VALUE = "set value "
+"""How a difference in the settings names a value that was set for the issue."""
 _NO_PARCEL = "settings, files and text cells were not compared: a record file does not hold them"
 
 
@@ -110,7 +111,7 @@ def open_issue(path: Path) -> Issue:
     except MismatchError as error:
         raise MismatchError(f"{path}: {error}") from error
     record = _record(path, parcel.record)
-    faults = [verdict.text()] if verdict.state == "altered" else []
+    faults = ["; ".join([verdict.text(), *verdict.changes])] if verdict.state == "altered" else []
     faults += _altered_lines(record)
     faults += [finding.text for finding in beside(path, data) if not finding.good]
     remarks = (verdict.text(),) if verdict.state == "added" else ()
@@ -123,13 +124,7 @@ def _record_file(path: Path) -> Issue:
     except OSError as error:
         raise CommandError(f"{path} cannot be read: {error.strerror}") from error
     record = _record(path, data)
-    faults = _altered_lines(record)
-    stem = path.name.removesuffix(RECORD_ENDING)
-    for form, named in (record.seals or {}).items():
-        other = path.with_name(f"{stem}.{form}")
-        if other.is_file() and (found := other.read_bytes()) and seal.seal_of(found) != named:
-            faults.append(f"{other.name} beside it belongs to another issue: the files are a mixed set")
-    return Issue(path.name, record, None, tuple(faults))
+    return Issue(path.name, record, None, (*_altered_lines(record), *strangers(record, path)))
 
 
 def _record(path: Path, data: bytes) -> Record:
@@ -164,7 +159,7 @@ def _entries(parcel: Parcel, titles: Container[str]) -> Iterator[tuple[str, str]
         values: Mapping[str, str] = settings.get("set") or {}
         named: Mapping[str, str] = settings.get("files") or {}
         register: str = settings.get("confirmed") or ""
-        found = [*((f"{_SET_VALUE}{id_}", str(value)) for id_, value in values.items() if id_ not in titles)]
+        found = [*((f"{SET_VALUE}{id_}", str(value)) for id_, value in values.items() if id_ not in titles)]
         found += [(f"file {name}", _content(text.encode())) for name, text in named.items()]
     except (ValueError, AttributeError) as error:
         raise MismatchError(f"the attached settings cannot be read: {error}") from error
@@ -277,7 +272,7 @@ def narrative(comparison: Comparison) -> list[str]:
     for lead, changes in (
         ("", changed.criteria),
         ("Input ", changed.inputs),
-        ("", tuple(one for one in comparison.settings if not one.id.startswith(_SET_VALUE))),  # its line says more
+        ("", tuple(one for one in comparison.settings if not one.id.startswith(SET_VALUE))),  # its line says more
         ("Override of ", changed.overrides),
         ("Line ", changed.formulas),
         ("Decision at ", changed.decisions),
@@ -345,7 +340,7 @@ def _former(steps: list[Step]) -> str:
     rows = [step for step in steps if step.what.startswith("row ")]
     values = [step.old for step in steps if not step.what]
     if rows:
-        return "; ".join(f"{step.what.removeprefix('row ')}: {step.old}" for step in rows)
+        return ", ".join(f"{step.old} at {step.what.removeprefix('row ')}" for step in rows)
     return values[0] if values else "; ".join(f"{step.what}: {step.old}" for step in steps)
 
 

@@ -60,19 +60,28 @@ def pages(record: Record, files: Mapping[str, bytes], form: Literal["svg", "png"
     return found
 
 
-def place(source: Source, bound: Sequence[Page]) -> int | None:
+def bound(record: Record) -> list[tuple[str, int]]:
+    """The document and the number of each page that a calculation binds, in the order of `pages`.
+
+    >>> bound(Record({}, enclosures=[Enclosure("H-2", "hazard.pdf", "1, 3", "printout")]))
+    [('H-2', 1), ('H-2', 3)]
+    """
+    return [(one.document, number) for one in record.enclosures for number in one.page_numbers()]
+
+
+def place(source: Source, bound: Sequence[tuple[str, int]]) -> int | None:
     """Where in `bound` the page stands that a source names ("H-2 p. 4"); None if it is not bound.
 
     A source that names no page points to the first bound page of its document.
 
-    >>> bound = [Page("H-2", n, "", 612, 792, b"") for n in (1, 4)]
-    >>> place(Source("H-2", "p. 4"), bound), place(Source("H-2", "p. 2"), bound), place(Source("H-2"), bound)
+    >>> pages = [("H-2", 1), ("H-2", 4)]
+    >>> place(Source("H-2", "p. 4"), pages), place(Source("H-2", "p. 2"), pages), place(Source("H-2"), pages)
     (1, None, 0)
     """
     cited = _CITED.search(source.where)
-    for number, page in enumerate(bound):
-        if page.document == source.document and (cited is None or page.number == int(cited[1])):
-            return number
+    for at, (document, number) in enumerate(bound):
+        if document == source.document and (cited is None or number == int(cited[1])):
+            return at
     return None
 
 

@@ -15,7 +15,7 @@ from itertools import pairwise
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
-from calckit.report import fonts, seal
+from calckit.report import checked, fonts, seal
 from calckit.report.attachments import Attachment
 from calckit.report.enclosures import Page
 from calckit.report.model import LineView, Span, Typeset, View
@@ -116,6 +116,7 @@ def template(name: str) -> Template:
         finalize=_present,
     )
     environment.filters |= {"mathml": _mathml, "formula": _formula, "css": _css_text, "data": _data, "runs": _runs}
+    environment.filters["ranges"] = checked.ranges
     environment.globals |= {
         "style": Markup((_ASSETS / "report.css").read_text(encoding="utf-8")),
         "font": Markup(fonts.math_font_uri()),

@@ -7,7 +7,7 @@ a report prints the table.
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from calckit.core.record import Line, Record
 from calckit.errors import Fault, InputError, nearest_first
@@ -98,16 +98,28 @@ def breaks(record: Record, ids: Sequence[str]) -> list[Break]:
 
 
 def governing(record: Record) -> list[str]:
-    """The numbers worked out by the calculation that its answer names, in that order.
+    """The numbers that the answer is about, in its order.
+
+    Those are the numbers worked out by the calculation that the answer names and on which no other of them rests, and
+    the checks whose ratio it prints.
 
     >>> from tests.report.sample import record
-    >>> "X.V" in governing(record())
-    True
+    >>> {"X.V", "Y.V", "X.k", "Y.k"} <= set(governing(record())), "X.R" in governing(record())
+    (True, False)
     """
-    answer = (row for summary in record.summaries if summary.role == "answer" for row in summary.rows)
-    named = dict.fromkeys(id_ for row in answer for id_ in row.lines if id_)
-    lines = {line.id: line for line in record.lines}
-    return [id_ for id_ in named if lines[id_].kind in ("computed", "analysis") and isinstance(lines[id_].value, float)]
+    chain = Chain(record)
+    numbers, ratios = dict[str, None](), dict[str, None]()
+    for row in (row for summary in record.summaries if summary.role == "answer" for row in summary.rows):
+        for cell, id_ in zip(row.cells, row.lines, strict=True):
+            line = chain.lines.get(id_)
+            if line is None:
+                continue
+            if line.kind in ("computed", "analysis") and isinstance(line.value, float):
+                numbers[line.id] = None
+            elif line.kind == "check" and isinstance(line.value, float) and str(line.shown) in cell:
+                ratios[line.id] = None
+    below = {source for id_ in numbers for source in chain.upstream(id_) if source != id_}
+    return [id_ for id_ in numbers if id_ not in below] + list(ratios)
 
 
 def _numbers_only(chain: Chain, ids: Sequence[str]) -> None:
@@ -137,10 +149,13 @@ def _rows(chain: Chain, line: Line, ids: Sequence[str], is_open: bool) -> Iterat
 
 
 def _effect(chain: Chain, result: str, line: str, place: int) -> Effect:
+    if line not in chain.upstream(result):
+        return Effect(result, 0.0, 0.0)
     more, met = _side(chain, result, Seed(line, place, 1))
     less, met_less = _side(chain, result, Seed(line, place, -1))
     differ = more is not None and less is not None and abs(more - less) > _SAME * max(abs(more), abs(less))
-    near = [switch for switch in met.switches if abs(switch.percent) <= NEAR]
+    near = [switch for switch in met.switches if 0 < switch.percent <= NEAR]
+    near += [replace(switch, percent=-switch.percent) for switch in met_less.switches if 0 < switch.percent <= NEAR]
     return Effect(
         result, more, less,
         tuple({**met.ties, **met_less.ties}) if differ else (),

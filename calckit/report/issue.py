@@ -9,7 +9,7 @@ import os
 import re
 from collections.abc import Mapping, Sequence
 from concurrent.futures import ThreadPoolExecutor
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import UTC, date, datetime
 from pathlib import Path
 from typing import Literal
@@ -19,35 +19,41 @@ from calckit.core.record import (
     NOT_OK,
     STATUSES,
     TO_BE_CONFIRMED,
+    WITHDRAWN,
     Line,
     Record,
     from_json,
     lines_hash,
 )
 from calckit.errors import CommandError, MismatchError, NotebookError
-from calckit.report import enclosures, html, pdf, seal, view
+from calckit.report import checked, checklog, enclosures, html, pdf, revised, seal, view
 from calckit.report.attachments import Attachment, Parcel, inputs_hash
-from calckit.report.files import replace_together, report_name
+from calckit.report.compare import Issue
+from calckit.report.files import leftovers, replace_together, report_name
 from calckit.report.model import Block, Content, View
 from calckit.report.notebook import Notebook
 from calckit.report.prose import blocks
 from calckit.report.recheck import RECORD_ENDING, kind_of, record_of, title
 from calckit.report.run import Outcome, Problem, Settings, run
+from calckit.report.short import NAME_ENDING, shorten
 
 FORMATS = ("html", "pdf")
 _REPLACEABLE = ("preliminary", "for check")
+_WITHDRAW = '; to withdraw it, issue with --status superseded or void, which writes beside it'
+_MIXED = "; no record beside it names it: move it away if it is left of a writing that was broken off"
 _DAY = re.compile(r"\d{4}-\d{2}-\d{2}")
 
 
 @dataclass(frozen=True)
 class Report:
-    """A calculation ready to be written: its `record` without seals, the sealed files by format, and `notices` of what
-    a file cannot show as it was typed."""
+    """A calculation ready to be written: its `record` without seals, the sealed files by format, `notices` of what a
+    file cannot show as it was typed, and the check log `laid` over it."""
 
     name: str
     record: Record
     files: Mapping[str, bytes]
     notices: Sequence[str] = ()
+    laid: checked.Laid | None = None
 
 
 @dataclass(frozen=True)
@@ -98,10 +104,23 @@ def settings_from(
     return Settings(values, files, status, day, next(iter(register.values()), None))
 
 
-def produce(notebook: Notebook, settings: Settings, formats: Sequence[str] = FORMATS) -> Report:
-    """Run the notebook and make the report in these formats; nothing is written.
+def produce(
+    notebook: Notebook,
+    settings: Settings,
+    formats: Sequence[str] = FORMATS,
+    *,
+    former: Issue | None = None,
+    log: checklog.Log | None = None,
+    folder: Path = Path(),
+    short: bool = False,
+) -> Report:
+    """Run the notebook and make the report in these formats, whole or in its short form; nothing is written.
 
-    Raises NotebookError if a cell raises, and CommandError if a set value is at fault or the issue is refused.
+    With the `former` issue named, what changed since is told and flagged. With a check log it is the checker's copy;
+    new rows of the log were set on the former issue, named or lying in the folder.
+
+    Raises NotebookError if a cell raises, CommandError if a set value is at fault or the issue is refused, and
+    InputError if a row of the log stands on no line.
     """
     with ThreadPoolExecutor(len(FORMATS)) as pool:
         if "html" in formats:
@@ -113,14 +132,23 @@ def produce(notebook: Notebook, settings: Settings, formats: Sequence[str] = FOR
         record.inputs = inputs_hash(record, given, outcome.files)
         record.lines_hash = lines_hash(record.lines)
         record.seals = None
+        fields = record.calculation
+        name = report_name(fields.get("number", ""), fields.get("revision", ""), notebook.stem, fields["status"])
         parcel = Parcel(notebook.stem, notebook.bare(), given, outcome.files, record.to_json().encode())
-        model = view.build(record, _content(notebook, record))
+        changed = revised.revised(former, record, parcel) if former else None
+        model = view.build(record, _content(notebook, record), changed)
+        before = former.record if former else checked.former_beside(folder, name, record)
+        laid = checked.lay(log, record, before) if log else None
+        if laid:
+            model = checked.onto(model, record, laid)
+            parcel = replace(parcel, check_log=laid.log.to_csv().encode())
+        if short:
+            model = shorten(model, record)
         writers = {form: pool.submit(_WRITERS[form], model, record, outcome, parcel.pack()) for form in formats}
         written = {form: writer.result() for form, writer in writers.items()}
-    fields = record.calculation
-    name = report_name(fields.get("number", ""), fields.get("revision", ""), notebook.stem)
+    name += NAME_ENDING if short else ""
     notices = [notice for _, said in written.values() for notice in said]
-    return Report(name, record, {form: seal.apply(data) for form, (data, _) in written.items()}, notices)
+    return Report(name, record, {form: seal.apply(data) for form, (data, _) in written.items()}, notices, laid)
 
 
 def _accepted(notebook: Notebook, settings: Settings, outcome: Outcome) -> Record:
@@ -150,14 +178,29 @@ def _pdf(model: View, record: Record, outcome: Outcome, attached: Sequence[Attac
 _WRITERS = {"html": _html, "pdf": _pdf}
 
 
-def issue(notebook: Notebook, settings: Settings, folder: Path, formats: Sequence[str] = FORMATS) -> Issued:
-    """Issue a notebook into a folder.
+def issue(
+    notebook: Notebook,
+    settings: Settings,
+    folder: Path,
+    formats: Sequence[str] = FORMATS,
+    *,
+    former: Path | None = None,
+    check_log: Path | None = None,
+    short: bool = False,
+) -> Issued:
+    """Issue a notebook into a folder, whole or in its short form.
 
-    Raises as `produce` does, and CommandError if files of an issued revision stand there or a file cannot be written;
-    earlier files are then as they were.
+    `former` is an issued file of the earlier revision; the check log, if there is one, gets its new rows tied.
+
+    Raises as `produce` does, and CommandError if the former file cannot be used, if files of an issued revision stand
+    there, or a file cannot be read or written; earlier files, the log among them, are then as they were.
     """
-    report = produce(notebook, settings, formats)
+    log = checklog.read(check_log) if check_log else None
+    earlier = revised.open_former(former) if former else None
+    report = produce(notebook, settings, formats, former=earlier, log=log, folder=folder, short=short)
     notices = [*report.notices, *_earlier(folder, report.name)]
+    if short:
+        notices += _full_form(folder / (report.name.removesuffix(NAME_ENDING) + RECORD_ENDING), report.record)
     seals = {form: seal.seal_of(data) for form, data in report.files.items()}
     for form in FORMATS:
         left = folder / f"{report.name}.{form}"
@@ -167,9 +210,18 @@ def issue(notebook: Notebook, settings: Settings, folder: Path, formats: Sequenc
             else:
                 notices.append(f"note: {left} stands from another issue and does not belong to these files")
     contents = {f"{report.name}.{form}": data for form, data in report.files.items()}
+    if check_log and report.laid and report.laid.tied:
+        if checklog.read(check_log) != log:
+            raise CommandError(f"{check_log} was changed while the notebook ran; nothing was written; issue again")
+        contents = {str(check_log.resolve()): report.laid.log.to_csv().encode(), **contents}
     contents[report.name + RECORD_ENDING] = report.record.sealed(seals).to_json().encode()
+    if left_behind := leftovers(folder, contents):
+        names = ", ".join(path.name for path in left_behind)
+        notices.append(f"note: removed what a writing that was broken off left behind: {names}")
     paths = replace_together(folder, contents)
     words = [title(report.record), *(f"  {path}" for path in paths), *notices, *account(report.record)]
+    if report.laid:
+        words += checked.account(report.laid, report.record)
     return Issued(paths, "\n".join(words))
 
 
@@ -263,17 +315,21 @@ def _problem(problem: Problem) -> str:
 def _refuse_status(record: Record) -> None:
     """Refuse a status that the calculation's own content contradicts."""
     fields = record.calculation
-    status, originator = fields["status"], fields.get("prepared_by", "").strip()
+    status, said = fields["status"], checklog.self_check(fields)
     faults = []
-    if status == "checked" and originator and originator.casefold() == fields.get("checked_by", "").strip().casefold():
-        faults.append(f"checked_by is the originator, {originator}; cure: another person checks it")
-    if status == "for construction" and record.open_items:
+    if status == "checked" and said:
+        faults.append(f"{said}; cure: another person checks it")
+    elif status == "checked" and fields.get("check_level") == "self":
+        faults.append('check_level is "self"; cure: another person checks it, and check_level says so')
+    if status == "for construction" and record.open_items and not fields.get("open_items_accepted", "").strip():
         ids = ", ".join(item.id for item in record.open_items[:6])
         more = len(record.open_items) - 6
         faults.append(
             f"{len(record.open_items)} open items: {ids}{f' and {more} more' if more > 0 else ''}; "
-            'cure: close them, or issue "for check"'
+            'cure: close them, issue "for check", or say on the cover why they stay open, '
+            'Calc(open_items_accepted="reason, by whom")'
         )
+    faults += revised.revision_faults(record)
     if not fields["date"]:
         faults.append('no date; cure: write Calc(date="2026-12-01"), or give --date')
     if faults:
@@ -291,7 +347,7 @@ def _earlier(folder: Path, name: str) -> list[str]:
         if path.is_file():
             data = path.read_bytes()
             named = record is not None and (record.seals or {}).get(kind_of(data)) == seal.seal_of(data)
-            _refuse_status_of(path, record if named else _attached(data))
+            _refuse_status_of(path, record if named else _attached(data), "" if named else _MIXED)
             if not named:
                 strangers.append(path.name)
     if not strangers:
@@ -299,14 +355,25 @@ def _earlier(folder: Path, name: str) -> list[str]:
     return [f"note: the earlier files were a mixed set; not named by their record: {', '.join(strangers)}"]
 
 
-def _refuse_status_of(path: Path, record: Record | None) -> None:
+def _full_form(place: Path, record: Record) -> list[str]:
+    """A note if the full form that a short one names does not stand beside it."""
+    found = _record(place) if place.is_file() else None
+    content = view.content_of(record)
+    if found and view.content_of(found) == content:
+        return []
+    stands = f"has content {view.content_of(found)}" if found else "is not there"
+    return [f"note: the short form names a full form of content {content}; {place.name} {stands}; "
+            "cure: issue without --short, too"]
+
+
+def _refuse_status_of(path: Path, record: Record | None, mixed: str = "") -> None:
     if record is None:
         raise CommandError(f"{path} stands there and holds no record that can be read; cure: move it away")
     status = record.calculation.get("status")
     if status not in _REPLACEABLE:
         raise CommandError(
-            f'{path} is issued with status "{status}" and is never overwritten; cure: give the calculation its next '
-            "revision, Calc(revision=...)"
+            f'{path} is issued with status "{status}" and is never overwritten{mixed}; cure: give the calculation its '
+            "next revision, Calc(revision=...)" + _WITHDRAW * (status not in WITHDRAWN)
         )
 
 

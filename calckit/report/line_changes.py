@@ -18,11 +18,12 @@ NONE = "none"
 SAME_VALUE = "same quantity"
 SET = "set at issue"
 """What a line says of itself whose value was set on the command line."""
+ROW, MOST = "row ", "moved most, "
+"""How a step names a row of a list, and the row that moved most."""
 
 _INPUTS = ("given", "assumption", "judgment")
 _CONVERTED = re.compile(r" = .* = | converted from ")
 _DIGITS = 12  # significant digits that a record carries
-_ROW, _MOST = "row ", "moved most, "
 _ROUNDING = 1e-9  # of a value carried with 12 digits through a chain and from one unit to another
 
 
@@ -44,7 +45,7 @@ def differs(what: str, old: str, new: str) -> Iterator[Step]:
 
 def is_moved(steps: Iterable[Step]) -> bool:
     """Whether a value or a verdict moved, not only what is said of it."""
-    return any(step.what in ("", "verdict") or step.what.startswith((_ROW, _MOST)) for step in steps)
+    return any(step.what in ("", "verdict") or step.what.startswith((ROW, MOST)) for step in steps)
 
 
 # --- the seven groups
@@ -188,7 +189,7 @@ def _values(a: Line, b: Line) -> Iterator[Step]:
         rows = list(_rows(a, b))
         most = max(rows, key=lambda row: round(abs(row[1]), 9), default=None)
         if most and len(rows) > 1 and most[1]:
-            yield replace(most[0], what=f"{_MOST}{most[0].what}")
+            yield replace(most[0], what=f"{MOST}{most[0].what}")
         yield from (step for step, _ in rows)
     elif isinstance(a.value, int | float) and isinstance(b.value, int | float):
         if b.kind == "check" and _is_zero(_typed(a)) and _is_zero(_typed(b)):
@@ -205,12 +206,12 @@ def _rows(a: Line, b: Line) -> Iterator[tuple[Step, float]]:
     older, newer = _by_row(a), _by_row(b)
     for row in [*newer, *(row for row in older if row not in newer)]:
         if row not in older or row not in newer:
-            yield Step(f"{_ROW}{row}", older.get(row, (0, NONE))[1], newer.get(row, (0, NONE))[1]), 0.0
+            yield Step(f"{ROW}{row}", older.get(row, (0, NONE))[1], newer.get(row, (0, NONE))[1]), 0.0
             continue
         (x, x_shown), (y, y_shown) = older[row], newer[row]
         ratio = _ratio(x, a.unit, y, b.unit)
         if ratio != 0.0:
-            yield Step(f"{_ROW}{row}", *_apart(x, y, x_shown, y_shown), _percent(ratio, x)), ratio or 0.0
+            yield Step(f"{ROW}{row}", *_apart(x, y, x_shown, y_shown), _percent(ratio, x)), ratio or 0.0
 
 
 def _by_row(line: Line) -> dict[str, tuple[float, str]]:

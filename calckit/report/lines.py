@@ -7,10 +7,11 @@ belongs to. Must not know sections, sheets or output forms.
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 from calckit import units
 from calckit.core.record import NOT_CHECKED, NOT_OK, TO_BE_CONFIRMED, Candidate, Flag, Line, OpenItem, Record
+from calckit.report import enclosures
 from calckit.report.model import CandidateView, FlagView, LineView, OverrideView, Ref, Typeset
 
 FORMS = ("plain", "latex", "mathml", "typst")
@@ -34,15 +35,17 @@ def typeset(forms: Mapping[str, str]) -> Typeset | None:
 
 @dataclass
 class Lines:
-    """The lines of a record, ready to be looked up and worded."""
+    """The lines of a record, ready to be looked up and worded; `was` says what stood in place of those that changed."""
 
     record: Record
+    was: Mapping[str, str] = field(default_factory=dict)
 
     def __post_init__(self) -> None:
         lines = self.record.lines
         self.by_id = {line.id: line for line in lines}
         self._items = {(item.line, item.text): place for place, item in enumerate(open_items(self.record), 1)}
         self._closed = {line.closes: line.id for line in lines if line.closes}
+        self._bound = enclosures.bound(self.record)
         self._tables: dict[str, int] = {}
         for number, table in enumerate(self.record.tables, 1):
             for column in table.columns:
@@ -52,7 +55,7 @@ class Lines:
         }
         self._used: dict[str, list[Line]] = {}
         for line in lines:
-            for id_ in {**line.inputs, **dict.fromkeys(c.line for c in line.candidates)}:
+            for id_ in _rests_on(line):
                 self._used.setdefault(id_, []).append(line)
 
     def ref(self, id_: str) -> Ref | None:
@@ -67,11 +70,16 @@ class Lines:
 
     def inputs(self, line: Line) -> tuple[Ref, ...]:
         """The lines that a line rests on."""
-        return self.refs([*line.inputs, *(candidate.line for candidate in line.candidates)])
+        return self.refs(_rests_on(line))
 
     def used_in(self, line: Line) -> tuple[Ref, ...]:
         """The lines that rest on a line."""
         return self.refs(user.id for user in self._used.get(line.id, []))
+
+    def enclosed(self, line: Line) -> int:
+        """The place, from 1, of the bound page that the source of a line names; 0 if none is bound."""
+        place = enclosures.place(line.source, self._bound) if line.source else None
+        return 0 if place is None else place + 1
 
     def open_number(self, line: Line, flag: Flag) -> int:
         """The number of a flag among the open items, 0 if it is none."""
@@ -149,6 +157,8 @@ class Lines:
             flags=tuple(flag for flag in flags if flag.text or flag.number or flag.closed_by),
             inputs=self.inputs(line),
             used_in=self.used_in(line),
+            enclosed=self.enclosed(line),
+            was=self.was.get(line.id, ""),
         )
 
     def _is_minor(self, line: Line) -> bool:
@@ -163,6 +173,12 @@ class Lines:
         number = self.open_number(line, flag)
         closed_by = self.closed_by(line) if flag.open and not number else None
         return FlagView("" if _said(line, flag) else flag.text, number, flag.owner, closed_by)
+
+
+def _rests_on(line: Line) -> list[str]:
+    """What stands in a line or is compared by it, each once; what is absent is no line, even if one came later."""
+    there = [id_ for id_, operand in line.inputs.items() if not operand.is_absent()]
+    return list(dict.fromkeys([*there, *(candidate.line for candidate in line.candidates)]))
 
 
 def open_items(record: Record) -> list[OpenItem]:

@@ -9,7 +9,12 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import Literal
+from typing import TYPE_CHECKING, Literal
+
+if TYPE_CHECKING:
+    from calckit.report.checked import CheckedView
+    from calckit.report.matters import MattersView
+    from calckit.report.revised import Revised
 
 # --- the text of the notebook's Markdown cells
 
@@ -70,10 +75,11 @@ class Typeset:
 
 @dataclass(frozen=True)
 class Ref:
-    """A line by number and id; its anchor is `line-<n>`."""
+    """A line by number and id; its anchor is `line-<n>`, unless the line is not `here` in a short form."""
 
     n: int
     id: str
+    here: bool = True
 
 
 @dataclass(frozen=True)
@@ -123,6 +129,8 @@ class LineView:
     the symbol prints as its own formula. `shown` is the result ("" where there is none) and `at` the row of a list that
     it belongs to. `table` is the number of the table that holds the
     list, `values` its entries where no table does. `minor` lines are candidates that do not govern: one row each.
+    `enclosed` is the place, from 1, of the bound page that the source names (0: none is bound); `was` says what stood
+    here in the former issue, if that differs.
     """
 
     n: int
@@ -152,6 +160,8 @@ class LineView:
     flags: tuple[FlagView, ...]
     inputs: tuple[Ref, ...]
     used_in: tuple[Ref, ...]
+    enclosed: int = 0
+    was: str = ""
     type: Literal["line"] = "line"
 
 
@@ -247,7 +257,7 @@ class TitleBlock:
 
 @dataclass(frozen=True)
 class Revision:
-    """A row of the revision table."""
+    """A row of the revision table; `sheets` is blank where the writers say which changed, from the view's `revised`."""
 
     revision: str
     date: str
@@ -267,10 +277,11 @@ class Statement:
 
 @dataclass(frozen=True)
 class SummaryCell:
-    """A value of a summary and the line it comes from."""
+    """A value of a summary, the line it comes from, and what stood here in the former issue, if that differs."""
 
     text: str
     ref: Ref | None
+    was: str = ""
 
 
 @dataclass(frozen=True)
@@ -294,7 +305,7 @@ class OpenItemView:
 
 @dataclass(frozen=True)
 class InputView:
-    """A row of the input list."""
+    """A row of the input list; `enclosed` as in `LineView`."""
 
     ref: Ref
     symbol: Typeset | None
@@ -305,6 +316,7 @@ class InputView:
     source: str
     date: str
     status: str
+    enclosed: int
 
 
 @dataclass(frozen=True)
@@ -363,9 +375,15 @@ class SoftwareView:
 class View:
     """The whole report.
 
-    `short_hash` stands in the footer of every sheet. `sign_off` are (role, printed name). `seal_fields` take the place
-    of the clear space for seal and signature in a preliminary issue. `counts` are the checks by verdict. `margins` say
-    how near a value stands to the next limit. `notices` are for the reader of this copy (characters not printed).
+    `short_hash` stands in the footer of every sheet, `standing` ("SUPERSEDED", "VOID") at its head unless it is blank.
+    Sheets are counted from `first_sheet` and named with `sheet_prefix`. `sign_off` are (role, printed name), `check`
+    (label, entry) of how the check was made, `checked` is None in an issue without a check log. `seal_fields` take the
+    place of the clear space for seal and signature in a preliminary issue; `seal_caption` stands above either.
+    `left_open` is said on the cover of an issue for construction with open items. `revised` is None in an issue that
+    names no former one. `counts` are the checks by verdict. `margins` say how near a value stands to the next limit.
+    `notices` are for the reader of this copy (characters not printed).
+    `matters` is None where the answer has no numbers, and in the short form. `short_of` names the full form, and is
+    blank in it; `short_note` is what the short form says of itself.
     """
 
     paper: Literal["Letter", "A4"]
@@ -374,8 +392,14 @@ class View:
     short_hash: str
     revisions: tuple[Revision, ...]
     statements: tuple[Statement, ...]
+    left_open: str
     sign_off: tuple[tuple[str, str], ...]
+    seal_caption: str
+    check: tuple[tuple[str, str], ...]
     seal_fields: tuple[tuple[str, str], ...]
+    standing: str
+    first_sheet: int
+    sheet_prefix: str
     answer: tuple[SummaryView, ...]
     drawings: tuple[SummaryView, ...]
     counts: tuple[tuple[str, int], ...]
@@ -394,4 +418,9 @@ class View:
     field_of_use: tuple[str, ...]
     not_covered: tuple[str, ...]
     cautions: tuple[str, ...]
+    revised: Revised | None = None
+    checked: CheckedView | None = None
     notices: tuple[str, ...] = ()
+    matters: MattersView | None = None
+    short_of: str = ""
+    short_note: str = ""

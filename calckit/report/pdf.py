@@ -27,8 +27,11 @@ from calckit.report.glyphs import STANDARDS, code_point, lacking
 from calckit.report.model import View
 
 _ASSETS = resources.files("calckit.report").joinpath("assets")
-_TEMPLATES = ("report.typ", "pieces.typ", "enclosures.typ")
+_TEMPLATES = (
+    "report.typ", "pieces.typ", "sheets.typ", "revised.typ", "checked.typ", "matters.typ", "enclosures.typ",
+)  # fmt: skip
 _NOT_PRINTED = ("latex", "mathml", "svg")
+_UNSETTLED = "Sheets are not named beside the lines of this copy, as they could not be settled; each number is a link."
 _EXCERPT = 60
 _SVG = re.compile(r"<svg\b[^>]*>", re.DOTALL)
 _LENGTH = re.compile(r"([\d.]+)(pt|px|in|mm|cm)?")
@@ -74,8 +77,13 @@ def render(
         files[path] = page.picture
         about = {name: value for name, value in asdict(page).items() if name != "picture"}
         data["enclosed"].append(about | {"path": path, "title": titles.get(page.document, "")})
-    files["view.json"] = json.dumps(data, ensure_ascii=False).encode()
-    return _compile(files, datetime.fromisoformat(date).replace(tzinfo=UTC))
+    day = datetime.fromisoformat(date).replace(tzinfo=UTC)
+    settled = _compile(files, data | {"sheets_named": True}, day)
+    if settled is None:
+        settled = _compile(files, data | {"sheets_named": False, "notices": [*data["notices"], _UNSETTLED]}, day)
+    if settled is None:
+        raise NotebookError("the PDF report cannot be set: its layout does not settle")
+    return settled
 
 
 def missing_glyphs(view: View) -> list[str]:
@@ -117,18 +125,20 @@ def _data(view: View) -> dict[str, Any]:
     return data
 
 
-def _compile(files: Mapping[str, bytes], day: datetime) -> bytes:
-    """Set the template in a fresh folder that holds nothing else."""
+def _compile(files: Mapping[str, bytes], data: Mapping[str, Any], day: datetime) -> bytes | None:
+    """Set the template in a fresh folder that holds nothing else; None if what is printed of sheets may not be true."""
     with TemporaryDirectory(prefix="calckit-") as folder:
         for name, content in files.items():
             (Path(folder) / name).write_bytes(content)
+        (Path(folder) / "view.json").write_text(json.dumps(data, ensure_ascii=False), encoding="utf-8")
         try:
-            return typst.compile(
+            made, warnings = typst.compile_with_warnings(
                 str(Path(folder) / "report.typ"), root=folder, ignore_system_fonts=True, pdf_standards=[*STANDARDS],
                 timestamp=int(day.timestamp()),
             )  # fmt: skip
         except typst.TypstError as error:
             raise NotebookError(f"the PDF report cannot be set: {error.message}") from error
+    return None if any("did not converge" in warning.message for warning in warnings) else made
 
 
 def _items(data: Mapping[str, Any]) -> Iterator[dict[str, Any]]:

@@ -44,7 +44,7 @@ def recheck(path: Path) -> list[Finding]:
     """
     data = read(path)
     verdict = seal.check(data)
-    findings = [Finding("seal", verdict.state != "altered", verdict.text())]
+    findings = [Finding("seal", verdict.state != "altered", "\n".join([verdict.text(), *verdict.changes]))]
     try:
         parcel = parcel_of(seal.issued_bytes(data))
         record = from_json(parcel.record.decode())
@@ -126,17 +126,28 @@ def record_of(data: bytes) -> Record:
 
 
 def beside(path: Path, data: bytes) -> list[Finding]:
-    """Whether the record that lies beside a report names it; nothing is said if none lies there."""
+    """Whether the record that lies beside a report names it and its other form; nothing is said if none lies there."""
     place = path.with_name(path.stem + RECORD_ENDING)
     if not place.exists():
         return []
     try:
-        seals = from_json(place.read_text(encoding="utf-8")).seals or {}
+        record = from_json(place.read_text(encoding="utf-8"))
     except (OSError, ValueError, KeyError, TypeError) as error:
         return [Finding("record beside it", False, f"{place.name} cannot be read: {error}")]
-    if seals.get(kind_of(data)) == seal.seal_of(data):
-        return [Finding("record beside it", True, f"{place.name} names this file")]
-    return [Finding("record beside it", False, f"{place.name} belongs to another issue: the files are a mixed set")]
+    if (record.seals or {}).get(kind_of(data)) != seal.seal_of(data):
+        return [Finding("record beside it", False, f"{place.name} belongs to another issue: the files are a mixed set")]
+    others = strangers(record, place)
+    return [Finding("record beside it", not others, "\n".join(others) or f"{place.name} names this file")]
+
+
+def strangers(record: Record, place: Path) -> list[str]:
+    """The reports beside a record file that are not those it names."""
+    found = []
+    for form, stated in (record.seals or {}).items():
+        other = place.with_name(f"{place.name.removesuffix(RECORD_ENDING)}.{form}")
+        if other.is_file() and seal.seal_of(other.read_bytes()) != stated:
+            found.append(f"{other.name} beside it belongs to another issue: the files are a mixed set")
+    return found
 
 
 def kind_of(data: bytes) -> str:

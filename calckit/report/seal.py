@@ -1,8 +1,9 @@
 """The file seal: a digest that an issued file carries of itself.
 
 A file cannot hold its own digest, so the seal is the SHA-256 of the file as it was written with zeros where the digits
-stand, and the digits are then put in place of the zeros: length and structure stay. Knows bytes only; must not know
-what a report says. The seal shows that a file changed, not who wrote it: anyone can seal a file.
+stand, and the digits are then put in place of the zeros: length and structure stay. Knows bytes, and asks `additions`
+what bytes added later change; must not know what a report says. The seal shows that a file changed, not who wrote it:
+anyone can seal a file.
 """
 
 from __future__ import annotations
@@ -13,6 +14,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 from calckit.errors import NotebookError
+from calckit.report import additions
 
 _MARK = b"calckit-seal:"
 _ZEROS = b"0" * 64
@@ -27,12 +29,14 @@ PLACEHOLDER = (_MARK + _ZEROS).decode()
 class Verdict:
     """What a seal says of a file.
 
-    `seal` holds the 64 digits found ("" if there are none), `added` the number of bytes that follow the issued ones.
+    `seal` holds the 64 digits found ("" if there are none), `added` the number of bytes that follow the issued ones,
+    `changes` what these alter of what was issued; marks and signatures alter nothing.
     """
 
     state: Literal["intact", "added", "altered"]
     seal: str
     added: int = 0
+    changes: tuple[str, ...] = ()
 
     def text(self) -> str:
         """The verdict in words.
@@ -40,8 +44,11 @@ class Verdict:
         >>> Verdict("added", "5f" * 32, 812).text()
         '812 bytes added after issue'
         """
+        added = f"{self.added} byte{'' if self.added == 1 else 's'} added after issue"
+        if self.changes:
+            return f"altered by {added}"
         if self.state == "added":
-            return f"{self.added} byte{'' if self.added == 1 else 's'} added after issue"
+            return added
         return "intact" if self.state == "intact" else "altered or re-saved after issue"
 
 
@@ -79,13 +86,29 @@ def seal_of(data: bytes) -> str:
 def check(data: bytes) -> Verdict:
     """Hold a file against its seal.
 
-    Marks and signatures are appended to a PDF, so each beginning of it that is itself a whole file is tried. Anything
-    appended to an HTML file makes it altered.
+    Marks and signatures are appended to a PDF, so each beginning of it that is itself a whole file is tried; what is
+    appended may not change what the reader sees of the issued part. Anything appended to an HTML file makes it altered.
     """
+    end = _end(data)
+    if end is None:
+        return Verdict("altered", seal_of(data))
+    if end == len(data):
+        return Verdict("intact", seal_of(data))
+    changed = tuple(additions.changes(data[:end], data))
+    return Verdict("altered" if changed else "added", seal_of(data), len(data) - end, changed)
+
+
+def issued_bytes(data: bytes) -> bytes:
+    """The file without what was added after issue."""
+    return data[: _end(data)]
+
+
+def _end(data: bytes) -> int | None:
+    """Where the issued part ends; None if the seal fits no beginning of the file."""
     seals = list(_SEAL.finditer(data))[: _copies(data)]
     digits = {seal[1] for seal in seals}
     if len(seals) != _copies(data) or len(digits) != 1:
-        return Verdict("altered", seal_of(data))
+        return None
     seal = digits.pop().decode()
     ends = [len(data)]
     if is_pdf(data):
@@ -99,13 +122,8 @@ def check(data: bytes) -> Verdict:
         digest.update(memoryview(blank)[done:end])
         done = end
         if digest.copy().hexdigest() == seal:
-            return Verdict("intact" if end == len(data) else "added", seal, len(data) - end)
-    return Verdict("altered", seal)
-
-
-def issued_bytes(data: bytes) -> bytes:
-    """The file without what was added after issue."""
-    return data[: len(data) - check(data).added]
+            return end
+    return None
 
 
 def _copies(data: bytes) -> int:

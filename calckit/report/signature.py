@@ -7,25 +7,18 @@ person, and changes none of the files.
 from __future__ import annotations
 
 import hashlib
-import json
 import os
 from collections.abc import Sequence
 from dataclasses import dataclass
 from datetime import UTC, datetime
-from importlib import resources
 from pathlib import Path
-from tempfile import TemporaryDirectory
-
-import typst
 
 from calckit.core.record import Record, from_json
 from calckit.errors import CommandError, MismatchError
-from calckit.report import seal
+from calckit.report import seal, small_document
 from calckit.report.files import replace_together, report_name
-from calckit.report.glyphs import STANDARDS, code_point, lacking
-from calckit.report.recheck import record_of, title
+from calckit.report.recheck import beside, record_of, strangers, title
 
-_TEMPLATE = resources.files("calckit.report").joinpath("assets", "signature.typ")
 _ENDING = "_signature.pdf"
 
 
@@ -33,7 +26,8 @@ _ENDING = "_signature.pdf"
 class Listed:
     """One file as the sheet names it.
 
-    `record` is the record that it is or carries, `verdict` what its seal says; None where it has none.
+    `record` is the record that it is or carries, `verdict` what its seal says; None where it has none. `strangers` say
+    which files beside it belong to another issue.
     """
 
     name: str
@@ -42,6 +36,7 @@ class Listed:
     sha1: str
     record: Record | None
     verdict: seal.Verdict | None
+    strangers: Sequence[str] = ()
 
 
 def write(files: Sequence[Path], to: Path) -> str:
@@ -61,6 +56,7 @@ def write(files: Sequence[Path], to: Path) -> str:
         for item in listed
         if item.verdict and item.verdict.state != "intact"
     ]
+    words += [f"note: {item.name}: {said}" for item in listed for said in item.strangers]
     if len({_issue(item.record) for item in listed if item.record}) > 1:
         words.append("note: the files belong to more than one issue")
     return "\n".join(words)
@@ -79,7 +75,8 @@ def look(files: Sequence[Path]) -> list[Listed]:
         sealed = not _is_record(path.name) and seal.seal_of(data)
         verdict = seal.check(data) if sealed else None
         sha256 = hashlib.sha256(data).hexdigest()
-        found.append(Listed(path.name, len(data), sha256, sha1, _record(path.name, data), verdict))
+        record = _record(path.name, data)
+        found.append(Listed(path.name, len(data), sha256, sha1, record, verdict, _strangers(path, data, record)))
     if faults:
         raise CommandError("\n".join(faults))
     return found
@@ -110,20 +107,7 @@ def render(listed: Sequence[Listed]) -> bytes:
             for item in listed
         ],
     }
-    text = json.dumps(data, ensure_ascii=False)
-    for character in sorted(lacking(set(text))):
-        text = text.replace(character, f"[{code_point(character)}]")
-    with TemporaryDirectory(prefix="calckit-") as folder:
-        source = Path(folder) / "signature.typ"
-        source.write_bytes(_TEMPLATE.read_bytes())
-        source.with_name("signature.json").write_text(text, encoding="utf-8")
-        try:
-            return typst.compile(
-                str(source), root=folder, ignore_system_fonts=True, pdf_standards=[*STANDARDS],
-                timestamp=int(_day(records).timestamp()),
-            )  # fmt: skip
-        except typst.TypstError as error:
-            raise CommandError(f"the signature report cannot be set: {error.message}") from error
+    return small_document.typeset("signature.typ", data, _day(records), "the signature report")
 
 
 def _is_record(name: str) -> bool:
@@ -136,6 +120,14 @@ def _record(name: str, data: bytes) -> Record | None:
         return from_json(data.decode()) if _is_record(name) else record_of(seal.issued_bytes(data))
     except (MismatchError, ValueError, KeyError, TypeError):
         return None
+
+
+def _strangers(path: Path, data: bytes, record: Record | None) -> list[str]:
+    if record is None:
+        return []
+    if _is_record(path.name):
+        return strangers(record, path)
+    return [finding.text for finding in beside(path, data) if not finding.good]
 
 
 def _issue(record: Record | None) -> tuple[str, str]:

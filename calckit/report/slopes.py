@@ -39,7 +39,10 @@ _COMPARE: dict[type[ast.cmpop], Callable[[float, float], bool]] = {
 
 @dataclass(frozen=True)
 class Switch:
-    """A branch that changes over when the input moves by about `percent` (first order): the line, and the branch."""
+    """A branch that changes over when the input moves by about `percent` (first order): the line, and the branch.
+
+    On the side "less" a move downwards counts as positive.
+    """
 
     percent: float
     line: str
@@ -111,9 +114,7 @@ class Worked:
         first = args[0]
         match function:
             case "min" | "max":
-                sign = 1 if function == "max" else -1
-                numbers = [self.number(arg) for arg in args]
-                return reduce(lambda a, b: a if sign * self._order(a, b, node) >= 0 else b, numbers)
+                return self._first(1 if function == "max" else -1, [(self, arg) for arg in args], node)
             case "total":
                 return reduce(operator.add, (replace(self, row=row).number(first) for row in range(self._count())))
             case "above":
@@ -137,16 +138,27 @@ class Worked:
             raise ValueError("no level is worked")
         return self.row
 
+    def _first(self, sign: int, many: Sequence[tuple[Worked, ast.expr]], node: ast.expr) -> Dual:
+        """The largest (sign 1) or smallest (sign -1) of several, without what those behind meet among themselves."""
+        apart = [replace(worked, met=Met()) for worked, _ in many]
+        numbers = [worked.number(each) for worked, (_, each) in zip(apart, many, strict=True)]
+        first = reduce(lambda a, b: a if sign * _ahead(numbers[a], numbers[b]) >= 0 else b, range(len(numbers)))
+        self.met.ties |= apart[first].met.ties
+        self.met.switches += apart[first].met.switches
+        for place, worked in enumerate(apart):
+            self.met.breaks |= worked.met.breaks
+            if place != first:
+                self._order(numbers[first], numbers[place], node)
+        return numbers[first]
+
     def _order(self, a: Dual, b: Dual, node: ast.expr) -> float:
         """Above 0 if `a` is the larger on the side looked at, below 0 if `b` is; a tie is ordered by the slopes."""
         gap, rate = a.value - b.value, a.slope - b.slope
-        if _tied(a.value, b.value):
-            if rate:
-                self.met.ties.setdefault(self.line)
-            return rate
-        if rate:
+        if rate and _tied(a.value, b.value):
+            self.met.ties.setdefault(self.line)
+        elif rate:
             self.met.switches.append(Switch(-gap / rate, self.line, ast.unparse(node)))
-        return gap
+        return _ahead(a, b)
 
     def _cases(self, test: ast.Compare, body: ast.expr, orelse: ast.expr) -> Dual:
         left, right = self.number(test.left), self.number(test.comparators[0])
@@ -163,8 +175,8 @@ class Worked:
 
     def worst(self) -> Dual:
         """The largest ratio of a check over all rows."""
-        numbers = [replace(self, row=row).number(self.parsed.tree) for row in range(self._count())]
-        return reduce(lambda a, b: a if self._order(a, b, self.parsed.tree) >= 0 else b, numbers)
+        tree = self.parsed.tree
+        return self._first(1, [(replace(self, row=row), tree) for row in range(self._count())], tree)
 
 
 class Chain:
@@ -224,13 +236,14 @@ class Chain:
         numbers = [Dual(value) for value in _numbers(source.value)]
         moved = numbers[seed.place].value
         numbers[seed.place] = Dual(moved, seed.side * moved / 100)
-        return self._duals(self.lines[id_], {seed.line: numbers}, met)
+        return self._duals(self.lines[id_], seed.line, {seed.line: numbers}, met)
 
-    def _duals(self, line: Line, known: dict[str, list[Dual]], met: Met) -> list[Dual]:
+    def _duals(self, line: Line, seed: str, known: dict[str, list[Dual]], met: Met) -> list[Dual]:
         if line.id not in known:
             known[line.id] = [Dual(value) for value in _numbers(line.value)]
             operands = {
-                key: self._operand(line.inputs[key], source, known, met) for key, source in self._sources(line).items()
+                key: self._operand(line.inputs[key], source, seed, known, met)
+                for key, source in self._sources(line).items()
             }
             moved = any(dual.slope for duals in operands.values() for dual in duals)
             if moved and line.formula is not None and not self._why_dead(line):
@@ -241,13 +254,13 @@ class Chain:
         return known[line.id]
 
     def _operand(
-        self, operand: Operand, source: Line | None, known: dict[str, list[Dual]], met: Met
+        self, operand: Operand, source: Line | None, seed: str, known: dict[str, list[Dual]], met: Met
     ) -> list[Dual]:
         values = _numbers(operand.value)
-        if source is None:
+        if source is None or seed not in self.upstream(source.id):
             return [Dual(value) for value in values]
         factor = float(units.factor(source.unit, operand.unit))
-        slopes = [dual.slope * factor for dual in self._duals(source, known, met)]
+        slopes = [dual.slope * factor for dual in self._duals(source, seed, known, met)]
         return [Dual(value, slope) for value, slope in zip(values, slopes, strict=True)]
 
     def _work(self, line: Line, operands: Mapping[str, list[Dual]], met: Met) -> list[Dual]:
@@ -305,6 +318,11 @@ def _numbers(value: object) -> list[float]:
 
 def _shown(operand: Operand) -> str:
     return ", ".join(operand.shown) if isinstance(operand.shown, list) else operand.shown
+
+
+def _ahead(a: Dual, b: Dual) -> float:
+    """Above 0 if `a` is the larger on the side looked at, below 0 if `b` is, 0 if neither."""
+    return a.slope - b.slope if _tied(a.value, b.value) else a.value - b.value
 
 
 def _tied(a: float, b: float) -> bool:

@@ -8,10 +8,11 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
 from dataclasses import replace
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from calckit import units
-from calckit.core.record import NOT_CHECKED, NOT_OK, OK, Line, OpenItem, Record, Summary, Table, digest
+from calckit.core.record import NOT_CHECKED, NOT_OK, OK, WITHDRAWN, Line, OpenItem, Record, Summary, Table, digest
+from calckit.report import checked, checklog, matters
 from calckit.report.lines import Lines, open_items, source, typeset
 from calckit.report.model import (
     AssumptionView,
@@ -39,6 +40,9 @@ from calckit.report.model import (
     View,
 )
 
+if TYPE_CHECKING:
+    from calckit.report.revised import Revised
+
 CAUTIONS = (
     "This calculation supports the work of a licensed professional engineer and does not replace it. Use it only "
     "under the direction of one, who answers for the inputs, the assumptions and the use made of the results.",
@@ -62,26 +66,38 @@ _ROLES = ("Prepared by", "Checked by", "Engineer of record")
 _FIRST = "Calculation"
 
 
-def build(record: Record, content: Content) -> View:
+def content_of(record: Record) -> str:
+    """The first digits over the three hashes: what identifies the content on every sheet."""
+    return digest(record.source + record.inputs + record.lines_hash)[:8]
+
+
+def build(record: Record, content: Content, revised: Revised | None = None) -> View:
     """The document model of a record.
 
     `content` is the notebook in order: ("prose", blocks) for a Markdown cell, ("cell", k) for the k-th code cell that
-    ran. A heading of level 1 or 2 starts a section. Raises KeyError if the record misses a field of the title block or
-    a printed form.
+    ran. A heading of level 1 or 2 starts a section. `revised` is what changed against the former issue.
+    Raises KeyError if the record misses a field of the title block or a printed form.
     """
     facts = record.calculation
-    lines = Lines(record)
+    lines = Lines(record, dict(revised.was) if revised else {})
     items = open_items(record)
+    seal_caption, seal_fields = _seal_space(facts)
     sections = _sections(record, content, lines)
     return View(
         paper=facts["paper"],
         title=" - ".join(part for part in (facts["number"], facts["subject"], facts["project"]) if part),
         title_block=TitleBlock(**{name: facts[name] for name in TitleBlock.__dataclass_fields__}),
-        short_hash=digest(record.source + record.inputs + record.lines_hash)[:8],
-        revisions=_revisions(facts),
+        short_hash=content_of(record),
+        revisions=_revisions(facts, revised),
         statements=tuple(_statements(record, lines)),
+        left_open=_left_open(record),
         sign_off=tuple(zip(_ROLES, (facts["prepared_by"], facts["checked_by"], ""), strict=True)),
-        seal_fields=_seal_fields(facts),
+        check=checked.sign_off(record),
+        seal_caption=seal_caption,
+        seal_fields=seal_fields,
+        standing=facts["status"].upper() if facts["status"] in WITHDRAWN else "",
+        first_sheet=facts["first_sheet"],
+        sheet_prefix=facts["sheet_prefix"],
         answer=_summaries(record, "answer", lines),
         drawings=_summaries(record, "drawings", lines),
         counts=tuple((word, sum(line.verdict == word for line in record.lines)) for word in (OK, NOT_OK, NOT_CHECKED)),
@@ -104,6 +120,8 @@ def build(record: Record, content: Content) -> View:
         field_of_use=tuple(record.field_of_use),
         not_covered=tuple(record.not_covered),
         cautions=CAUTIONS,
+        revised=revised,
+        matters=matters.build(record, lines),
     )
 
 
@@ -111,16 +129,27 @@ def _called(line: Line) -> str:
     return line.meaning or line.id
 
 
-def _revisions(facts: dict[str, Any]) -> tuple[Revision, ...]:
+def _revisions(facts: dict[str, Any], revised: Revised | None) -> tuple[Revision, ...]:
+    """The revision table; the sheets of the newest row, if not typed, are blank where the writers can say them."""
     rows = [Revision(**row) for row in facts["revisions"]]
+    last = len(rows) - 1
+    rows = [
+        row if row.sheets.strip() or (revised and place == last) else replace(row, sheets="not stated")
+        for place, row in enumerate(rows)
+    ]
     first = Revision(facts["revision"], facts["date"], "First issue", facts["prepared_by"], "all")
     return tuple(rows) or (first,)
 
 
-def _seal_fields(facts: dict[str, Any]) -> tuple[tuple[str, str], ...]:
-    if facts["status"] != "preliminary":
-        return ()
-    return (("Purpose", facts["purpose"]), ("Engineer of record", ""), ("License number", ""), ("Date", ""))
+def _seal_space(facts: dict[str, Any]) -> tuple[str, tuple[tuple[str, str], ...]]:
+    """What stands above the clear space for the seal, and the fields that a preliminary issue has in its place.
+
+    Of the fields only the purpose is filled: the others are for a person.
+    """
+    if facts["status"] != "preliminary" or not facts["preliminary_fields"]:
+        return facts["seal_caption"], ()
+    fields = tuple((name, facts["purpose"] if name == "Purpose" else "") for name in facts["preliminary_fields"])
+    return facts["preliminary_caption"], fields
 
 
 def _statements(record: Record, lines: Lines) -> Iterator[Statement]:
@@ -139,9 +168,24 @@ def _statements(record: Record, lines: Lines) -> Iterator[Statement]:
     yield Statement("Open items in all", str(open_ones) if open_ones else "none")
     unread = len(record.open_items) - open_ones
     yield Statement("Tables and clauses to be confirmed against the standard", str(unread) if unread else "none")
-    originator, checker = facts["prepared_by"].strip(), facts["checked_by"].strip()
-    if originator and originator.casefold() == checker.casefold():
-        yield Statement("Self-check", f"{originator} is named both as originator and as checker")
+    said = checklog.self_check(facts)
+    if said:
+        yield Statement("Self-check", said.partition(": ")[2])
+
+
+def _left_open(record: Record) -> str:
+    """Which open items stand in an issue for construction, by number, and the reason given for it; blank if none do."""
+    if record.calculation["status"] != "for construction" or not record.open_items:
+        return ""
+    open_ones = len(open_items(record))
+    unread = len(record.open_items) - open_ones
+    parts = [
+        f"{count} {what} (No. 1{f' to {count}' if count > 1 else ''})"
+        for count, what in ((open_ones, "to be closed"), (unread, "to be confirmed against the standard"))
+        if count
+    ]
+    reason = record.calculation["open_items_accepted"]
+    return f"Issued for construction with open items: {' and '.join(parts)}. Reason given: {reason}"
 
 
 def _statement(label: str, found: list[Line]) -> Statement:
@@ -160,7 +204,13 @@ def _summaries(record: Record, role: str, lines: Lines) -> tuple[SummaryView, ..
 
 def _summary(summary: Summary, lines: Lines) -> SummaryView:
     rows = tuple(
-        (row.label, tuple(SummaryCell(text, lines.ref(id_)) for text, id_ in zip(row.cells, row.lines, strict=True)))
+        (
+            row.label,
+            tuple(
+                SummaryCell(text, lines.ref(id_), lines.was.get(id_, ""))
+                for text, id_ in zip(row.cells, row.lines, strict=True)
+            ),
+        )
         for row in summary.rows
     )
     return SummaryView(summary.title, tuple(summary.columns), rows)
@@ -273,6 +323,7 @@ def _inputs(record: Record, lines: Lines) -> Iterator[InputView]:
             yield InputView(
                 Ref(line.n, line.id), typeset(line.typeset), line.symbol, line.part, line.meaning, shown, source(line),
                 dates.get(line.source.document, "") if line.source else "", _status(line, lines),
+                lines.enclosed(line),
             )  # fmt: skip
 
 

@@ -66,6 +66,14 @@ def test_revisions(calc: Calc) -> None:
         calc.revise("B", date="2026-12-02", reason="second comments", by="A. Person")
 
 
+@pytest.mark.parametrize("blank", ["revision", "date", "reason", "by"])
+def test_a_revision_without_a_reason_is_refused(blank: str, calc: Calc) -> None:
+    row = {"revision": "B", "date": "2026-12-01", "reason": "first comments", "by": "A. Person"} | {blank: " "}
+    with pytest.raises(InputError, match=f"revise {blank}: needed text; given blank"):
+        calc.revise(**row)
+    assert calc.revisions == []
+
+
 # confirmation
 
 

@@ -173,6 +173,45 @@ def test_marked_forms_stand_alone(sheet: Sheet) -> None:
     assert marked[MIME] == data[MIME]
 
 
+# checks that were not made
+
+
+def test_check_that_was_not_made_is_stale_when_its_value_arrives(sheet: Sheet) -> None:
+    sheet.run("check", 'calc.check("V", "<=", "V_applied", title="Model")')
+    assert "NOT CHECKED" in sheet.below["calckit check 1"]
+    sheet.run("note", 'calc.note("N-1", "something else")')
+    assert sheet.marks() == {}
+    sheet.run("model", 'calc.given("V_applied", "120 kip", source="S-201")')
+    assert list(sheet.marks()) == ["check 1"]
+    assert sheet.marks()["check 1"].startswith('stale: V_applied is there now; run again: [5] calc.check("V", "<=",')
+    sheet.run("check", 'calc.check("V", "<=", "V_applied", title="Model")')
+    assert sheet.marks() == {}
+    assert "NOT CHECKED" not in sheet.below["calckit check 1"]
+
+
+def test_check_that_waits_for_a_stated_lack_is_stale_when_the_value_is_given(sheet: Sheet) -> None:
+    sheet.run("model", 'calc.given("V_applied", "none: no model yet", source="S-201")')
+    sheet.run("check", 'calc.check("V", "<=", "V_applied", title="Model")')
+    assert sheet.calc["Model".lower()].line.inputs["V_applied"].shown == "none: no model yet"
+    sheet.run("model", 'calc.given("V_applied", "120 kip", source="S-201")')
+    assert sheet.marks()["check 1"].startswith("stale: V_applied changed; run again: [6] calc.check(")
+    sheet.run("model", 'calc.given("V_applied", "none: no model yet", source="S-201")')
+    assert sheet.marks() == {}, "put back, the check waits as before"
+
+
+def test_steps_record_what_their_checks_wait_for(sheet: Sheet) -> None:
+    with sheet.live.cell("inputs"):
+        part = sheet.calc.part("X", "East-west")
+        sheet.calc.levels("level, h_x [ft], w_x [kip]\nRoof, 30, 310\n2, 15, 455", source="S-201")
+        part.given("C_d", "5", source="S-201")
+    with sheet.live.cell("stability", "x.asce7.stability()"):
+        made = part.asce7.stability()
+    absent = {name for name, operand in made.line.inputs.items() if operand.is_absent()}
+    assert absent == {"P_x", "Delta", "V_x"}
+    sheet.run("P_x", 'calc.part("X").given("P_x", "20 kip", source="S-201")')
+    assert sheet.marks()["stability 1"].startswith("stale (X.stability): P_x is there now; run again: ")
+
+
 # lines without a cell
 
 

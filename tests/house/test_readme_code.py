@@ -10,7 +10,7 @@ from calckit import Calc, plots
 from tests.house import source
 
 BLOCKS = re.findall(r"```python\n(.*?)```", source.text_files()["README.md"], re.DOTALL)
-INPUTS, OWN_LINES, BOUND, OVERRIDE, CONFIRM = BLOCKS
+INPUTS, OWN_LINES, BOUND, OVERRIDE, CONFIRM, REVISE = BLOCKS
 REGISTER = re.search(r"```\n(standard,.*?)```", source.text_files()["README.md"], re.DOTALL)
 
 
@@ -35,6 +35,7 @@ def test_the_blocks_run_in_a_calculation(tmp_path: Path, monkeypatch: pytest.Mon
     exec(OWN_LINES, names)
     exec(BOUND, names)
     exec(CONFIRM, names)
+    exec(REVISE, names)
 
     assert calc["h_n"].shown == "62 ft"
     assert calc["F_a"].value == 1.3
@@ -43,6 +44,7 @@ def test_the_blocks_run_in_a_calculation(tmp_path: Path, monkeypatch: pytest.Mon
     assert x["M_r"].value == pytest.approx(x["V"].value * 2 / 3 * 62, rel=1e-11)
     assert calc.enclosures["H-2"].page_numbers() == [1, 2]
     assert [figure.caption for figure in calc.lines.figures.values()] == ["What X.V rests on"]
+    assert [row["revision"] for row in calc.revisions] == ["B"]
     assert x["R"].line.source.confirmed == "confirmed in office copy of ASCE/SEI 7-16 by J. Example, 2026-12-01"
 
 

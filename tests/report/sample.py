@@ -414,6 +414,9 @@ def _record() -> Record:
         "jurisdiction": "Demonstration County", "firm": "Sample Structures", "revision": "B", "date": "2026-12-01",
         "status": "for check", "purpose": "for permit", "prepared_by": "J. Doe", "checked_by": "", "units": "US",
         "paper": "Letter", "standard": "ASCE 7-16", "supplements": [1, 3], "supplements_source": "B-1 section 1",
+        "first_sheet": 1, "sheet_prefix": "", "seal_caption": "Seal and signature",
+        "preliminary_caption": "Preliminary issue, not for construction",
+        "preliminary_fields": ["Purpose", "Engineer of record", "License number", "Date"], "open_items_accepted": "",
         "standards": [{"id": "asce7", "edition": "ASCE 7-16", "name": _STANDARD, "supplements": [1, 3]}],
         "documents": documents,
         "revisions": [

@@ -15,7 +15,7 @@ from pypdf import PdfReader
 from pypdf.generic import ContentStream
 
 Matrix = tuple[float, float, float, float, float, float]
-_ONE: Matrix = (1, 0, 0, 1, 0, 0)
+IDENTITY: Matrix = (1, 0, 0, 1, 0, 0)
 
 
 @dataclass(frozen=True)
@@ -67,7 +67,7 @@ class Sheets:
         elements = self._parents.get(page.get("/StructParents"))
         saved: list[Matrix] = []
         marks: list[tuple[str, ...]] = []
-        ctm, text = _ONE, _ONE
+        ctm, text = IDENTITY, IDENTITY
         font: Any = None
         size = 0.0
         for operands, operator in ContentStream(page.get_contents(), self.reader).operations:
@@ -76,25 +76,25 @@ class Sheets:
             elif operator == b"Q":
                 ctm = saved.pop()
             elif operator == b"cm":
-                ctm = _times(_matrix(operands), ctm)
+                ctm = product(matrix_of(operands), ctm)
             elif operator in (b"BDC", b"BMC"):
                 marks.append(_tags(operands, elements))
             elif operator == b"EMC":
                 marks.pop()
             elif operator == b"BT":
-                text = _ONE
+                text = IDENTITY
             elif operator == b"Tf":
                 font, size = self._font(fonts.raw_get(operands[0])), float(operands[1])
             elif operator == b"Tm":
-                text = _matrix(operands)
+                text = matrix_of(operands)
             elif operator in (b"Td", b"TD", b"T*", b"'", b'"', b"Tc", b"Tw", b"Tz", b"TL", b"Ts"):
                 raise AssertionError(f"operator {operator!r} is not read here")
             elif operator in (b"Tj", b"TJ"):
                 pieces = operands[0] if operator == b"TJ" else operands
                 words, width, inked = _shown(pieces, font)
-                whole = _times(text, ctm)
+                whole = product(text, ctm)
                 x, y = whole[4], whole[5]
-                text = _times((1, 0, 0, 1, width * size, 0), text)
+                text = product((1, 0, 0, 1, width * size, 0), text)
                 scale = abs(whole[0])
                 if words.strip():
                     yield Run(words, x, x + inked * size * scale, y, size * scale, marks[-1] if marks else ())
@@ -183,12 +183,12 @@ def _letters(cmap: str) -> dict[int, str]:
     return found
 
 
-def _matrix(operands: Any) -> Matrix:
+def matrix_of(operands: Any) -> Matrix:
     a, b, c, d, e, f = (float(operand) for operand in operands)
     return (a, b, c, d, e, f)
 
 
-def _times(m: Matrix, n: Matrix) -> Matrix:
+def product(m: Matrix, n: Matrix) -> Matrix:
     return (
         m[0] * n[0] + m[1] * n[2], m[0] * n[1] + m[1] * n[3],
         m[2] * n[0] + m[3] * n[2], m[2] * n[1] + m[3] * n[3],

@@ -326,6 +326,9 @@ def test_coverage_counts_what_is_agreed_or_verified() -> None:
         "A": (), "C": (Ref(2, "X.T_a"),), "Q": (Ref(3, "X.drift"),), "V": (Ref(1, "h_n"),),
     }  # fmt: skip
     assert marks.inputs.text() == "checked 1 of 1; to be corrected 0; in question 0; not marked 0"
+    few = expand(tie(log("2,A,JR,2026-12-05"), small()), small()).coverage
+    assert few.text() == "checked 1 of 4; to be corrected 0; in question 0; not marked 3"
+    assert few.unmarked == (Ref(1, "h_n"), Ref(3, "X.drift"), Ref(4, "N-1"))
 
 
 def test_comments_come_with_their_answers_and_closed_ones_last() -> None:

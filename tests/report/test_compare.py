@@ -47,7 +47,9 @@ def issues(tmp_path_factory: pytest.TempPathFactory) -> Path:
     folder = tmp_path_factory.mktemp("issues")
     path = demonstration(folder)
     first = run_calckit(folder, "issue", path)
-    path.write_text(path.read_text().replace("62 ft", "65 ft").replace("by hand", "by two persons"))
+    row = 'calc.revise(\\"B\\", date=\\"2026-12-01\\", reason=\\"survey\\", by=\\"J. Doe\\")\\n'
+    second_state = path.read_text().replace("62 ft", "65 ft").replace("by hand", "by two persons")
+    path.write_text(second_state.replace("calc.document(", row + "calc.document(", 1))
     (folder / "notes.txt").write_text("wind may govern\n")
     second = run_calckit(folder, "issue", path, "--set", "revision=B", "--set", "p=2.1 kip/ft")
     assert (first.returncode, second.returncode) == (0, 0), first.stderr + second.stderr
@@ -68,9 +70,11 @@ SAID = """\
 old  C-7, revision A, for check, 2026-12-01  (C-7_A.pdf)
 new  C-7, revision B, for check, 2026-12-01  (C-7_B.html)
 
-Title block and criteria changed: 1
+Title block and criteria changed: 2
     revision
       A -> B
+    revision row B
+      none -> date 2026-12-01; reason survey; by J. Doe
 
 Inputs changed: 2
   1  h_n  structural height  [S-201 grid A]
@@ -178,7 +182,7 @@ def test_a_mixed_set_is_said_from_either_side(folder: Path) -> None:
     assert said == {
         "C-7_A.html": ("C-7_A.record.json belongs to another issue: the files are a mixed set",),
         "C-7_A.record.json": ("C-7_A.html beside it belongs to another issue: the files are a mixed set",),
-        "C-7_A.pdf": (),
+        "C-7_A.pdf": ("C-7_A.html beside it belongs to another issue: the files are a mixed set",),
     }
 
 
@@ -325,7 +329,7 @@ def test_changed_lines() -> None:
     assert found["X.system"] == "moment frame: steel special moment frame"
     assert found["X.R"] == "8"
     assert found["X.V"] == "264.0 kip"
-    assert found["X.F_x"].startswith("Roof: 72.27 kip; 6: 67.51 kip; ")
+    assert found["X.F_x"].startswith("72.27 kip at Roof, 67.51 kip at 6, ")
     assert found["X.h_limit"] == "not in the former issue"
     assert found["X.Omega_0"].startswith("look-up: Table 12.2-1, row moment frame: steel special moment frame")
     assert all(found.values())

@@ -16,6 +16,7 @@ from pypdf import PdfReader, PdfWriter
 
 from calckit.core.record import Enclosure, Record, Source
 from calckit.errors import NotebookError
+from calckit.report import enclosures
 from calckit.report.enclosures import PICTURE_DOTS, Page, pages, place
 from tests.report.sheets import Sheets
 
@@ -145,7 +146,9 @@ def test_one_page_a_sheet_inside_the_title_block(set_on_sheets: Sheets) -> None:
 
 
 def test_source_finds_its_page(squares: bytes) -> None:
-    made = pages(bound(Enclosure("S-1", "a.pdf", "1, 3", "a"), Enclosure("S-2", "a.pdf", "2", "b")), {"a.pdf": squares})
+    record = bound(Enclosure("S-1", "a.pdf", "1, 3", "a"), Enclosure("S-2", "a.pdf", "2", "b"))
+    made = enclosures.bound(record)
+    assert made == [(page.document, page.number) for page in pages(record, {"a.pdf": squares})]
     for where, number in (("p. 3", 1), ("page 3, row 2", 1), ("pp. 3-4", 1), ("grid A", 0), ("", 0)):
         assert place(Source("S-1", where), made) == number
     assert place(Source("S-2"), made) == 2

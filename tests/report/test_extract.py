@@ -62,6 +62,20 @@ def test_no_printed_result_stands_in_the_export(form: str, tmp_path: Path) -> No
     assert [numeral for numeral in sorted(results) if re.search(rf"(?<![\d.]){re.escape(numeral)}(?!\d)", both)] == []
 
 
+def test_every_numeral_of_the_export_is_an_inputs(tmp_path: Path) -> None:
+    """Looked for the other way round: a numeral of four or more digits must come from what is handed over."""
+    record = template()
+    files = extract.export(issued(tmp_path, "html", record), ASKED, tmp_path / "out")
+    both = " ".join(file.read_text(encoding="utf-8") for file in files)
+    assert not re.search(r"download=|href=\"data:", both)  # nothing is attached that would have to be unpacked
+    both = re.sub(r"<style>.*?</style>|http://www.w3.org/\S*|&#\w+;", "", both, flags=re.DOTALL)
+    inputs = [line for line in record.lines if line.kind in ("given", "judgment")]
+    given = json.dumps([record.calculation, *([line.shown, line.meaning] for line in inputs)])
+    numeral = r"(?<![\w.])\d[\d.]*\d(?![\d])"
+    long = {text for text in re.findall(numeral, both) if len(text.replace(".", "").strip("0")) >= 4}
+    assert long and long - set(re.findall(numeral, given)) == set()
+
+
 def test_what_is_handed_over() -> None:
     record = template()
     page = extract.render(extract.collect(record, ASKED))

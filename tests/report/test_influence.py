@@ -181,6 +181,20 @@ def test_the_nearest_switch_is_named_within_ten_percent() -> None:
     assert effects(dimensionless("max(p, q)", p="2", q="1.7"), ("r",))["p", ""]["r"].switch is None
 
 
+@pytest.mark.parametrize("expression", ["max(p, q, s)", "max(s, p, q)", "p + max(s, min(q, t))"])
+def test_what_those_behind_meet_among_themselves_is_no_switch(expression: str) -> None:
+    """q passes t at 5 % and p at 10.5 %, but s = 8 stands above them all: nothing changes over."""
+    record = dimensionless(expression, p="2.1", q="1.9", s="8", t="1.995")
+    assert effects(record, ("r",))["q", ""]["r"] == influence.Effect("r", 0.0, 0.0)
+
+
+def test_the_switch_of_the_side_looked_at() -> None:
+    """Upwards q is passed at 5 %; downwards s takes over at 2 %, which is nearer."""
+    effect = effects(dimensionless("min(max(p, s), q)", p="2", q="2.1", s="1.96"), ("r",))["p", ""]["r"]
+    assert effect.switch is not None
+    assert effect.switch.percent == pytest.approx(-2.0)
+
+
 # --- where the chain is broken
 
 

@@ -11,7 +11,7 @@ from typing import Any
 
 import pytest
 
-from calckit.core.record import Record, from_json, lines_hash
+from calckit.core.record import WITHDRAWN, Record, from_json, lines_hash
 from calckit.errors import CommandError, NotebookError
 from calckit.report import files, issue, notebook, seal
 from calckit.report.notebook import Notebook
@@ -21,6 +21,7 @@ from tests.conftest import notebook_json
 from tests.report import plain
 
 Give = Callable[..., None]
+ROW_B = {"revision": "B", "date": "2026-12-08", "reason": "heavier roof", "by": "J. Doe", "sheets": ""}
 
 
 @pytest.fixture
@@ -164,7 +165,8 @@ def test_a_notebook_without_a_calculation(source: Notebook, monkeypatch: pytest.
 @pytest.mark.parametrize(
     ("fields", "message"),
     [
-        ({"status": "checked", "checked_by": " j. doe"}, "checked_by is the originator, J. Doe; cure: another person"),
+        ({"status": "checked", "checked_by": " j.  doe"}, "self-check: J. Doe is named both .*; cure: another person"),
+        ({"status": "checked", "check_level": "self"}, 'check_level is "self"; cure: another person checks it'),
         ({"status": "for construction"}, "2 open items: h_n-1, confirm-12.8.2.1; cure: close them"),
         ({"date": ""}, r"no date; cure: write Calc\(date="),
     ],
@@ -294,13 +296,14 @@ def test_any_other_status_is_never_overwritten(status: str, source: Notebook, gi
     record = plain.record(status=status)
     record.open_items = []
     give(record)
-    issue.issue(source, Settings(), tmp_path)
+    name = issue.issue(source, Settings(), tmp_path).paths[0].stem
     before = content(tmp_path)
-    give(status="preliminary")
-    with pytest.raises(CommandError, match=f'status "{status}" and is never overwritten; cure: .* next revision'):
+    again = status if status in WITHDRAWN else "preliminary"
+    give(status=again)
+    with pytest.raises(CommandError, match=f'{name}.* status "{status}" and is never overwritten; cure: .* next revis'):
         issue.issue(source, Settings(), tmp_path)
     assert content(tmp_path) == before
-    give(revision="B")
+    give(revision="B", revisions=[ROW_B])
     issue.issue(source, Settings(), tmp_path)
     assert before.items() <= content(tmp_path).items()
 

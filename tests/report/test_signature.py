@@ -26,8 +26,9 @@ def issue(folder: Path, **fields: str) -> list[Path]:
     contents = {
         "html": seal.apply(plain.html_file(None, figures={}, attachments=attached)),
         "pdf": seal.apply(plain.pdf_file(None, figures={}, attachments=attached, date="2026-12-01")),
-        "record.json": record.to_json().encode(),
     }
+    seals = {form: seal.seal_of(data) for form, data in contents.items()}
+    contents["record.json"] = record.sealed(seals).to_json().encode()
     paths = [folder / f"{name}.{ending}" for ending in contents]
     for path, data in zip(paths, contents.values(), strict=True):
         path.write_bytes(data)

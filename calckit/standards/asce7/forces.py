@@ -235,7 +235,7 @@ def drift(scope: Scope) -> Handle:
         moment_frame = _divided_by_rho(scope)
         if moment_frame and scope.number("rho") is None:
             missing = f"{scope.plain('rho')} (redundancy factor; it divides the allowable drift of a moment frame)"
-            return scope.verdict("drift", title, NOT_CHECKED, rule("12.12.1.1"), missing=missing)
+            return scope.verdict("drift", title, NOT_CHECKED, rule("12.12.1.1"), missing=missing, rests=("rho",))
         formula = formulas.DELTA_A_RHO if moment_frame else formulas.DELTA_A
         if scope.find("delta_xe") is None:
             scope.compute(formula)
@@ -303,7 +303,7 @@ def stability(scope: Scope) -> Handle:
         absent = [name for name in ("P_x", "Delta", "V_x", "h_sx") if scope.find(name) is None]
         if absent:
             missing = ", ".join(f"{scope.plain(name)} ({scope.symbol(name).meaning})" for name in absent)
-            return scope.verdict("stability", title, NOT_CHECKED, rule("12.8.7"), missing=missing)
+            return scope.verdict("stability", title, NOT_CHECKED, rule("12.8.7"), missing=missing, rests=absent)
         theta, shears = _theta(scope)
         included = scope.word("with_P_delta") == "yes"
         compared = "theta_P" if included else "theta"

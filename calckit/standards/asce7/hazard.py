@@ -138,6 +138,7 @@ def design_spectrum(scope: Scope) -> Handles:
     if faults:
         raise InputError("asce7.design_spectrum", faults)
     with scope.step():
+        scope.choice("hazard_basis", where, rule("11.4.4"))
         made = Handles()
         if where == "mapped":
             made = _mapped(scope)

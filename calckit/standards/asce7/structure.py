@@ -35,9 +35,9 @@ RESTS = ("SDC", "risk_category", "system", "h_n", "h_x", "T", "T_S", *with_findi
 
 def approximate_period(scope: Scope, typed: Mapping[str, Any]) -> Handle:
     """T_a by Table 12.8-2; by 0.1 N or from the walls where the engineer chooses it and the conditions hold."""
-    method = scope.word("T_a_method") or "table"
     operands = scope.typed_in_place(typed)
     with scope.step():
+        method = scope.choice("T_a_method", "table", rule("12.8.2.1"))
         flags = _height_flags(scope)
         if method == "stories":
             return _by_stories(scope, flags)

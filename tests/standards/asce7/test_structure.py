@@ -11,6 +11,7 @@ import pytest
 
 from calckit.core.calc import Calc
 from calckit.errors import InputError, ScopeError
+from tests.core.session import Session
 
 from .building import BRACED, QUESTIONS, STEEL, levels, open_flags, start, value
 
@@ -164,3 +165,20 @@ def test_tall_regular_structure_by_its_period(T: str, permitted: str) -> None:
 def test_unanswered_irregularities_leave_it_not_checked() -> None:
     verdicts = procedure("E", "62 ft", left_open=("V1b",))
     assert verdicts == {"prohibited": "NOT CHECKED", "procedure": "NOT CHECKED"}
+
+
+def test_a_choice_that_nobody_made_is_a_line_called_default(monkeypatch: pytest.MonkeyPatch) -> None:
+    session = Session(monkeypatch)
+    with session.cell("inputs"):
+        calc = start(system="moment frame: steel special moment frame", h_n="62 ft")
+    for _ in range(2):  # the cell is run, and run again
+        with session.cell("period"):
+            calc.asce7.approximate_period()
+        line = calc.lines.entries["T_a_method"].line
+        assert (line.kind, line.value, line.detail) == ("given", "table", "default")
+
+
+def test_a_choice_that_was_made_is_no_default() -> None:
+    calc = start(system="moment frame: steel special moment frame", h_n="62 ft", T_a_method="table")
+    calc.asce7.approximate_period()
+    assert calc.lines.entries["T_a_method"].line.detail == ""
