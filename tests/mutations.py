@@ -50,6 +50,11 @@ class Mutation:
     new: str
     tests: tuple[str, ...]
 
+    @property
+    def name(self) -> str:
+        """Rows, file and first test."""
+        return f"{','.join(self.rows)}: {self.file}: {self.tests[0]}"
+
 
 def _of(rows: str, file: str, old: str, new: str, *tests: str) -> Mutation:
     return Mutation(tuple(rows.split()), file, old, new, tests)
@@ -219,21 +224,20 @@ def outcome(mutation: Mutation, tree: Path) -> str:
 def main(wanted: list[str]) -> int:
     """Run the mutations of these rows, or all, and note each outcome; the exit code is 1 if any survived."""
     said = RESULTS.read_text(encoding="utf-8").splitlines() if RESULTS.exists() else []
-    lines = {line.split(": ")[1]: line for line in said if ": " in line and line.startswith(("killed", "SURVIVED"))}
+    lines = {line.partition(": ")[2]: line for line in said if line.startswith(("killed", "SURVIVED"))}
     survived = False
     with TemporaryDirectory(prefix="calckit-mutations-") as folder:
         tree = Path(folder) / "tree"
         shutil.copytree(ROOT, tree, ignore=shutil.ignore_patterns(".*", "__pycache__"))
         for mutation in ALL:
-            rows = ",".join(mutation.rows)
             if not wanted or set(wanted) & set(mutation.rows):
                 found = outcome(mutation, tree)
                 survived |= found != "killed"
-                lines[rows] = f"{found}: {rows}: {mutation.file}: {mutation.tests[0]}"
-                sys.stdout.write(lines[rows] + "\n")
+                lines[mutation.name] = f"{found}: {mutation.name}"
+                sys.stdout.write(lines[mutation.name] + "\n")
                 sys.stdout.flush()
     head = "The last outcome of each edit of `python -m tests.mutations`: row, edited file, test."
-    kept = [lines[rows] for mutation in ALL if (rows := ",".join(mutation.rows)) in lines]
+    kept = [lines[mutation.name] for mutation in ALL if mutation.name in lines]
     RESULTS.write_text("\n".join([head, "", *kept, ""]), encoding="utf-8")
     return int(survived)
 
