@@ -15,11 +15,14 @@ FIELD_OF_USE = (
     "system factors, period, base shear, distribution over the height, story drift, stability.",
     "Irregularities, redundancy, diaphragm class, torsion and the contents of the seismic weight are the engineer's "
     "answers; the kit does not compute them.",
+    "Seismic forces on nonstructural components (chapter 13) and their anchors, from a row of the tables or from typed "
+    "factors. Whether a component is exempt is the engineer's answer: the kit does not look at it.",
     "Values and rules marked as to be confirmed were not read in the printed standard by the kit's authors.",
 )
 NOT_COVERED = (
-    "computed torsion, redundancy and irregularities; diaphragms, collectors, load combinations, foundations; "
-    "nonstructural components (chapter 13)",
+    "computed torsion, redundancy and irregularities; diaphragms, collectors, load combinations, foundations",
+    "of chapter 13: exemptions, relative displacements, heavy components that act with the structure, distribution "
+    "systems beyond their force, design of anchors, qualification of equipment",
     "modal and response history analysis (12.9, chapter 16); soil-structure interaction (chapter 19)",
     "the simplified method (12.14), nonbuilding structures (chapter 15), isolated and damped structures (chapters 17 "
     "and 18), existing buildings",

@@ -8,6 +8,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from calckit.core.record import NOT_CHECKED, Summary, SummaryRow
+from calckit.standards.asce7.component_summary import building_too, component_summary, with_components
 
 if TYPE_CHECKING:
     from calckit.core.calc import Calc
@@ -33,6 +34,8 @@ SUPPLIERS = {
     "h_sx": "levels(...)",
     "delta_xe": "levels(...), column X.delta_xe",
     "P_x": "levels(...), column P_x",
+    "component": 'given("component", ...), or the factors of the component with their source',
+    "I_p": 'answer("I_p", "1.0" or "1.5", basis=...)',
 }
 """What supplies a symbol that is missing."""
 
@@ -76,8 +79,12 @@ _DRAWINGS = (
 
 
 def summaries(calc: Calc) -> list[Summary]:
-    """The two tables of the first sheets, from the lines as they stand."""
-    parts: list[Scope] = [*calc.parts.values()] or [calc]
+    """The tables of the first sheets, from the lines as they stand: two of the building, one of components if any."""
+    carried = with_components(calc)
+    components = [component_summary(carried)] if carried else []
+    if components and not building_too(calc):
+        return components
+    parts: list[Scope] = [part for part in calc.parts.values() if part not in carried] or [calc]
     answer = [SummaryRow(label, *_row(parts, (name,))) for label, name in _ANSWER]
     governing = SummaryRow("Governing equation", *_governing(parts))
     answer.insert([name for _, name in _ANSWER].index("C_s") + 1, governing)
@@ -88,6 +95,7 @@ def summaries(calc: Calc) -> list[Summary]:
     return [
         Summary("answer", "Governing results", columns, head + answer),
         Summary("drawings", "Seismic data for the drawings", columns, drawings),
+        *components,
     ]
 
 
