@@ -99,7 +99,11 @@ _BETWEEN = re.compile(r"between columns ([\d.]+): ([\d.]+) and ([\d.]+): ([\d.]+
 
 def _table_value(found: Audit, line: Json, lines: Mapping[str, Json]) -> None:
     shown = line["computed"]["shown"] if line["computed"] else line["shown"]
-    if between := _BETWEEN.search(line["detail"]):
+    if line["rows"] and line["detail"].startswith("Table "):
+        quoted = dict(re.findall(r" \(([^()]+)\): ([\d.]+)(?=;|\Z)", line["detail"]))
+        entries = dict(zip(line["rows"], shown, strict=True))
+        found.item("table value", quoted == entries, f"{line['id']}: {line['detail']}, printed {entries}")
+    elif between := _BETWEEN.search(line["detail"]):
         a, low, b, high = map(Decimal, between.groups())
         place = next(operand["shown"] for operand in line["inputs"].values() if printed(operand["shown"]))
         x = last_numeral(place)

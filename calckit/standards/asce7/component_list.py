@@ -31,10 +31,11 @@ _SURENESS = ("memory, medium", "memory, high", "found")
 
 @dataclass(frozen=True)
 class Listed:
-    """A list as read: its columns of numbers, and for each row the key of its row in `table` (None: factors typed)."""
+    """A list as read: its columns of numbers; for each row the key in `table` (None: factors typed), and as typed."""
 
     rows: Rows
     keys: tuple[str, ...] = ()
+    typed: tuple[str, ...] = ()
     table: Table | None = None
 
 
@@ -82,6 +83,7 @@ def _read(scope: Any, text: str) -> Listed:
     numbers = "\n".join("\t".join(cell for i, cell in enumerate(row) if i != place) for row in cells)
     faults: list[Fault] = []
     keys, table = _rows_of_table(scope, cells, place, faults) if place else ((), None)
+    typed = tuple(" ".join(row[place].split()) for row in cells[1:] if len(row) > place) if place else ()
     try:
         rows = parse(WHAT, numbers, symbol, scope.system)
     except InputError as error:
@@ -95,7 +97,7 @@ def _read(scope: Any, text: str) -> Listed:
             faults.append(Fault(f"{WHAT}, {name}, column I_p", "1.0 or 1.5 (13.1.3)", reading.numeral, "correct it"))
     if faults:
         raise InputError(WHAT, faults)
-    return Listed(rows, keys, table)
+    return Listed(rows, keys, typed, table)
 
 
 def _rows_of_table(
@@ -142,9 +144,10 @@ def _factors(scope: Any, listed: Listed) -> list[Flag]:
     }
     factors = Rows(listed.rows.head, listed.rows.names, {}, columns)
     source = min((listed.table.source(key) for key in listed.keys), key=lambda each: _SURENESS.index(each.obtained))
-    pairs = zip(listed.rows.names, listed.keys, strict=True)
-    detail = f"{listed.table.name}, rows {'; '.join(f'{key} ({name})' for name, key in pairs)}"
     for name in names:
+        entries = zip(listed.typed, listed.rows.names, factors.typed(name), strict=True)
+        quoted = "; ".join(f"{row} ({tag}): {entry}" for row, tag, entry in entries)
+        detail = f"{listed.table.name}, column {name}, rows {quoted}"
         write_column(scope, factors, name, scope.symbol(name), source, kind="table", detail=detail)
     return []
 
@@ -169,5 +172,5 @@ def _tables(scope: Any, rows: Rows) -> None:
     height += ["R_mu"] if height and scope.find("R_mu").line.rows else []
     entering = ["W_p", *importance, "z", "r_zh", *height, *one.of_edition(scope).factors, "F_pbasic"]
     scope.table("components", "Components", entering, head=rows.head)
-    forces = ["W_p", *importance, "F_pbasic", "F_pmax", "F_pmin", "F_p", "i_p", "F_pv", ANCHORS, "F_pO"]
+    forces = ["W_p", *importance, "F_pbasic", "F_pmax", "F_pmin", "F_p", "i_p", "c_p", "F_pv", ANCHORS, "F_pO"]
     scope.table("component_forces", "Forces on the components", forces, head=rows.head)

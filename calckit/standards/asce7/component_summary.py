@@ -15,8 +15,8 @@ if TYPE_CHECKING:
     from calckit.core.scope import Scope
 
 _COLUMNS = {
-    "Weight": "W_p", "Horizontal force": "F_p", "Governed by": "i_p", "Vertical force": "F_pv",
-    "Overstrength for anchors": "Omega_0p",
+    "Weight": "W_p", "Horizontal force": "F_p", "Over weight": "c_p", "Governed by": "i_p", "Vertical force": "F_pv",
+    "Overstrength of anchors": "Omega_0p",
 }  # fmt: skip
 _GOVERNS = {"1": "F_pbasic", "2": "F_pmax", "3": "F_pmin"}
 _ALL = ("F_p", "component_force", "component_forces")

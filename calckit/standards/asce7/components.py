@@ -278,6 +278,7 @@ def forces(scope: Scope, basic: Formula, flags: Sequence[Flag], row: str = "") -
         scope.compute(formula, **how)
     candidates = [] if row else _candidates(scope)
     F_p = scope.compute(rules.F_P, candidates=candidates, flags=flags, **how)
+    scope.compute(rules.C_P, row=row)
     scope.compute(rules.F_PV, **how)
     if row or scope.number("Omega_0p") is not None:
         scope.compute(rules.F_P_OVERSTRENGTH, **how)

@@ -43,10 +43,12 @@ SYMBOLS = (
     _force("F_pmax", "horizontal force on the component, upper limit", sub="p,max"),
     _force("F_pmin", "horizontal force on the component, lower limit", sub="p,min"),
     _force("F_p", "horizontal force on the component, in any direction"),
-    Symbol("i_p", "what governs F_p: 1 the equation, 2 the upper limit, 3 the lower limit", digits=1),
-    _force("F_pv", "vertical force on the component, up or down, together with F_p"),
+    Symbol("c_p", "horizontal force on the component over its weight", low=0),
+    Symbol("i_p", "what governs the horizontal force: 1 the equation, 2 the upper limit, 3 the lower limit", digits=1),
+    _force("F_pv", "vertical force on the component, up or down, at the same time"),
     _force("F_pO", "horizontal force for anchors in concrete and masonry, with overstrength", sub="p,Ω"),
 )  # fmt: skip
+_POUNDS = (("lb", "ft"), ("kN", "m"))
 
 R_ZH = Formula("r_zh", "max(min(z/h, 1), 0)", rule("13.3.1", obtained="found"))
 F_P_BASIC = Formula("F_pbasic", "0.4*a_p*S_DS*W_p/(R_p/I_p)*(1 + 2*r_zh)", rule("13.3.1", "13.3-1", "found"))
@@ -54,9 +56,10 @@ F_P_MODAL = Formula("F_pbasic", "a_i*a_p*W_p/(R_p/I_p)*A_xp", rule("13.3.1", "13
 F_P_MAX = Formula("F_pmax", "1.6*S_DS*I_p*W_p", rule("13.3.1", "13.3-2", "found"))
 F_P_MIN = Formula("F_pmin", "0.3*S_DS*I_p*W_p", rule("13.3.1", "13.3-3", "found"))
 F_P = Formula("F_p", "max(min(F_pbasic, F_pmax), F_pmin)", rule("13.3.1", obtained="found"))
+C_P = Formula("c_p", "F_p/W_p", rule("13.3.1", obtained="found"), sets=_POUNDS)
 I_GOVERNING = Formula(
     "i_p", "2 if F_pbasic > F_pmax else 3 if F_pbasic < F_pmin else 1", rule("13.3.1", obtained="found"),
-    sets=(("lb", "ft"), ("kN", "m")),
+    sets=_POUNDS,
 )  # fmt: skip
 F_PV = Formula("F_pv", "0.2*S_DS*W_p", rule("13.3.1"))
 F_P_OVERSTRENGTH = Formula("F_pO", "Omega_0p*F_p", rule("13.4.2"))
