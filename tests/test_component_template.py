@@ -11,8 +11,9 @@ from pathlib import Path
 import nbformat
 import pytest
 
-from calckit.core.record import Record
+from calckit.core.record import Record, from_json
 from calckit.report import notebook
+from calckit.report.digits_check import check_digits
 from calckit.report.run import Settings, run
 from tests.printed_audit import audit
 from tests.template_runs import TEMPLATES, template
@@ -69,6 +70,14 @@ def test_printed_digits(committed: Record) -> None:
     assert found.counts["table value"] == 9
     again = ("column M.F_pbasic of M.component_forces", "column A.F_pbasic of A.component_forces")
     assert [text for text in found.skipped if not text.startswith(again)] == []
+
+
+def test_a_wrong_entry_of_a_looked_up_column_is_found(committed: Record) -> None:
+    wrong = from_json(committed.to_json())
+    wrong.line("M.R_p").shown[4] = "6.0"  # type: ignore[index]
+    faults = check_digits(wrong).faults
+    assert any("printed 6.0 at CH-1, but the look-up reads Table 13.6-1, column R_p" in fault for fault in faults)
+    assert any("M.R_p: Table 13.6-1" in fault for fault in audit(json.loads(wrong.to_json())).faults)
 
 
 def test_set_values(tmp_path: Path) -> None:

@@ -75,7 +75,7 @@ def component_force(scope: Scope) -> Handle:
     edition = of_edition(scope)
     modal = _modal(scope)
     grade = _grade(scope)
-    needed = ["S_DS", "I_p", "W_p"] + ([] if row else list(edition.factors))
+    needed = [*([] if row else edition.factors if _any_typed(scope) else ["component"]), "S_DS", "I_p", "W_p"]
     needed += ["A_xp"] if modal else [] if grade or _own(scope, "r_zh") else ["z", "h"]
     faults, waiting = absent(scope, needed)
     if edition.by_height and not grade:
@@ -114,14 +114,16 @@ def absent(scope: Scope, names: Sequence[str]) -> tuple[list[Fault], list[str]]:
     return faults, waiting
 
 
+def _any_typed(scope: Scope) -> bool:
+    return any(entry(scope, name) for name in of_edition(scope).factors)
+
+
 def _row(scope: Scope) -> tuple[str, Table] | None:
-    """The row of the component, None where its factors are typed; refuses a row beside typed factors."""
+    """The row of the component, None where none is named; refuses a row beside typed factors."""
     typed = scope.word("component") if entry(scope, "component") else None
     edition = of_edition(scope)
     if typed is None:
-        if any(entry(scope, name) for name in edition.factors):
-            return None
-        raise InputError(STEP, [scope.missing("component")])
+        return None
     found = find_row(scope, typed)
     if isinstance(found, Fault):
         raise InputError(STEP, [found])

@@ -232,7 +232,7 @@ def test_missing_inputs_are_named_at_once() -> None:
     assert [fault.symbol for fault in caught.value.faults] == ["S_DS", "I_p", "W_p", "z", "h"]
     with pytest.raises(InputError, match=r"component .*a row of Table 13\.5-1 or 13\.6-1") as caught:
         start().asce7.component_force()
-    assert [fault.symbol for fault in caught.value.faults] == ["component"]
+    assert [fault.symbol for fault in caught.value.faults] == ["component", "S_DS", "I_p", "W_p", "z", "h"]
 
 
 def test_7_22_asks_for_the_structure_or_that_it_is_unknown() -> None:
@@ -250,6 +250,8 @@ def test_what_is_said_to_be_open_is_not_checked() -> None:
     assert made.verdict == "NOT CHECKED"
     assert made.missing == "I_p (importance factor of the component), W_p (weight of the component in operation)"
     assert "F_p" not in calc.lines.entries
+    unknown = worked(component="none: not chosen", without=("a_p", "R_p", "Omega_0p"))
+    assert unknown.lines.entries["component_force"].line.missing.startswith("component (kind of component")
 
 
 # traps: each met in a published source
