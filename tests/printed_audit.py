@@ -99,7 +99,11 @@ _BETWEEN = re.compile(r"between columns ([\d.]+): ([\d.]+) and ([\d.]+): ([\d.]+
 
 def _table_value(found: Audit, line: Json, lines: Mapping[str, Json]) -> None:
     shown = line["computed"]["shown"] if line["computed"] else line["shown"]
-    if between := _BETWEEN.search(line["detail"]):
+    if line["rows"] and line["detail"].startswith("Table "):
+        quoted = dict(re.findall(r" \(([^()]+)\): ([\d.]+)(?=;|\Z)", line["detail"]))
+        entries = dict(zip(line["rows"], shown, strict=True))
+        found.item("table value", quoted == entries, f"{line['id']}: {line['detail']}, printed {entries}")
+    elif between := _BETWEEN.search(line["detail"]):
         a, low, b, high = map(Decimal, between.groups())
         place = next(operand["shown"] for operand in line["inputs"].values() if printed(operand["shown"]))
         x = last_numeral(place)
@@ -252,7 +256,16 @@ def printed_forms(record: Json, lines: Mapping[str, Json]) -> Iterator[tuple[Key
         for row in summary["rows"]:
             for cell, id_ in zip(row["cells"], row["lines"], strict=True):
                 if id_ and lines[id_]["kind"] != "check":
-                    yield from _entries(id_, [], cell, lines[id_]["unit"], f"summary {summary['title']}")
+                    yield from _cell(row["label"], cell, lines[id_], f"summary {summary['title']}")
+
+
+def _cell(label: str, cell: str, line: Json, where: str) -> Iterator[tuple[Key, Shown, str]]:
+    """A cell of a summary; where the line is a list, its entry for the row that the label names."""
+    name = label.rpartition(": ")[2]
+    if name in line["rows"] and (form := printed(cell)):
+        yield (line["id"], name, line["unit"]), (form[0], decimals(form[0], line["shown"])), where
+    else:
+        yield from _entries(line["id"], [], cell, line["unit"], where)
 
 
 def _entries(

@@ -1,4 +1,4 @@
-"""The building template run clean in a process of its own, once for each set of set values."""
+"""The templates run clean in a process of its own, once for each set of set values."""
 
 from __future__ import annotations
 
@@ -10,7 +10,8 @@ from calckit.core.record import Record
 from calckit.report import notebook
 from calckit.report.run import Outcome, Settings, run
 
-TEMPLATE = Path(__file__).parents[1] / "templates" / "building_lateral_force.ipynb"
+TEMPLATES = Path(__file__).parents[1] / "templates"
+TEMPLATE = TEMPLATES / "building_lateral_force.ipynb"
 
 LEVELS = """\
 level, h_x [ft], w_x [kip], X.delta_xe [in], Y.delta_xe [in], P_x [kip]
@@ -29,16 +30,16 @@ SECOND_PASS = {
 
 
 @cache
-def _run(values: tuple[tuple[str, str], ...], files: tuple[tuple[str, str], ...]) -> Outcome:
-    return run(notebook.read(TEMPLATE), Settings(set=dict(values), files=dict(files)))
+def _run(path: Path, values: tuple[tuple[str, str], ...], files: tuple[tuple[str, str], ...]) -> Outcome:
+    return run(notebook.read(path), Settings(set=dict(values), files=dict(files)))
 
 
-def template(values: Mapping[str, str] | None = None, folder: Path | None = None) -> Record:
-    """The record of the template with these set values; files behind @ are read from `folder`."""
+def template(values: Mapping[str, str] | None = None, folder: Path | None = None, path: Path = TEMPLATE) -> Record:
+    """The record of a template with these set values; files behind @ are read from `folder`."""
     values = values or {}
     named = sorted(value[1:] for value in values.values() if value.startswith("@"))
     files = tuple((name, (folder or Path()).joinpath(name).read_text(encoding="utf-8")) for name in named)
-    outcome = _run(tuple(sorted(values.items())), files)
+    outcome = _run(path, tuple(sorted(values.items())), files)
     assert (outcome.failure, outcome.problems) == ("", ())
     assert outcome.record
     return outcome.record

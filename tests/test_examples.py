@@ -27,6 +27,9 @@ TEMPLATES = ROOT / "templates"
 def test_there_is_an_example_of_every_template_and_of_the_second_pass() -> None:
     assert [path.name for path in NOTEBOOKS] == sorted([*(path.name for path in TEMPLATES.glob("*.ipynb")), NAME])
 
+LEAST_CHECKED = {"component_force": 6}
+"""Cells whose outputs are compared, where a notebook has fewer than ten that write lines."""
+
 
 def unissued(stem: str, folder: Path) -> notebook.Notebook:
     """The notebook of an example as it was before it was issued."""
@@ -44,7 +47,7 @@ def test_stored_outputs_are_reproduced(path: Path) -> None:
     ran = subprocess.run(command, cwd=path.parent, env=environment, capture_output=True, text=True, check=False)
     assert ran.returncode == 0, ran.stdout + ran.stderr
     checked = path.read_text(encoding="utf-8").count("nbval-check-output")
-    assert checked >= 10
+    assert checked >= LEAST_CHECKED.get(path.stem, 10)
 
 
 @pytest.mark.parametrize("path", sorted(EXAMPLES.glob("*.record.json")), ids=lambda path: path.stem)

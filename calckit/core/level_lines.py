@@ -67,13 +67,16 @@ def _column(scope: Scope, table: Levels, header: str, symbol: str, source: Sourc
     return write_column(scope, table, header, scope.symbol(symbol), source)
 
 
-def write_column(scope: Scope, table: Levels | Rows, header: str, declared: Symbol, source: Source) -> Handle:
-    """Write one typed column of a pasted table as a list line of inputs."""
+def write_column(
+    scope: Scope, table: Levels | Rows, header: str, declared: Symbol, source: Source, *, kind: str = "given",
+    detail: str = "",
+) -> Handle:  # fmt: skip
+    """Write one column of a pasted table as a list line: of inputs, or of entries that its rows name in a table."""
     readings, typed = table.columns[header], table.typed(header)
     line = Line(
-        scope.id_of(declared.name), "given", declared.name, declared.meaning, [float(r.value) for r in readings],
+        scope.id_of(declared.name), kind, declared.name, declared.meaning, [float(r.value) for r in readings],
         readings[0].unit, list(typed), part=scope.id, rows=list(table.names), typeset=scope.typeset(declared),
-        source=source,
+        source=source, detail=detail,
     )  # fmt: skip
     places = len(typed[0].partition(".")[2])
     return scope.write(Entry(line, this_cell(), typed, places))

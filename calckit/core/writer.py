@@ -9,7 +9,7 @@ import ast
 import csv
 import io
 import re
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from pathlib import Path
 from typing import Any
 
@@ -217,14 +217,7 @@ class Writer(Scope):
             declared = self.calc.standard.symbols.get(name)
             return declared or own_symbol(name, (meanings or {}).get(name, ""), unit)
 
-        found = self.book.settings.value(self.id_of(id))
-        table = None
-        if found:
-            try:
-                table = rows.parse(id, self._text_of(found[1], of_settings=True), symbol, self.system)
-            except CalckitError as error:
-                self.book.settings.invalid[found[0]] = str(error)
-        table = table or rows.parse(id, self._text_of(text), symbol, self.system)
+        table = self.text_in_force(id, text, lambda pasted: rows.parse(id, pasted, symbol, self.system))
         own = {name: declared for name, declared in table.symbols.items() if name not in self.calc.standard.symbols}
         self.calc.own_symbols |= own
         with self.step():
@@ -232,6 +225,23 @@ class Writer(Scope):
             made = Handles(write_column(self, table, name, declared, origin) for name, declared in columns)
             self.table(id, title or id, list(table.symbols), head=table.head)
         return made
+
+    def text_in_force(self, id: str, text: str, read: Callable[[str], Any]) -> Any:
+        """What `read` makes of a pasted table `id`, of "@file.csv", or of the set value that stands in for it.
+
+        A set value that `read` refuses is noted, and the notebook's own table stands in.
+
+        >>> from calckit import Calc
+        >>> Calc(project="Demo", number="D-1").text_in_force("tags", "tag\\nA1", str.split)
+        ['tag', 'A1']
+        """
+        found = self.book.settings.value(self.id_of(id))
+        if found:
+            try:
+                return read(self._text_of(found[1], of_settings=True))
+            except CalckitError as error:
+                self.book.settings.invalid[found[0]] = str(error)
+        return read(self._text_of(text))
 
     def _text_of(self, text: str, of_settings: bool = False) -> str:
         if not text.startswith("@"):

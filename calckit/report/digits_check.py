@@ -279,9 +279,15 @@ def _same_digits(line: Line) -> Iterator[str]:
 
 
 def _looked_up(line: Line) -> Iterator[str]:
-    """The printed value is the entry that the look-up quotes."""
+    """The printed value is the entry that the look-up quotes; for a list, the entry that it quotes for each row."""
     shown = line.computed.shown if line.computed else line.shown
-    if line.detail.startswith("Table ") and not re.search(rf": {re.escape(str(shown))}(?:$|;| \(| and )", line.detail):
+    if not line.detail.startswith("Table "):
+        return
+    if isinstance(shown, list):
+        for row, entry in zip(line.rows, shown, strict=True):
+            if not re.search(rf" \({re.escape(row)}\): {re.escape(entry)}(?:$|;)", line.detail):
+                yield f"printed {entry} at {row}, but the look-up reads {line.detail}"
+    elif not re.search(rf": {re.escape(shown)}(?:$|;| \(| and )", line.detail):
         yield f"printed {shown}, but the look-up reads {line.detail}"
 
 

@@ -24,6 +24,8 @@ _IN_7_22 = {
     ("11.4.6", ""): ("11.4.5.2", "", "memory, high"),
     ("11.4.6", "11.4-5 to 11.4-7"): ("11.4.5.2", "11.4-3 to 11.4-5", "memory, high"),
     ("21.4", ""): ("21.4", "", "memory, high"),
+    ("13.3.1", "13.3-2"): ("13.3.1", "13.3-2", "memory, high"),
+    ("13.3.1", "13.3-3"): ("13.3.1", "13.3-3", "memory, high"),
 }
 """Clause and equation of 7-16 -> clause, equation and how they were obtained for 7-22."""
 

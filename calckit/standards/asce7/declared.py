@@ -11,6 +11,7 @@ from calckit.core.formula import Formula
 from calckit.core.symbol import Symbol
 from calckit.standards.asce7 import (
     base_reactions_rules,
+    components_rules,
     diaphragm_forces_rules,
     formulas,
     ground_rules,
@@ -26,7 +27,7 @@ from calckit.standards.asce7 import (
 
 ROOMS: tuple[ModuleType, ...] = (
     symbols, formulas, ground_rules, structure_rules, model_rules, weight_rules, irregularity_rules, plan_rules,
-    diaphragm_forces_rules, load_effects_rules, base_reactions_rules, wall_forces_rules,
+    diaphragm_forces_rules, load_effects_rules, base_reactions_rules, wall_forces_rules, components_rules,
 )  # fmt: skip
 """Modules with declarations: a tuple SYMBOLS, formulas by their Python names."""
 

@@ -12,6 +12,8 @@ from calckit.core.handle import Handle, Handles
 from calckit.standards.asce7 import (
     base_reactions,
     beside,
+    component_list,
+    components,
     conditions,
     diaphragm_forces,
     forces,
@@ -123,6 +125,16 @@ class Steps:
     >>> _ = x.givens("w_w, 84 psf, H-2\\ndiaphragm, rigid, H-2\\nW_pa, 900 lb, H-2")
     >>> x.asce7.wall_forces()[-1]
     X.F_an = 181.4 lb
+    >>> fan = calc.part("F1", "Roof fan")
+    >>> _ = fan.givens("component, air-side equipment, H-2\\nW_p, 800 lb, H-2\\nz, 30 ft, H-2\\nh, 30 ft, H-2")
+    >>> _ = fan.answer("I_p", "1.0", basis="not needed after an earthquake", source="H-2")
+    >>> fan.asce7.component_force()
+    F1.F_p = 201.6 lb
+    >>> listed = calc.part("P", "Plumbing")
+    >>> _ = listed.givens("h, 30 ft, H-2\\nI_p, 1.0, H-2")
+    >>> pasted = "tag, component, W_p [lb], z [ft]\\nB1, boiler, 900, 0\\nP1, pump, 300, 15"
+    >>> listed.asce7.components(pasted, source="H-2")
+    P.F_p = 136.1, 48.4
     """
 
     def __init__(self, scope: Scope) -> None:
@@ -334,3 +346,21 @@ class Steps:
     def wall_forces(self) -> Handles:
         """The force on structural walls out of plane (12.11.1) and on their anchorage (12.11.2), from w_w and W_pa."""
         return wall_forces.wall_forces(self._scope)
+
+    # chapter 13
+    def component_force(self) -> Handle:
+        """F_p of a nonstructural component (13.3.1) with its limits, the vertical force, and that of its anchors.
+
+        Takes S_DS, W_p, I_p (13.1.3), z and h (or r_zh), and `component`, a row of Table 13.5-1 or 13.6-1, or the typed
+        factors a_p and R_p, in 7-22 C_AR and R_po, with Omega_0p. 7-16: a_i and A_xp in place of the height. 7-22: T_a,
+        R, Omega_0 and I_e of the structure, each of T_a and R number or "none: why"; the answer `attached`.
+        """
+        return components.component_force(self._scope)
+
+    def components(self, text: str, source: str) -> Handle:
+        """F_p of every component of a pasted list, or "@file.csv": tag, component, W_p, z, and I_p where it differs.
+
+        In place of the column `component` the factors may be typed in columns of their own. What all of them share
+        (S_DS, h, I_p, in 7-22 T_a, R, Omega_0, I_e) is given before. One list takes rows of one table of the standard.
+        """
+        return component_list.components(self._scope, text, source)

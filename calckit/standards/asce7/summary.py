@@ -5,9 +5,11 @@ Knows which results govern and their order. Must not compute anything.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
 from calckit.core.record import NOT_CHECKED, Summary, SummaryRow
+from calckit.standards.asce7.component_summary import building_too, component_summary, with_components
 
 if TYPE_CHECKING:
     from calckit.core.calc import Calc
@@ -60,6 +62,8 @@ SUPPLIERS = {
     "V_drift": "asce7.analysis_model()",
     "D_i": 'rows("walls", ...), column D_i',
     "t_i": 'rows("walls", ...), column t_i',
+    "component": 'given("component", ...), or the factors of the component with their source',
+    "I_p": 'answer("I_p", "1.0" or "1.5", basis=...)',
 }
 """What supplies a symbol that is missing."""
 
@@ -103,8 +107,12 @@ _DRAWINGS = (
 
 
 def summaries(calc: Calc) -> list[Summary]:
-    """The two tables of the first sheets, from the lines as they stand."""
-    parts = _directions(calc)
+    """The tables of the first sheets, from the lines as they stand: two of the building, one of components if any."""
+    carried = with_components(calc)
+    components = [component_summary(carried)] if carried else []
+    if components and not building_too(calc):
+        return components
+    parts = _directions(calc, carried)
     answer = [SummaryRow(label, *_row(parts, (name,))) for label, name in _ANSWER]
     governing = SummaryRow("Governing equation", *_governing(parts))
     answer.insert([name for _, name in _ANSWER].index("C_s") + 1, governing)
@@ -115,12 +123,13 @@ def summaries(calc: Calc) -> list[Summary]:
     return [
         Summary("answer", "Governing results", columns, head + answer),
         Summary("drawings", "Seismic data for the drawings", columns, drawings),
+        *components,
     ]
 
 
-def _directions(calc: Calc) -> list[Scope]:
-    """The parts that answer for a direction; those of one level in plan do not."""
-    parts: list[Scope] = [*calc.parts.values()]
+def _directions(calc: Calc, carried: Sequence[Scope]) -> list[Scope]:
+    """The parts that answer for a direction; components and those of one level in plan do not."""
+    parts: list[Scope] = [part for part in calc.parts.values() if part not in carried]
     answering = [part for part in parts if any(part.id_of(name) in calc.lines.entries for _, name in _ANSWER)]
     return answering or parts or [calc]
 

@@ -13,7 +13,7 @@ from calckit import units
 from calckit.core.calc import Calc
 from calckit.core.handle import Handle
 from calckit.errors import MismatchError
-from calckit.standards.asce7 import verify_effects, verify_ground, verify_plan, verify_structure
+from calckit.standards.asce7 import verify_components, verify_effects, verify_ground, verify_plan, verify_structure
 
 Given = Mapping[str, Any]
 Results = dict[str, Any]
@@ -252,6 +252,10 @@ def _period_limit(given: Given) -> Results:
     return {"C_u": values}
 
 
+def _wall_and_parapet(given: Given) -> Results:
+    return verify_components.parapet(given) | verify_effects.wall(given)
+
+
 ADAPTERS: dict[str, Callable[[Given], Results]] = {
     "asce7.ex01a.stockton_elf": _stockton_forces,
     "asce7.ex01b.stockton_vertical_distribution": _stockton_distribution,
@@ -271,5 +275,7 @@ ADAPTERS: dict[str, Callable[[Given], Results]] = {
     **verify_plan.ADAPTERS,
     **verify_structure.ADAPTERS,
     **verify_ground.ADAPTERS,
+    **verify_components.ADAPTERS,
+    "asce7.ex11.wall_and_parapet_Fp": _wall_and_parapet,
 }
 """What runs each check, by its id."""

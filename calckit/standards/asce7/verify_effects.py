@@ -145,7 +145,8 @@ def _base_reactions(given: Given) -> Results:
     return moments | forces | {"M_f_unreduced": _values(whole, "M_f", "kip*ft")}
 
 
-def _wall(given: Given) -> Results:
+def wall(given: Given) -> Results:
+    """The wall of the check, out of plane, with the design category of the site."""
     ordinates = _start(S_S=given["S_S"], S_1=given["S_1"], T_L="8 s", site_class=given["site_class"])
     ordinates.given("risk_category", given["risk_category"], source="P")
     ordinates.override("F_v", 1.5, reason="printed by the source", by="kit")  # of the 2005 edition
@@ -183,7 +184,6 @@ def _anchorage(given: Given) -> Results:
 
 ADAPTERS: dict[str, Callable[[Given], Results]] = {
     "asce7.ex01d.stockton_diaphragm": _stockton_diaphragm,
-    "asce7.ex11.wall_and_parapet_Fp": _wall,
     "asce7.v.diaphragm_design": _diaphragm_design,
     "asce7.v.load_combinations": _combinations,
     "asce7.v.base_reactions": _base_reactions,

@@ -21,7 +21,7 @@ from tests.printed_audit import audit
 
 from .printout import INPUTS, pasted
 
-CONFIRMED = {"11.4-1", "11.4-2", "11.4-3 to 11.4-5"}
+CONFIRMED = {"11.4-1", "11.4-2", "11.4-3 to 11.4-5", *(f"13.3-{number}" for number in range(1, 7))}
 """Equation numbers of 7-22 of which the kit's authors are sure (memory, high); no other is printed."""
 SITE = {name: str(INPUTS[name]) for name in ("S_S", "S_1", "S_MS", "S_M1", "T_L", "site_class")}
 OF_7_16 = {"S_S": "1.37", "S_1": "0.52", "T_L": "12 s", "site_class": "C"}

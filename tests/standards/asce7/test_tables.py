@@ -16,8 +16,11 @@ from calckit.errors import UnknownNameError
 from calckit.standards.asce7.declared import SYMBOLS
 
 PACKAGE = "calckit.standards.asce7"
-NAMES = ("C_t", "C_u", "F_PGA", "F_a", "F_v", "I_e", "category_S_D1", "category_S_DS", "drift", "systems")
-OF_7_22 = ("systems_7_22",)
+NAMES = (
+    "C_t", "C_u", "F_PGA", "F_a", "F_v", "I_e", "category_S_D1", "category_S_DS", "components_architectural",
+    "components_mechanical", "drift", "systems",
+)  # fmt: skip
+OF_7_22 = ("systems_7_22", "components_mechanical_7_22")
 """Tables that ASCE 7-22 alone has."""
 HEADER = (
     "standard", "edition", "table", "title", "clause", "rows", "columns", "unit", "interpolation", "obtained",
