@@ -15,7 +15,7 @@ from calckit.core.digits import carried, decimals_for, numeral
 from calckit.core.formula import Formula
 from calckit.core.handle import Handle, Handles
 from calckit.core.inputs import NONE
-from calckit.core.record import Candidate, Flag, Margin
+from calckit.core.record import Candidate, Flag, Margin, Source
 from calckit.core.table import load
 from calckit.errors import Fault, InputError, ScopeError
 from calckit.standards.asce7 import formulas
@@ -138,7 +138,7 @@ def design_spectrum(scope: Scope) -> Handles:
     if faults:
         raise InputError("asce7.design_spectrum", faults)
     with scope.step():
-        scope.choice("hazard_basis", where, rule("11.4.4"))
+        scope.choice("hazard_basis", where, Source(scope.calc.standard.name, "11.4.4"))
         made = Handles()
         if where == "mapped":
             made = _mapped(scope)

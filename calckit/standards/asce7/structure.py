@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, Any
 from calckit import units
 from calckit.core.handle import Handle
 from calckit.core.inputs import NONE
-from calckit.core.record import NOT_CHECKED, NOT_OK, OK, Candidate, Flag
+from calckit.core.record import NOT_CHECKED, NOT_OK, OK, Candidate, Flag, Source
 from calckit.core.table import load
 from calckit.errors import InputError, ScopeError
 from calckit.standards.asce7 import formulas
@@ -37,7 +37,7 @@ def approximate_period(scope: Scope, typed: Mapping[str, Any]) -> Handle:
     """T_a by Table 12.8-2; by 0.1 N or from the walls where the engineer chooses it and the conditions hold."""
     operands = scope.typed_in_place(typed)
     with scope.step():
-        method = scope.choice("T_a_method", "table", rule("12.8.2.1"))
+        method = scope.choice("T_a_method", "table", Source(scope.calc.standard.name, "12.8.2.1"))
         flags = _height_flags(scope)
         if method == "stories":
             return _by_stories(scope, flags)
