@@ -70,7 +70,8 @@ def test_every_numeral_of_the_export_is_an_inputs(tmp_path: Path) -> None:
     assert not re.search(r"download=|href=\"data:", both)  # nothing is attached that would have to be unpacked
     both = re.sub(r"<style>.*?</style>|http://www.w3.org/\S*|&#\w+;", "", both, flags=re.DOTALL)
     inputs = [line for line in record.lines if line.kind in ("given", "judgment")]
-    given = json.dumps([record.calculation, *([line.shown, line.meaning] for line in inputs)])
+    typed = [(line.shown, line.meaning, line.source and line.source.text()) for line in inputs]
+    given = json.dumps([record.calculation, typed])
     numeral = r"(?<![\w.])\d[\d.]*\d(?![\d])"
     long = {text for text in re.findall(numeral, both) if len(text.replace(".", "").strip("0")) >= 4}
     assert long and long - set(re.findall(numeral, given)) == set()

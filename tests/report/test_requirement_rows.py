@@ -160,7 +160,7 @@ def test_a16_sections_end_with_what_they_carry_on() -> None:
         line = record().line(f"{part}.V")
         users = [other.n for other in lines if line.id in other.inputs and other.section != line.section]
         assert len(users) >= 2
-        assert f"{part}𝑉={squeezed(str(line.shown))}tolines{users[0]}," in texts()[0]
+        assert f"{part}𝑉={squeezed(str(line.shown))}tolines{users[0]}/" in texts()[0]
         home = issued.page()[issued.page().index(f'id="line-{line.n}"') :].partition("</section>")[0]
         carried = home[home.index("Carried forward") :]
         assert re.search(rf"{line.shown} \(line {line.n}\) to {users[0]},", re.sub("<[^>]*>", "", carried))
