@@ -91,11 +91,12 @@ class MismatchError(CalckitError, ValueError):
 
 
 def nearest_first(name: str, known: Iterable[str]) -> tuple[str, ...]:
-    """`known` with the names most like `name` first.
+    """`known` with the names most like `name` first, those before all that differ in case alone.
 
     >>> nearest_first("S_d", ["T_a", "S_D1", "S_DS"])
     ('S_D1', 'S_DS', 'T_a')
     """
     names = sorted(set(known))
-    near = sorted(get_close_matches(name, names, n=4, cutoff=0.4), key=lambda word: word)
+    same = [word for word in names if word.casefold() == name.casefold()]
+    near = [*same, *sorted(word for word in get_close_matches(name, names, n=4, cutoff=0.4) if word not in same)]
     return (*near, *(word for word in names if word not in near))
