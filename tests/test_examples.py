@@ -11,10 +11,11 @@ from pypdf import PdfReader
 
 from calckit.core.record import from_json
 from calckit.report import notebook
+from calckit.report.compare import compare
 from calckit.report.issue import produce
 from calckit.report.recheck import recheck
 from calckit.report.run import Settings
-from tests.second_pass import NAME, second_pass
+from tests.second_pass import PASSES, second_pass
 
 ROOT = Path(__file__).parents[1]
 EXAMPLES = ROOT / "example_reports"
@@ -25,7 +26,7 @@ TEMPLATES = ROOT / "templates"
 
 
 def test_there_is_an_example_of_every_template_and_of_the_second_pass() -> None:
-    assert [path.name for path in NOTEBOOKS] == sorted([*(path.name for path in TEMPLATES.glob("*.ipynb")), NAME])
+    assert [path.name for path in NOTEBOOKS] == sorted([*(path.name for path in TEMPLATES.glob("*.ipynb")), *PASSES])
 
 LEAST_CHECKED = {"component_force": 6}
 """Cells whose outputs are compared, where a notebook has fewer than ten that write lines."""
@@ -35,8 +36,8 @@ def unissued(stem: str, folder: Path) -> notebook.Notebook:
     """The notebook of an example as it was before it was issued."""
     path = TEMPLATES / f"{stem}.ipynb"
     if not path.exists():
-        path = folder / NAME
-        nbformat.write(second_pass(TEMPLATES / "building_lateral_force.ipynb"), path)
+        path = folder / path.name
+        nbformat.write(second_pass(TEMPLATES / "building_lateral_force.ipynb", PASSES[path.name]), path)
     return notebook.read(path)
 
 
@@ -59,7 +60,11 @@ def test_the_same_lines_again(path: Path, tmp_path: Path) -> None:
     assert (again.source, again.lines_hash) == (stored.source, stored.lines_hash)
 
 
-ISSUED = sorted([*EXAMPLES.glob("*.pdf"), *EXAMPLES.glob("*.html")])
+ISSUED = [
+    EXAMPLES / f"{path.name.removesuffix('.record.json')}.{ending}"
+    for path in sorted(EXAMPLES.glob("*.record.json"))
+    for ending in ("html", "pdf")
+]
 
 
 @pytest.mark.parametrize("path", ISSUED, ids=lambda path: path.name)
@@ -67,8 +72,14 @@ def test_the_files_are_intact(path: Path) -> None:
     assert [finding for finding in recheck(path) if not finding.good] == []
 
 
-@pytest.mark.parametrize("name", ["C-101_A.pdf", "C-101_B.pdf"])
-def test_sixteen_sheets_before_the_appendices(name: str) -> None:
-    reader = PdfReader(EXAMPLES / name)
+def test_sixteen_sheets_before_the_appendices() -> None:
+    reader = PdfReader(EXAMPLES / "C-101_A.pdf")
     appendices = (item for item in reader.outline if not isinstance(item, list) and "Appendix A" in str(item.title))
     assert reader.get_destination_page_number(next(appendices)) <= 16
+
+
+def test_what_the_edition_moves_is_told() -> None:
+    told = (EXAMPLES / "7-16_to_7-22.html").read_text(encoding="utf-8")
+    moved = compare(EXAMPLES / "C-101_B.pdf", EXAMPLES / "C-102_B.pdf").changed
+    assert {"X.V", "Y.V", "S_D1"} <= {change.id for change in (*moved.results, *moved.formulas)}
+    assert all(line in told for line in ("ASCE/SEI 7-22", "X.V", "S_D1"))
