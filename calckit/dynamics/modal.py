@@ -1,6 +1,6 @@
 """Natural modes of structures with several degrees of freedom, and periods by energy.
 
-Knows mass and stiffness matrices. Must not know ground motions, spectra or units. Degrees of freedom run from the base up.
+Knows mass and stiffness matrices, freedoms from the base up. Must not know ground motions, spectra or units.
 """
 
 from __future__ import annotations
@@ -17,7 +17,7 @@ from calckit.dynamics.arguments import Arguments, Array
 class Modes:
     """Modes, the longest period first.
 
-    `periods` in s and `frequencies` in rad/s; `shapes` (freedoms, modes), 1 at the last freedom (or at the largest where
+    `periods` in s and `frequencies` in rad/s; `shapes` (freedoms, modes), 1 at the last freedom (at the largest where
     that one hardly moves); `participation` factors; `effective_masses`, whose sum over all modes is the whole mass;
     `effective_heights`, None unless heights were given.
     """
@@ -152,16 +152,16 @@ def energy_period(mass: ArrayLike, forces: ArrayLike, displacements: ArrayLike) 
     21.9462
     """
     read = Arguments("energy_period")
-    m, F, d = (
+    m, p, d = (
         read.numbers(name, values, (1,))
         for name, values in (("mass", mass), ("forces", forces), ("displacements", displacements))
     )
-    if not m.shape == F.shape == d.shape:
-        read.fault("forces", "as many as masses and displacements", f"{F.size} against {m.size} and {d.size}")
-    elif F @ d <= 0:
+    if not m.shape == p.shape == d.shape:
+        read.fault("forces", "as many as masses and displacements", f"{p.size} against {m.size} and {d.size}")
+    elif p @ d <= 0:
         read.fault("displacements", "displacements in the direction of the forces", "work that is not above 0")
     read.settle()
-    return float(2 * np.pi * np.sqrt(m @ d**2 / (F @ d)))
+    return float(2 * np.pi * np.sqrt(m @ d**2 / (p @ d)))
 
 
 def rayleigh_damping(damping: float, first: float, second: float) -> tuple[float, float]:

@@ -2,10 +2,10 @@
 
 Knows the recurrence and how it is worked through a record in blocks. Must not know spectra or how a record is refined.
 
-The state of an oscillator of circular frequency omega is (u, v/omega). Over a step h = omega dt its transition is exp(S h)
-with S = [[0, 1], [-1, -2 zeta]], and a load that runs straight from p_0 to p_1 adds h (phi_1 - phi_2) b p_0 + h phi_2 b p_1,
-where phi_1 and phi_2 are the first two phi functions of S h and b = (0, 1/omega^2). (N. C. Nigam and P. C. Jennings,
-Bulletin of the Seismological Society of America 59, 1969, give the same recurrence written out.)
+The state of an oscillator of circular frequency omega is (u, v/omega). Over a step h = omega dt its transition is
+exp(S h) with S = [[0, 1], [-1, -2 zeta]], and a load that runs straight from p_0 to p_1 adds h (phi_1 - phi_2) b p_0 +
+h phi_2 b p_1, where phi_1 and phi_2 are the first two phi functions of S h and b = (0, 1/omega^2). (N. C. Nigam and
+P. C. Jennings, Bulletin of the Seismological Society of America 59, 1969, give the same recurrence written out.)
 """
 
 from __future__ import annotations
@@ -98,7 +98,7 @@ def oscillator_response(
     """The history of an oscillator under ground acceleration, starting from rest at the first sample.
 
     Arguments: `acceleration`, of the ground in m/s2, one record (n,) or a stack (records, n), at equal steps `dt` in s
-    and straight in between; `period` in s; `damping`, a ratio from 0 to below 1; `ring_down`, how long the oscillator is
+    and straight in between; `period` in s; `damping`, a ratio from 0 to below 1; `ring_down`, how long the motion is
     followed after the record, in s (left out: half a period, which holds the largest response that follows). Returns a
     Response. Raises InputError naming every bad argument.
 
@@ -159,7 +159,7 @@ class Work:
         return starts.transpose(0, 2, 1, 3)
 
     def outputs(self, oscillator: int, weights: Array) -> Array:
-        """What `weights` (outputs, 2) make of the states, at every sample but the first: (records, samples, outputs)."""
+        """What `weights` (outputs, 2) make of the states at all samples but the first: (records, samples, outputs)."""
         free = np.einsum("ki,sij->skj", weights, self._free[oscillator])
         forced = np.einsum("ki,sij->skj", weights, self._forced[oscillator])
         size = BLOCK * len(weights)

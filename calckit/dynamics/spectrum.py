@@ -3,8 +3,8 @@
 Knows how finely each period must be worked and which peaks make a spectrum. Must not know how an oscillator moves.
 
 A motion is known at samples only. What lies between them is a straight line, as published tables assume, or the
-band-limited curve through them. The straight line loses part of the shortest waves, always on the unsafe side, so where a
-period has fewer than 20 samples the band-limited curve is the default.
+band-limited curve through them. The straight line loses part of the shortest waves, always on the unsafe side, so where
+a period has fewer than 20 samples the band-limited curve is the default.
 """
 
 from __future__ import annotations
@@ -29,7 +29,7 @@ _MOST = 64
 class Spectrum:
     """Peaks of oscillators: arrays (periods,), with a leading axis for records and one for dampings where several.
 
-    `displacement` relative to the ground; `pseudo_velocity` and `pseudo_acceleration`, which are omega and omega^2 times
+    `displacement` relative to the ground; `pseudo_velocity` and `pseudo_acceleration`, omega and omega^2 times
     it; `total_acceleration` of the mass. `refinement` says for each period what was taken between the samples.
     """
 
@@ -47,11 +47,11 @@ def response_spectrum(
 ) -> Spectrum:
     """The response spectrum of one record, or of a stack of records, for one or several dampings.
 
-    Arguments: `acceleration` of the ground in m/s2, (n,) or (records, n), at steps `dt` in s; `periods` in s; `damping`,
-    one ratio or several, from 0 to below 1; `refine`, what is taken between the samples where a period has fewer than
-    20 of them, "band-limited" or "straight-line" (elsewhere: straight lines). Every record is worked in at least 50
-    steps to a period (64 to a sample at most) and followed for half a period after its end. Returns a Spectrum. Raises
-    InputError naming every bad argument.
+    Arguments: `acceleration` of the ground in m/s2, (n,) or (records, n), at steps `dt` in s; `periods` in s;
+    `damping`, one ratio or several, from 0 to below 1; `refine`, what is taken between the samples where a period has
+    fewer than 20 of them, "band-limited" or "straight-line" (elsewhere: straight lines). Every record is worked in at
+    least 50 steps to a period (64 to a sample at most) and followed for half a period after its end. Returns a
+    Spectrum. Raises InputError naming every bad argument.
 
     >>> found = response_spectrum([0.0, 0.0, 1.0, 1.0], dt=0.01, periods=[0.01, 5.0], damping=0.05)
     >>> found.pseudo_acceleration.shape, found.refinement
@@ -60,27 +60,27 @@ def response_spectrum(
     read = Arguments("response_spectrum")
     records = np.atleast_2d(read.numbers("acceleration", acceleration, (1, 2)))
     read.positive("dt", dt, (0,))
-    T = np.atleast_1d(read.positive("periods", periods))
+    natural = np.atleast_1d(read.positive("periods", periods))
     zeta = np.atleast_1d(read.between("damping", damping, 0, 1))
     read.choice("refine", refine, REFINEMENTS)
     read.settle()
-    curves = tuple(refine if period < COARSE * dt else "straight-line" for period in T)
-    parts = np.minimum(2 ** np.ceil(np.log2(np.maximum(STEPS * dt / T, 1))), _MOST).astype(int)
-    displacement, total = (np.empty((len(zeta), len(records), len(T))) for _ in range(2))
+    curves = tuple(refine if period < COARSE * dt else "straight-line" for period in natural)
+    parts = np.minimum(2 ** np.ceil(np.log2(np.maximum(STEPS * dt / natural, 1))), _MOST).astype(int)
+    displacement, total = (np.empty((len(zeta), len(records), len(natural))) for _ in range(2))
     for curve, count in sorted(set(zip(curves, parts.tolist(), strict=True))):
         chosen = np.array([pair == (curve, count) for pair in zip(curves, parts.tolist(), strict=True)])
         finer = _REFINED[curve](records, count)
         step = dt / count
-        finer = lengthened(finer, step, float(T[chosen].max()) / 2)
-        displacement[..., chosen], total[..., chosen] = _peaks(finer, step, T[chosen], zeta)
-    omega = 2 * np.pi / T
+        finer = lengthened(finer, step, float(natural[chosen].max()) / 2)
+        displacement[..., chosen], total[..., chosen] = _peaks(finer, step, natural[chosen], zeta)
+    omega = 2 * np.pi / natural
 
     def settled(array: Array) -> Array:
         array = array if np.ndim(acceleration) == 2 else array[:, 0]
         return array if np.ndim(damping) else array[0]
 
     peaks = (displacement, displacement * omega, displacement * omega**2, total)
-    return Spectrum(T, zeta, *map(settled, peaks), curves)
+    return Spectrum(natural, zeta, *map(settled, peaks), curves)
 
 
 def _peaks(records: Array, dt: float, periods: Array, damping: Array) -> tuple[Array, Array]:

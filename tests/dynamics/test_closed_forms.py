@@ -89,7 +89,7 @@ def test_period_ratio_is_that_of_the_method(method: str) -> None:
 def test_out_of_range_is_refused() -> None:
     with pytest.raises(InputError, match="damping: needed numbers from 0 to below 1; given 1"):
         dynamics.step_peak(1.0)
-    with pytest.raises(InputError, match="below 0.707"):
+    with pytest.raises(InputError, match=r"below 0\.707"):
         dynamics.resonance_peak(0.8)
     with pytest.raises(InputError, match="duration: needed numbers above 0"):
         dynamics.half_sine_pulse([0.5, 0.0])

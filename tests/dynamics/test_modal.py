@@ -37,7 +37,8 @@ def test_frequencies_against_scipy(freedoms: int) -> None:
 def test_full_mass_matrix_against_scipy() -> None:
     mass = np.array([[3.0, 0.5, 0.0], [0.5, 2.0, 0.2], [0.0, 0.2, 1.0]])
     stiffness = shear_building([4.0, 3.0, 2.0])
-    assert modes(mass, stiffness).frequencies == pytest.approx(np.sqrt(eigh(stiffness, mass, eigvals_only=True)), rel=1e-10)
+    exact = np.sqrt(eigh(stiffness, mass, eigvals_only=True))
+    assert modes(mass, stiffness).frequencies == pytest.approx(exact, rel=1e-10)
     assert modes(mass, stiffness).effective_masses.sum() == pytest.approx(mass.sum(), rel=1e-12)
 
 

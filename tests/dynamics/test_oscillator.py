@@ -145,7 +145,7 @@ def test_history_of_any_length(samples: int, period: float, damping: float, seed
 
 
 def test_every_bad_argument_is_named() -> None:
-    with pytest.raises(InputError, match="(?s)acceleration.*dt.*periods.*damping.*refine") as caught:
+    with pytest.raises(InputError, match=r"(?s)acceleration.*dt.*periods.*damping.*refine") as caught:
         response_spectrum([1.0, float("nan")], 0.0, [1.0, -1.0], 1.0, refine="cubic")
     assert len(caught.value.faults) == 5
     with pytest.raises(InputError, match="acceleration: needed an array of 1 or 2 dimensions"):
