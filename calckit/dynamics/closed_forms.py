@@ -155,7 +155,7 @@ def _stationary(x: float) -> Array:
 def cycles_to_decay(ratio: ArrayLike, damping: ArrayLike) -> Array:
     """The cycles of free vibration after which the amplitude is 1/`ratio` of what it was.
 
-    >>> cycles_to_decay(10.0, 0.02757).round(2)
+    >>> round(float(cycles_to_decay(10.0, 0.02757)), 2)
     13.29
     """
     zeta, times = _damping("cycles_to_decay", damping, least=1), _above_one("cycles_to_decay", ratio)
@@ -174,7 +174,7 @@ def cycles_to_halve(damping: ArrayLike) -> Array:
 def damping_from_decay(ratio: ArrayLike, cycles: ArrayLike) -> Array:
     """The damping ratio of free vibration whose amplitude falls to 1/`ratio` in `cycles`, exact for any damping.
 
-    >>> damping_from_decay(2.0, 4).round(5)
+    >>> round(float(damping_from_decay(2.0, 4)), 5)
     0.02757
     """
     times, j = _above_one("damping_from_decay", ratio), _ratio("damping_from_decay", "cycles", cycles)
