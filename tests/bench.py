@@ -100,8 +100,7 @@ def filtered(record: Any, dt: float, omega: float, damping: float) -> tuple[Any,
 def spectra(count: int = 50, samples: int = 20_000, natural: int = 200) -> None:
     """Response spectra of a suite against a loop over the periods with scipy.signal.lfilter, equally refined.
 
-    lfilter has one thread. Matrix products with several are faster on an idle machine and may be far slower on a busy
-    one, so the row stands twice: with the threads as they come, and in a process of one thread.
+    lfilter has one thread, so the row stands twice: with the threads as they come, and in a process of one thread.
     """
     import numpy as np
 
