@@ -304,7 +304,8 @@ class Form(Printer):
     def _print_AtLevel(self, node: AtLevel) -> str:
         inner = node.args[0]
         if self.operands is None:
-            return self._lower(inner, lambda sub: f"{sub}, level {node.level}".removeprefix(", "))
+            index = self.symbols(inner.name).index if isinstance(inner, Ref) else "level"
+            return self._lower(inner, lambda sub: f"{sub}, {index} {node.level}".removeprefix(", "))
         assert self.env is not None
         return self._at(node.env(self.env).row or 0, inner, self._factor)
 

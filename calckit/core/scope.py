@@ -18,6 +18,7 @@ from calckit.core.formula import Formula
 from calckit.core.handle import Handle
 from calckit.core.inputs import NONE, Reading, read
 from calckit.core.record import NOT_OK, Candidate, Flag, Line, Margin, Operand, Override, Source
+from calckit.core.standard import methods
 from calckit.core.symbol import Symbol
 from calckit.errors import Fault, InputError, StaleObjectError, UnknownNameError, nearest_first
 
@@ -110,7 +111,7 @@ class Scope:
         given = str(line.shown) if line else "nothing"
         cure = f"supply it with {supplier}"
         known = {**self.calc.standard.symbols, **self.calc.own_symbols}
-        if symbol.name not in known:
+        if symbol.name not in known and symbol.name not in self.calc.standard.suppliers:
             cure += f", or did you mean {', '.join(nearest_first(symbol.name, known)[:4])}?"
         return Fault(name, needed, given, cure, symbol.meaning if symbol.name in known else "")
 
@@ -314,6 +315,8 @@ class Scope:
     def __getattr__(self, name: str) -> Any:
         if not name.startswith("_") and name == self.calc.standard.family:
             return self.calc.standard.steps(self)
+        if name == "methods":
+            return methods().attached(self)
         raise AttributeError(f"{type(self).__name__} has no attribute {name!r}")
 
 
