@@ -25,7 +25,8 @@ from calckit.dynamics.modal import (
     shear_building,
     shear_cantilever,
 )
-from calckit.dynamics.oscillator import Response, oscillator_response, recurrence
+from calckit.dynamics.oscillator import Response, oscillator_response
+from calckit.dynamics.recurrence import recurrence
 from calckit.dynamics.spectrum import Spectrum, response_spectrum
 from calckit.dynamics.stepping import period_ratio, stability_limit, step_by_step
 

@@ -20,6 +20,10 @@ class Modes:
     `periods` in s and `frequencies` in rad/s; `shapes` (freedoms, modes), 1 at the last freedom (at the largest where
     that one hardly moves); `participation` factors; `effective_masses`, whose sum over all modes is the whole mass;
     `effective_heights`, None unless heights were given.
+
+    >>> found = modes([2, 1], shear_building([2, 1]))
+    >>> found.periods.round(3).tolist(), found.effective_heights
+    ([8.886, 4.443], None)
     """
 
     periods: Array

@@ -15,7 +15,7 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from calckit.dynamics.arguments import Arguments, Array
-from calckit.dynamics.oscillator import Work, lengthened
+from calckit.dynamics.blocks import Blocks, lengthened
 
 REFINEMENTS = ("band-limited", "straight-line")
 STEPS = 50
@@ -23,6 +23,7 @@ STEPS = 50
 COARSE = 20
 """Samples to a period below which the band-limited curve is taken, where it is asked for."""
 _MOST = 64
+_SAMPLES = 4_000_000  # refined samples worked at once, which bounds the memory
 
 
 @dataclass(frozen=True)
@@ -31,6 +32,10 @@ class Spectrum:
 
     `displacement` relative to the ground; `pseudo_velocity` and `pseudo_acceleration`, omega and omega^2 times
     it; `total_acceleration` of the mass. `refinement` says for each period what was taken between the samples.
+
+    >>> found = response_spectrum([0.0, 1.0, 0.0], 0.01, [0.5], [0.02, 0.05])
+    >>> found.pseudo_velocity.shape, found.damping.tolist()
+    ((2, 1), [0.02, 0.05])
     """
 
     periods: Array
@@ -69,10 +74,12 @@ def response_spectrum(
     displacement, total = (np.empty((len(zeta), len(records), len(natural))) for _ in range(2))
     for curve, count in sorted(set(zip(curves, parts.tolist(), strict=True))):
         chosen = np.array([pair == (curve, count) for pair in zip(curves, parts.tolist(), strict=True)])
-        finer = _REFINED[curve](records, count)
-        step = dt / count
-        finer = lengthened(finer, step, float(natural[chosen].max()) / 2)
-        displacement[..., chosen], total[..., chosen] = _peaks(finer, step, natural[chosen], zeta)
+        step, rest = dt / count, float(natural[chosen].max()) / 2
+        at_once = max(1, _SAMPLES // (records.shape[1] * count))
+        for first in range(0, len(records), at_once):
+            some = slice(first, first + at_once)
+            finer = lengthened(_REFINED[curve](records[some], count), step, rest)
+            displacement[:, some, chosen], total[:, some, chosen] = _peaks(finer, step, natural[chosen], zeta)
     omega = 2 * np.pi / natural
 
     def settled(array: Array) -> Array:
@@ -86,17 +93,20 @@ def response_spectrum(
 def _peaks(records: Array, dt: float, periods: Array, damping: Array) -> tuple[Array, Array]:
     """Largest displacement and total acceleration: (dampings, records, periods)."""
     omega, zeta = np.broadcast_arrays(2 * np.pi / periods, damping[:, None])
-    work = Work(records, dt, omega.ravel(), zeta.ravel())
-    found = np.empty((omega.size, len(records), 2))
+    work = Blocks(records, dt, omega.ravel(), zeta.ravel())
+    found = np.empty((omega.size, 2, len(records)))
     for place, (w, z) in enumerate(zip(omega.flat, zeta.flat, strict=True)):
-        outputs = work.outputs(place, np.array([[1.0, 0.0], [w**2, 2 * z * w**2]]))
-        found[place] = np.maximum(outputs.max(axis=1, initial=0), -outputs.min(axis=1, initial=0))
-    shaped = found.reshape(*omega.shape, len(records), 2).transpose(3, 0, 2, 1)
+        found[place] = work.peaks(place, np.array([[1.0, 0.0], [w**2, 2 * z * w**2]]))
+    shaped = found.reshape(*omega.shape, 2, len(records)).transpose(2, 0, 3, 1)
     return shaped[0], shaped[1]
 
 
 def straight(records: Array, count: int) -> Array:
-    """Records with `count` steps of a straight line in place of each step."""
+    """Records (records, n) with `count` steps of a straight line in place of each step.
+
+    >>> straight(np.array([[0.0, 1.0, 0.0]]), 2).tolist()
+    [[0.0, 0.5, 1.0, 0.5, 0.0]]
+    """
     if count == 1:
         return records
     samples = records.shape[1]
@@ -105,7 +115,11 @@ def straight(records: Array, count: int) -> Array:
 
 
 def band_limited(records: Array, count: int) -> Array:
-    """Records with `count` steps of the band-limited curve through the samples in place of each step."""
+    """Records (records, n) with `count` steps of the band-limited curve through the samples in place of each step.
+
+    >>> band_limited(np.array([[0.0, 1.0, 0.0]]), 2).round(3).tolist()
+    [[0.0, 0.622, 1.0, 0.622, 0.0]]
+    """
     if count == 1:
         return records
     samples = records.shape[1]

@@ -17,6 +17,11 @@ MOST_LINES = 500
 SHOWN = {
     "calckit.core.calc", "calckit.core.writer", "calckit.core.handle", "calckit.units", "calckit.plots.levels",
     "calckit.plots.spectrum", "calckit.standards.asce7.steps",
+    "calckit.dynamics.closed_forms", "calckit.dynamics.combination", "calckit.dynamics.modal",
+    "calckit.dynamics.oscillator", "calckit.dynamics.recurrence", "calckit.dynamics.spectrum",
+    "calckit.dynamics.stepping",
+    "calckit.motions.content", "calckit.motions.correction", "calckit.motions.measures", "calckit.motions.motion",
+    "calckit.motions.reading", "calckit.motions.suites", "calckit.motions.synthetic",
 }  # fmt: skip
 """Modules whose names a user writes: each name stands in an example that runs."""
 
@@ -24,6 +29,12 @@ NOT_SHOWN = {
     "calckit": "passes on what other modules define",
     "calckit.__main__": "starts the command line",
     "calckit.cli": "shown by the commands in README.md; run by tests/test_cli.py",
+    "calckit.dynamics": "passes on what its modules define",
+    "calckit.dynamics.arguments": "behind the array functions; every refusal shows it",
+    "calckit.dynamics.blocks": "behind responses and spectra; shown by their examples",
+    "calckit.dynamics.verify": "run by `calckit verify dynamics`",
+    "calckit.motions": "passes on what its modules define",
+    "calckit.motions.verify": "run by `calckit verify dynamics`",
     "calckit.errors": "raised, never called; the wording is compared in the tests of what raises it",
     "calckit.core.": "behind Calc; shown by the examples of Calc and its methods",
     "calckit.plots.": "behind the figures; shown by their examples",
