@@ -14,8 +14,11 @@ from calckit.core import work
 from calckit.core.book import Cell, Entry
 from calckit.core.formula import Formula
 from calckit.core.record import Line, Record
+from calckit.core.standard import edition
 from calckit.core.symbol import KINDS, Symbol
-from calckit.standards.asce7.declared import FORMULAS, SYMBOLS
+from calckit.methods import symbols as methods_symbols
+from calckit.standards.asce7 import modal_rules
+from calckit.standards.asce7.declared import FORMULAS
 from tests.building import Building, metric
 
 ONE_DECLARATION = 1e-12
@@ -97,7 +100,11 @@ MIXED = {
     "time": ("s", "ms", "s", "ms"),
     "moment": ("kip*ft", "lb*in", "kN*m", "N*mm"),
 }
-LISTS = {"w_x", "h_x", "h_sx", "wh_x", "C_vx", "F_x", "V_x", "delta_xe", "delta_x", "Delta", "P_x", "T_r"}
+OF_MODE = {**modal_rules.OF_MODE, **methods_symbols.OF_MODE}
+SYMBOLS = {**edition("ASCE 7-16").symbols, **OF_MODE}
+LISTS = {"w_x", "h_x", "h_sx", "wh_x", "C_vx", "F_x", "V_x", "delta_xe", "delta_x", "Delta", "P_x", "T_r",
+         "T_m", "W_m", "S_am", "C_sm", "V_xd", "s_xn", "d_xn", "F_xn", "V_xn", "delta_xn",
+         "F_xt", "V_xt", "M_xt", "delta_xt", "Delta_t"}  # fmt: skip
 ROWS = ["Roof", "3", "2"]
 
 
@@ -115,6 +122,7 @@ def entry(symbol: Symbol, unit: str, number: int) -> Entry:
 def worked(formula: Formula, choice: int) -> tuple[list[float], str]:
     """The values of a formula, before rounding, with every operand typed in its unit number `choice`."""
     calc = Calc(project="Units")
+    calc.own_symbols |= OF_MODE
     operands = {}
     for number, name in enumerate(formula.names, 1):
         symbol = SYMBOLS[name]

@@ -1,6 +1,6 @@
-"""ASCE/SEI 7: seismic loads on buildings by equivalent lateral forces, editions 7-16 and 7-22.
+"""ASCE/SEI 7: seismic loads on buildings by equivalent lateral forces and by modes, editions 7-16 and 7-22.
 
-Knows which editions are offered and what they are made of; the rooms are hazard, structure, forces, summary.
+Knows which editions are offered and what they are made of; the rooms are hazard, structure, forces, modal, summary.
 """
 
 from typing import Any
@@ -13,6 +13,7 @@ from calckit.standards.asce7.summary import SUPPLIERS, summaries
 FIELD_OF_USE = (
     "Equivalent lateral forces of ASCE/SEI 7, chapters 11 and 12, for buildings: design ordinates, design category, "
     "system factors, period, base shear, distribution over the height, story drift, stability.",
+    "Modal response spectrum analysis (12.9.1) from the modes of a stick model or of a three-dimensional analysis.",
     "Irregularities, redundancy, diaphragm class, torsion and the contents of the seismic weight are the engineer's "
     "answers; the kit does not compute them.",
     "Values and rules marked as to be confirmed were not read in the printed standard by the kit's authors.",
@@ -20,7 +21,8 @@ FIELD_OF_USE = (
 NOT_COVERED = (
     "computed torsion, redundancy and irregularities; diaphragms, collectors, load combinations, foundations; "
     "nonstructural components (chapter 13)",
-    "modal and response history analysis (12.9, chapter 16); soil-structure interaction (chapter 19)",
+    "response history analysis (12.9.2, chapter 16); the lumping of short modes into one rigid mode (12.9.1.1); "
+    "soil-structure interaction (chapter 19)",
     "the simplified method (12.14), nonbuilding structures (chapter 15), isolated and damped structures (chapters 17 "
     "and 18), existing buildings",
     "the limit on S_DS of 12.8.1.3, periods of masonry and concrete shear walls by eq. 12.8-9, combined systems",

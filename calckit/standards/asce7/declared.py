@@ -9,9 +9,9 @@ from types import ModuleType
 
 from calckit.core.formula import Formula
 from calckit.core.symbol import Symbol
-from calckit.standards.asce7 import formulas, symbols
+from calckit.standards.asce7 import formulas, modal_rules, symbols
 
-ROOMS: tuple[ModuleType, ...] = (symbols, formulas)
+ROOMS: tuple[ModuleType, ...] = (symbols, formulas, modal_rules)
 """Modules with declarations: a tuple SYMBOLS, formulas by their Python names."""
 
 SYMBOLS: dict[str, Symbol] = {

@@ -9,7 +9,7 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING, Any
 
 from calckit.core.handle import Handle, Handles
-from calckit.standards.asce7 import forces, hazard, structure
+from calckit.standards.asce7 import forces, hazard, modal, structure
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -45,6 +45,13 @@ class Steps:
     X.M_x = 556, 1520
     >>> x.asce7.procedure(), x.asce7.drift(), x.asce7.stability()
     (X.procedure = OK, X.drift = NOT CHECKED, X.stability = NOT CHECKED)
+    >>> _ = x.rows("stories", "level, k_x [kip/in]\\nRoof, 300\\n2, 500", source="H-2")
+    >>> _, _ = x.given("zeta", 0.05, source="H-2"), x.methods.modes()
+    >>> x.asce7.modal_response()
+    [X.C_sm = 0.07876, 0.08400, X.V_m = 54.10, 6.56]
+    >>> _, _ = x.methods.correlation(), x.methods.combine("V_m", "V_xn", "Delta_n")
+    >>> x.asce7.modal_scaling()
+    [X.f_V = 1.177, X.f_Delta = 1, X.V_xd = 37.13, 64.26, X.Delta_d = 0.5257, 0.5459]
     """
 
     def __init__(self, scope: Scope) -> None:
@@ -111,3 +118,20 @@ class Steps:
     def stability(self) -> Handle:
         """theta and theta_max (12.8.7) and the check of each story."""
         return forces.stability(self._scope)
+
+    # chapter 12, modal response spectrum analysis
+    def modal_response(self) -> Handles:
+        """S_am, C_sm and V_m of each mode, and forces, shears, moments and drifts of each mode (12.9.1.1, 12.9.1.2).
+
+        Takes the modes by symbol: T_m, W_m, r_m, r_sum, and s_xn, d_xn of each mode n. A stick model is refused where
+        an irregularity asks for a three-dimensional one.
+        """
+        return modal.modal_response(self._scope)
+
+    def modal_scaling(self) -> Handles:
+        """Factors on the combined forces and drifts, against the static V (12.9.1.4), and the values for design.
+
+        Takes V_t and, where they were combined, F_xt, V_xt, M_xt, delta_xt and Delta_t; prints them beside the static
+        answer and checks the drifts.
+        """
+        return modal.modal_scaling(self._scope)

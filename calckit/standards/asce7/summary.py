@@ -24,6 +24,8 @@ SUPPLIERS = {
     "T_a": "asce7.approximate_period()",
     "T": "asce7.period()",
     "W": "asce7.seismic_weight()",
+    "V_t": 'methods.combine("V_m", ...) after asce7.modal_response()',
+    "C_sfloor1": "asce7.base_shear()",
     "V": "asce7.base_shear()",
     "C_s": "asce7.base_shear()",
     "V_x": "asce7.vertical_distribution()",

@@ -13,6 +13,7 @@ from calckit import units
 from calckit.core.calc import Calc
 from calckit.core.handle import Handle
 from calckit.errors import MismatchError
+from calckit.standards.asce7 import verify_modal
 
 Given = Mapping[str, Any]
 Results = dict[str, Any]
@@ -237,5 +238,6 @@ ADAPTERS: dict[str, Callable[[Given], Results]] = {
     "asce7.v.spectrum": _spectrum,
     "asce7.v.Cs": _coefficients,
     "asce7.v.Cu": _period_limit,
+    **verify_modal.ADAPTERS,
 }
 """What runs each check, by its id."""
