@@ -222,3 +222,13 @@ def test_modal_ordinates_under_exception_2_are_left_open() -> None:
     calc = prepared(site_class="D", supplements=(1,), study_exception="exception 2")
     calc.asce7.modal_response()
     assert any("exception 2" in text for text in open_flags(calc, "S_am"))
+
+
+def test_first_sheets_name_the_procedure(worked: Calc) -> None:
+    answer, drawings = assemble(worked).summaries
+    cells = {row.label: row.cells for row in (*answer.rows, *drawings.rows)}
+    assert cells["Analysis procedure"] == ["modal response spectrum"]
+    assert cells["Base shear, modes combined"] == [worked["V_t"].shown]
+    static = {row.label: row.cells for summary in assemble(whole()).summaries for row in summary.rows}
+    assert static["Analysis procedure"] == ["equivalent lateral force"]
+    assert "Base shear, modes combined" not in static
