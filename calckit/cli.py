@@ -120,6 +120,7 @@ def _parser() -> argparse.ArgumentParser:
 
     verify = commands.add_parser("verify", help="run the published checks of the kit")
     verify.add_argument("name", nargs="?", metavar="NAME", help="folder of a standard, or dynamics; default all")
+    verify.add_argument("--records", metavar="FOLDER", type=Path, help="folder of the recorded motions")
     verify.set_defaults(command=_verify)
     return parser
 
@@ -253,6 +254,6 @@ def _reconcile(arguments: argparse.Namespace) -> int:
 def _verify(arguments: argparse.Namespace) -> int:
     from calckit.core import checks
 
-    text, all_pass = checks.report(arguments.name)
+    text, all_pass = checks.report(arguments.name, arguments.records)
     print(text)
     return DONE if all_pass else MISMATCH

@@ -8,6 +8,7 @@ import tempfile
 import time
 from collections.abc import Callable
 from pathlib import Path
+from typing import Any
 
 ROOT = Path(__file__).parents[1]
 TEMPLATE = ROOT / "templates/building_lateral_force.ipynb"
@@ -80,6 +81,65 @@ def formulas() -> None:
     show("a user's own line, digits included", each(own_line, 50))
 
 
+def filtered(record: Any, dt: float, omega: float, damping: float) -> tuple[Any, Any]:
+    """Largest displacement and total acceleration of each row by scipy.signal.lfilter, from the same recurrence."""
+    import numpy as np
+    from scipy.signal import lfilter
+
+    from calckit.dynamics import recurrence
+
+    transition, start, end = recurrence(omega, damping, dt)
+    (a, b), (c, d) = transition
+    below = [1, -(a + d), a * d - b * c]
+    u = lfilter([end[0], start[0] + b * end[1] - d * end[0], b * start[1] - d * start[0]], below, -record)
+    v = lfilter([end[1], start[1] + c * end[0] - a * end[1], c * start[0] - a * start[1]], below, -record)
+    total = 2 * damping * omega * v + omega**2 * u
+    return np.abs(u).max(axis=1), np.abs(total).max(axis=1)
+
+
+def spectra(count: int = 50, samples: int = 20_000, natural: int = 200) -> None:
+    """Response spectra of a suite against a loop over the periods with scipy.signal.lfilter, equally refined."""
+    import numpy as np
+
+    from calckit.dynamics import response_spectrum
+    from calckit.dynamics.spectrum import STEPS, straight
+
+    dt, periods = 0.005, np.geomspace(0.05, 5, natural)
+    records = np.random.default_rng(1).normal(size=(count, samples))
+    records[:, 0] = 0  # lfilter takes the sample before the first as 0
+
+    def loop() -> Any:
+        found, parts = [], 2 ** np.ceil(np.log2(np.maximum(STEPS * dt / periods, 1))).astype(int)
+        finer: dict[int, Any] = {}
+        for period, part in zip(periods, parts.tolist(), strict=True):
+            if part not in finer:
+                rest = int(np.ceil(periods[parts == part].max() / 2 * part / dt))
+                finer = {part: np.pad(straight(records, part), ((0, 0), (0, rest)))}
+            found.append(filtered(finer[part], dt / part, 2 * np.pi / period, 0.05))
+        return np.array(found)
+
+    kept: dict[str, Any] = {}
+    ours = best(lambda: kept.update(a=response_spectrum(records, dt, periods, 0.05, refine="straight-line")), 2)
+    theirs = best(lambda: kept.update(b=loop()), 1)
+    apart = np.abs(kept["a"].displacement.T / kept["b"][:, 0] - 1).max()
+    beside = f"{ours / theirs:.2f} of a loop with lfilter; largest difference {apart:.0e}"
+    show(f"spectra, {count} records x {samples} samples x {natural} periods", ours, beside)
+
+
+def modal(freedoms: int = 200) -> None:
+    """Modes of a chain against scipy.linalg.eigh; in a process of one thread, where the two share no threads."""
+    import numpy as np
+    from scipy.linalg import eigh
+
+    from calckit.dynamics import modes, shear_building
+
+    random = np.random.default_rng(2)
+    mass, stiffness = random.uniform(0.5, 2, freedoms), shear_building(random.uniform(0.5, 2, freedoms))
+    ours = best(lambda: modes(mass, stiffness), 7)
+    theirs = best(lambda: eigh(stiffness, np.diag(mass)), 7)
+    show(f"modes of {freedoms} freedoms", ours, f"{ours / theirs:.2f} of scipy.linalg.eigh")
+
+
 def figures() -> None:
     """Drawings with their SVG."""
     from calckit import plots
@@ -94,5 +154,8 @@ def figures() -> None:
 
 if __name__ == "__main__":
     formulas()
+    spectra()
+    one_thread = os.environ | {"PYTHONPATH": str(ROOT), "OMP_NUM_THREADS": "1"}
+    subprocess.run([sys.executable, "-c", "from tests import bench; bench.modal()"], check=True, env=one_thread)
     figures()
     processes()

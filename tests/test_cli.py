@@ -94,11 +94,11 @@ def test_recheck_exit_codes_and_words(tmp_path: Path, capsys: Capture) -> None:
 def test_verify(passed: bool, code: int, monkeypatch: pytest.MonkeyPatch, capsys: Capture) -> None:
     asked = []
     checks = types.ModuleType("calckit.core.checks")
-    checks.report = lambda name: (asked.append(name) or "12 published checks", passed)  # type: ignore[attr-defined]
+    checks.report = lambda name, records: (asked.append((name, records)) or "12 published checks", passed)  # type: ignore[attr-defined]
     monkeypatch.setitem(sys.modules, "calckit.core.checks", checks)
     monkeypatch.setattr(calckit.core, "checks", checks, raising=False)
-    assert cli.main(["verify", "asce7"]) == cli.main(["verify"]) == code
-    assert asked == ["asce7", None]
+    assert cli.main(["verify", "asce7"]) == cli.main(["verify", "--records", "motions"]) == code
+    assert asked == [("asce7", None), (None, Path("motions"))]
     assert capsys.readouterr().out == "12 published checks\n" * 2
 
 

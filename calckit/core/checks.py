@@ -1,7 +1,7 @@
 """The checks of the kit against publications: read, run, compared, reported.
 
-Knows the form of a standard's `checks.toml` and how a result is compared with it; the standard's own `verify.py` runs
-each check through public steps. Must not know any standard.
+Knows the form of a `checks.toml` and how a result is compared with it; the `verify.py` beside it runs each check
+through public steps or functions. Must not know any standard.
 """
 
 from __future__ import annotations
@@ -10,14 +10,17 @@ import importlib
 import pkgutil
 import tomllib
 from collections.abc import Callable, Iterator, Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from importlib import resources
+from pathlib import Path
 from typing import Any
 
 from calckit.core.record import NOT_OK, OK
-from calckit.errors import CalckitError, MismatchError, UnknownNameError
+from calckit.errors import CalckitError, CommandError, MismatchError, UnknownNameError
 
 STANDARDS = "calckit.standards"
+ARRAYS = {"dynamics": ("calckit.dynamics", "calckit.motions")}
+"""Checks outside the standards, and the packages that hold them: those that need a record stand with the motions."""
 KINDS = {"found": "published, found", "memory": "published, from memory", "constructed": "constructed, not published"}
 """First word of `obtained` -> the count it belongs to."""
 
@@ -63,11 +66,12 @@ class Outcome:
     refusal: str = ""
 
 
-def report(name: str | None = None) -> tuple[str, bool]:
-    """Run the checks of a standard's folder (None: of all) and say, row by row, what agrees.
+def report(name: str | None = None, records: Path | None = None) -> tuple[str, bool]:
+    """Run the checks of a standard's folder or of dynamics (None: all) and say, row by row, what agrees.
 
-    Returns the text and whether every expectation that is reached agrees. Raises UnknownNameError for a name without
-    checks.
+    Arguments: `records`, the folder of the recorded motions that some checks name; a check whose file is not there is
+    said not to be reached. Returns the text and whether every expectation that is reached agrees. Raises
+    UnknownNameError for a name without checks, CommandError for a folder that is not there.
 
     >>> text, agrees = report("asce7")
     >>> agrees
@@ -76,19 +80,22 @@ def report(name: str | None = None) -> tuple[str, bool]:
     known = names()
     if name is not None and name not in known:
         raise UnknownNameError("checks", name, known)
+    if records is not None and not records.is_dir():
+        raise CommandError(f"{records} is no folder; cure: name the folder that holds the recorded motions")
     texts, agrees = [], True
     for each in [name] if name else known:
-        text, good = _report(each)
+        text, good = _report(each, records)
         texts.append(text)
         agrees &= good
     return "\n\n".join(texts), agrees
 
 
 def names() -> list[str]:
-    """The folders of standards that carry checks."""
+    """The folders of standards that carry checks, then the names in ARRAYS."""
     package = importlib.import_module(STANDARDS)
     folders = [module.name for module in pkgutil.iter_modules(package.__path__)]
-    return [name for name in folders if (resources.files(f"{STANDARDS}.{name}") / "checks.toml").is_file()]
+    carrying = [name for name in folders if (resources.files(f"{STANDARDS}.{name}") / "checks.toml").is_file()]
+    return [*carrying, *ARRAYS]
 
 
 def read(text: str) -> list[Check]:
@@ -102,6 +109,18 @@ def read(text: str) -> list[Check]:
         )
         for check in tomllib.loads(text)["check"]
     ]  # fmt: skip
+
+
+def with_record(check: Check, records: Path | None) -> Check:
+    """A check with the path of the recorded motion that it names, or with the reason why there is none."""
+    name = check.given.get("record")
+    if name is None or check.reason:
+        return check
+    if records is None:
+        return replace(check, reason=f"needs the record {name}: name its folder with --records")
+    if not (records / name).is_file():
+        return replace(check, reason=f"needs the record {name}, which is not in {records}")
+    return replace(check, given=check.given | {"record": records / name})
 
 
 def run(check: Check, adapter: Adapter) -> Outcome:
@@ -153,14 +172,17 @@ def _shown(value: Any) -> str:
     return f"{value:.8g}" if isinstance(value, float) else str(value)
 
 
-def _report(name: str) -> tuple[str, bool]:
-    package = f"{STANDARDS}.{name}"
-    checks = read((resources.files(package) / "checks.toml").read_text(encoding="utf-8"))
-    adapters: Mapping[str, Adapter] = importlib.import_module(f"{package}.verify").ADAPTERS
-    reached = [check for check in checks if not check.reason]
-    unmatched = sorted({check.id for check in reached} ^ adapters.keys())
+def _report(name: str, records: Path | None) -> tuple[str, bool]:
+    checks: list[Check] = []
+    adapters: dict[str, Adapter] = {}
+    for package in ARRAYS.get(name, (f"{STANDARDS}.{name}",)):
+        checks += read((resources.files(package) / "checks.toml").read_text(encoding="utf-8"))
+        adapters |= importlib.import_module(f"{package}.verify").ADAPTERS
+    unmatched = sorted({check.id for check in checks if not check.reason} ^ adapters.keys())
     if unmatched:
         raise MismatchError(f"checks of {name}: {', '.join(unmatched)} stand in checks.toml or in verify.py alone")
+    checks = [with_record(check, records) for check in checks]
+    reached = [check for check in checks if not check.reason]
     outcomes = {check.id: run(check, adapters[check.id]) for check in reached}
     lines = [line for check in reached for line in (*_block(check, outcomes[check.id]), "")]
     lines += [*_counts(checks, outcomes), "", *_left_out(checks)]

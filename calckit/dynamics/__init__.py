@@ -5,7 +5,9 @@ Knows oscillators, modes and their combination. Must not know units, lines, stan
 
 from calckit.dynamics.closed_forms import (
     amplification,
+    cycles_to_decay,
     cycles_to_halve,
+    damping_from_decay,
     half_sine_pulse,
     ramp,
     rectangular_pulse,
@@ -31,9 +33,9 @@ from calckit.dynamics.spectrum import Spectrum, response_spectrum
 from calckit.dynamics.stepping import period_ratio, stability_limit, step_by_step
 
 __all__ = [
-    "Modes", "Response", "Spectrum", "amplification", "combine", "correlation", "cycles_to_halve", "energy_period",
-    "flexural_cantilever", "half_sine_pulse", "modes", "oscillator_response", "period_ratio", "ramp",
-    "rayleigh_damping", "rayleigh_quotient", "rectangular_pulse", "recurrence", "resonance_build_up",
-    "resonance_peak", "response_spectrum", "shear_building", "shear_cantilever", "stability_limit", "step_by_step",
-    "step_peak", "symmetric_triangular_pulse",
+    "Modes", "Response", "Spectrum", "amplification", "combine", "correlation", "cycles_to_decay",
+    "cycles_to_halve", "damping_from_decay", "energy_period", "flexural_cantilever", "half_sine_pulse", "modes",
+    "oscillator_response", "period_ratio", "ramp", "rayleigh_damping", "rayleigh_quotient", "rectangular_pulse",
+    "recurrence", "resonance_build_up", "resonance_peak", "response_spectrum", "shear_building", "shear_cantilever",
+    "stability_limit", "step_by_step", "step_peak", "symmetric_triangular_pulse",
 ]  # fmt: skip

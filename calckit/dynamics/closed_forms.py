@@ -152,11 +152,40 @@ def _stationary(x: float) -> Array:
     return np.append(times[(times >= x / 2) & (times <= x)], x / 2)
 
 
+def cycles_to_decay(ratio: ArrayLike, damping: ArrayLike) -> Array:
+    """The cycles of free vibration after which the amplitude is 1/`ratio` of what it was.
+
+    >>> round(float(cycles_to_decay(10.0, 0.02757)), 2)
+    13.29
+    """
+    zeta, times = _damping("cycles_to_decay", damping, least=1), _above_one("cycles_to_decay", ratio)
+    return np.asarray(np.log(times) * np.sqrt(1 - zeta**2) / (2 * np.pi * zeta))
+
+
 def cycles_to_halve(damping: ArrayLike) -> Array:
     """The cycles of free vibration after which the amplitude is half of what it was.
 
     >>> cycles_to_halve([0.01, 0.05]).round(3).tolist()
     [11.031, 2.204]
     """
-    zeta = _damping("cycles_to_halve", damping, least=1)
-    return np.asarray(np.log(2) * np.sqrt(1 - zeta**2) / (2 * np.pi * zeta))
+    return cycles_to_decay(2.0, damping)
+
+
+def damping_from_decay(ratio: ArrayLike, cycles: ArrayLike) -> Array:
+    """The damping ratio of free vibration whose amplitude falls to 1/`ratio` in `cycles`, exact for any damping.
+
+    >>> round(float(damping_from_decay(2.0, 4)), 5)
+    0.02757
+    """
+    times, j = _above_one("damping_from_decay", ratio), _ratio("damping_from_decay", "cycles", cycles)
+    decrement = np.log(times) / j
+    return np.asarray(decrement / np.hypot(2 * np.pi, decrement))
+
+
+def _above_one(where: str, ratio: ArrayLike) -> Array:
+    read = Arguments(where)
+    found = read.numbers("ratio", ratio)
+    if (found <= 1).any():
+        read.fault("ratio", "numbers above 1, the amplitude before over the one after", f"{found.min():g}")
+    read.settle()
+    return found

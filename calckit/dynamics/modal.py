@@ -51,11 +51,13 @@ def modes(
     read = Arguments("modes")
     m, k = read.numbers("mass", mass, (1, 2)), read.numbers("stiffness", stiffness, (2,))
     n = len(m)
-    full = m if m.ndim == 2 else np.diag(m)
-    for name, matrix in (("mass", full), ("stiffness", k)):
-        if matrix.shape != (n, n):
+    for name, matrix in (("mass", m), ("stiffness", k)):
+        if matrix.ndim == 1:
+            if (matrix <= 0).any():
+                read.fault(name, "numbers above 0", f"{matrix.min():g}", "give every freedom a mass")
+        elif matrix.shape != (n, n):
             read.fault(name, f"a matrix of {n} rows and columns", f"shape {matrix.shape}")
-        elif not np.allclose(matrix, matrix.T, rtol=1e-9, atol=1e-9 * float(np.abs(matrix).max())):
+        elif np.abs(matrix - matrix.T).max() > 1e-9 * np.abs(matrix).max():
             read.fault(name, "a symmetric matrix", "one that is not", "check the entries on both sides of the diagonal")
     r = np.ones(n) if influence is None else read.numbers("influence", influence, (1,))
     h = None if heights is None else read.numbers("heights", heights, (1,))
@@ -63,23 +65,32 @@ def modes(
         if vector is not None and vector.shape != (n,):
             read.fault(name, f"{n} numbers, one for each freedom", f"{vector.size}")
     read.settle()
+    squares, shapes = _solved(read, m, k)
+    if squares[0] <= 1e-12 * squares[-1]:
+        read.fault("stiffness", "a positive definite matrix", "one that is not", "hold the structure at its base")
+        read.settle()
+    shapes = shapes / _scale(shapes)
+    weighed = m[:, None] * shapes if m.ndim == 1 else m @ shapes
+    modal_masses, excited = (shapes * weighed).sum(axis=0), r @ weighed
+    omega = np.sqrt(squares)
+    tall = None if h is None else h @ weighed / np.where(excited == 0, np.nan, excited)
+    participation = excited / modal_masses
+    return Modes(2 * np.pi / omega, omega, shapes, participation, participation * excited, tall)
+
+
+def _solved(read: Arguments, m: Array, k: Array) -> tuple[Array, Array]:
+    """Squares of the frequencies and shapes, lowest first, by way of the root of the mass."""
+    if m.ndim == 1:
+        root = 1 / np.sqrt(m)[:, None]
+        squares, vectors = np.linalg.eigh(root * k * root.T)
+        return squares, root * vectors
     try:
-        inverse = np.linalg.inv(np.linalg.cholesky(full))
+        inverse = np.linalg.inv(np.linalg.cholesky(m))
     except np.linalg.LinAlgError:
         read.fault("mass", "a positive definite matrix", "one that is not", "give every freedom a mass")
         read.settle()
     squares, vectors = np.linalg.eigh(inverse @ k @ inverse.T)
-    if squares[0] <= 1e-12 * squares[-1]:
-        read.fault("stiffness", "a positive definite matrix", "one that is not", "hold the structure at its base")
-        read.settle()
-    shapes = inverse.T @ vectors
-    shapes = shapes / _scale(shapes)
-    modal_masses = np.einsum("in,ij,jn->n", shapes, full, shapes)
-    excited = shapes.T @ full @ r
-    omega = np.sqrt(squares)
-    tall = None if h is None else shapes.T @ full @ h / np.where(excited == 0, np.nan, excited)
-    participation = excited / modal_masses
-    return Modes(2 * np.pi / omega, omega, shapes, participation, participation * excited, tall)
+    return squares, inverse.T @ vectors
 
 
 def _scale(shapes: Array) -> Array:

@@ -41,7 +41,11 @@ def recurrence(omega: ArrayLike, damping: ArrayLike, dt: float) -> tuple[Array, 
 
 
 def scaled(h: Array, damping: Array) -> tuple[Array, Array, Array]:
-    """Transition of (u, v/omega), and what omega^2-fold displacements p/omega^2 at both ends add."""
+    """The step for h = omega dt: transition of (u, v/omega), and what p/omega^2 at its start and at its end adds.
+
+    >>> [part.round(4).tolist() for part in scaled(np.array(2*np.pi*0.1), np.array(0.05))]
+    [[[0.8129, 0.5697], [-0.5697, 0.756]], [0.1236, 0.272], [0.0635, 0.2977]]
+    """
     h, damping = np.broadcast_arrays(h, damping)
     generator = np.zeros((*h.shape, 2, 2))
     generator[..., 0, 1], generator[..., 1, 0], generator[..., 1, 1] = 1, -1, -2 * damping

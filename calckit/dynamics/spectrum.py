@@ -23,7 +23,7 @@ STEPS = 50
 COARSE = 20
 """Samples to a period below which the band-limited curve is taken, where it is asked for."""
 _MOST = 64
-_SAMPLES = 4_000_000  # refined samples worked at once, which bounds the memory
+_SAMPLES, _STATES = 4_000_000, 200_000_000  # refined samples, and states from them, worked at once: under 300 MB
 
 
 @dataclass(frozen=True)
@@ -73,21 +73,24 @@ def response_spectrum(
     parts = np.minimum(2 ** np.ceil(np.log2(np.maximum(STEPS * dt / natural, 1))), _MOST).astype(int)
     displacement, total = (np.empty((len(zeta), len(records), len(natural))) for _ in range(2))
     for curve, count in sorted(set(zip(curves, parts.tolist(), strict=True))):
-        chosen = np.array([pair == (curve, count) for pair in zip(curves, parts.tolist(), strict=True)])
+        chosen = np.array([i for i, pair in enumerate(zip(curves, parts.tolist(), strict=True)) if pair == (curve, count)])
         step, rest = dt / count, float(natural[chosen].max()) / 2
         at_once = max(1, _SAMPLES // (records.shape[1] * count))
         for first in range(0, len(records), at_once):
             some = slice(first, first + at_once)
             finer = lengthened(_REFINED[curve](records[some], count), step, rest)
-            displacement[:, some, chosen], total[:, some, chosen] = _peaks(finer, step, natural[chosen], zeta)
+            together = max(1, _STATES // (finer.size * len(zeta)))
+            for places in np.split(chosen, range(together, len(chosen), together)):
+                peaks = _peaks(finer, step, natural[places], zeta)
+                displacement[:, some, places], total[:, some, places] = peaks
     omega = 2 * np.pi / natural
 
     def settled(array: Array) -> Array:
         array = array if np.ndim(acceleration) == 2 else array[:, 0]
         return array if np.ndim(damping) else array[0]
 
-    peaks = (displacement, displacement * omega, displacement * omega**2, total)
-    return Spectrum(natural, zeta, *map(settled, peaks), curves)
+    kinds = (displacement, displacement * omega, displacement * omega**2, total)
+    return Spectrum(natural, zeta, *map(settled, kinds), curves)
 
 
 def _peaks(records: Array, dt: float, periods: Array, damping: Array) -> tuple[Array, Array]:

@@ -95,11 +95,11 @@ def read_motion(
         read.fault("data", "at least 2 values", f"{values.size}")
     read.settle()
     samples = values * factor
-    notes = [*_header_notes(page.header, values.size), *_sample_notes(samples, dt)]
+    notes = [*_header_notes(page.header, values.size)]
     if zero_first:
         samples = np.concatenate([[0.0], samples])
         notes.append("a(0) = 0 was put in front")
-    return Motion(name, samples, dt, kind, tuple(notes))
+    return Motion(name, samples, dt, kind, (*notes, *_sample_notes(samples, dt)))
 
 
 @dataclass(frozen=True)

@@ -74,5 +74,5 @@ def test_refusal_makes_every_value_not_ok() -> None:
 
 
 def test_unknown_name_lists_the_known() -> None:
-    with pytest.raises(UnknownNameError, match=r"checks 'asce8' is not known; known: asce7"):
+    with pytest.raises(UnknownNameError, match=r"checks 'asce8' is not known; known: asce7, dynamics"):
         checks.report("asce8")

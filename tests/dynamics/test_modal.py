@@ -105,6 +105,8 @@ def test_bad_matrices_are_named() -> None:
         modes([1, 1], [[1, -1], [-1, 1]])
     with pytest.raises(InputError, match="mass: needed a positive definite matrix"):
         modes([[1, 2], [2, 1]], [[2, -1], [-1, 1]])
+    with pytest.raises(InputError, match="mass: needed numbers above 0; given 0; cure: give every freedom a mass"):
+        modes([1, 0], [[2, -1], [-1, 1]])
     with pytest.raises(InputError, match="heights: needed 2 numbers"):
         modes([1, 1], [[2, -1], [-1, 1]], heights=[1, 2, 3])
     with pytest.raises(InputError, match="one entry for each frequency"):

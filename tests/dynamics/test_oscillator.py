@@ -96,6 +96,17 @@ def test_stack_is_each_record_alone() -> None:
     assert together.pseudo_acceleration.shape == (3, 3)
 
 
+def test_work_done_in_parts_is_the_same(monkeypatch: pytest.MonkeyPatch) -> None:
+    stack, periods = np.stack([RECORD, RECORD[::-1], 2 * RECORD]), np.geomspace(0.02, 3, 23)
+    whole = response_spectrum(stack, DT, periods, [0.02, 0.1])
+    monkeypatch.setattr("calckit.dynamics.spectrum._SAMPLES", 5_000)
+    monkeypatch.setattr("calckit.dynamics.spectrum._STATES", 20_000)
+    monkeypatch.setattr("calckit.dynamics.blocks._COLUMNS", 40)
+    parts = response_spectrum(stack, DT, periods, [0.02, 0.1])
+    assert parts.displacement == pytest.approx(whole.displacement, rel=1e-10)
+    assert parts.total_acceleration == pytest.approx(whole.total_acceleration, rel=1e-10)
+
+
 def test_pseudo_and_total_are_told_apart() -> None:
     # at high damping the total acceleration is well above the pseudo-acceleration
     found = response_spectrum(RECORD, DT, [0.5], 0.5)
@@ -123,6 +134,22 @@ def test_band_limited_curve_through_the_samples_of_a_known_wave() -> None:
     found = band_limited(wave[None], 4)[0]
     assert found[::4] == pytest.approx(wave, abs=1e-12)
     assert np.abs(found - exact).max() < 0.02 < np.abs(straight(wave[None], 4)[0] - exact).max()
+
+
+def test_short_periods_against_a_finer_record() -> None:
+    # five samples to a period; each record holds nothing above 0.4 of the coarse sampling rate and is known 32 times
+    # finer
+    random, samples, parts = np.random.default_rng(8), 512, 32
+    lines = np.fft.rfft(random.normal(size=(30, samples)) * np.hanning(samples) ** 2, axis=1)
+    lines[:, int(0.4 * samples) :] = 0
+    fine = np.fft.irfft(lines, samples * parts, axis=1) * parts
+    exact = response_spectrum(fine, DT / parts, [5 * DT], 0.05).pseudo_acceleration
+    errors = {
+        refine: (response_spectrum(fine[:, ::parts], DT, [5 * DT], 0.05, refine=refine).pseudo_acceleration / exact - 1)
+        for refine in ("band-limited", "straight-line")
+    }
+    assert abs(errors["band-limited"].mean()) < 0.01
+    assert errors["straight-line"].mean() < -0.05  # the straight line loses part of the shortest waves
 
 
 def test_peak_after_the_end_of_the_record_is_found() -> None:

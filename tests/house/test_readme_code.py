@@ -10,7 +10,7 @@ from calckit import Calc, plots
 from tests.house import source
 
 BLOCKS = re.findall(r"```python\n(.*?)```", source.text_files()["README.md"], re.DOTALL)
-INPUTS, OWN_LINES, BOUND, OVERRIDE, CONFIRM = BLOCKS
+INPUTS, OWN_LINES, BOUND, OVERRIDE, CONFIRM, ARRAYS = BLOCKS
 REGISTER = re.search(r"```\n(standard,.*?)```", source.text_files()["README.md"], re.DOTALL)
 
 
@@ -44,6 +44,17 @@ def test_the_blocks_run_in_a_calculation(tmp_path: Path, monkeypatch: pytest.Mon
     assert calc.enclosures["H-2"].page_numbers() == [1, 2]
     assert [figure.caption for figure in calc.lines.figures.values()] == ["What X.V rests on"]
     assert x["R"].line.source.confirmed == "confirmed in office copy of ASCE/SEI 7-16 by J. Example, 2026-12-01"
+
+
+def test_the_arrays_are_worked(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> None:
+    monkeypatch.chdir(tmp_path)
+    Path("north.txt").write_text("made by hand, 5 points, dt = 0.02 s\n0 0.1 -0.2 0.1 0\n")
+    names: dict[str, object] = {}
+    exec(ARRAYS, names)
+    assert names["spectrum"].pseudo_acceleration.shape == (3,)  # type: ignore[attr-defined]
+    assert "ends with 1 value of zero, which may be padding (kept)" in capsys.readouterr().out
 
 
 def test_the_register_is_read() -> None:
