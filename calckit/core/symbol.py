@@ -23,6 +23,7 @@ KINDS = {
     "moment": ("kip*ft", "kN*m"),
     "area": ("ft**2", "m**2"),
     "pressure": ("psf", "kPa"),
+    "velocity": ("in/s", "m/s"),
     "acceleration": ("ft/s**2", "m/s**2"),
     "other": ("", ""),
 }

@@ -8,10 +8,11 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from calckit.core.handle import Handles
-from calckit.methods import combining, modal
+from calckit.methods import combining, modal, records
 
 if TYPE_CHECKING:
     from calckit.core.writer import Writer
+    from calckit.motions import Motion
 
 
 class Methods:
@@ -83,3 +84,68 @@ class Methods:
         quantity. Raises InputError.
         """
         return combining.combine(self._scope, names, rule, into)
+
+    def motion(self, motion: Motion, source: str, *, number: int = 1) -> Handles:
+        """What ground motion `number` is, and its measures: PGA, PGV, PGD, Arias intensity, duration, CAV.
+
+        `motion` comes from `calckit.motions`, `source` names its document. Writes motion_1, PGA_1, ...; v_end1 says how
+        much velocity is left at the end. Raises InputError.
+
+        >>> from calckit import Calc, motions
+        >>> calc = Calc(project="Demo", number="D-1")
+        >>> calc.document("R-1", title="Made motion")
+        >>> shake = motions.filtered_noise(1, peak=2.0, duration=10.0)
+        >>> calc.methods.motion(shake, "R-1")[1]
+        PGA_1 = 0.2039
+        >>> _ = calc.assume("zeta", 0.05, basis="demo")
+        >>> _ = calc.rows("points", "point, T_p [s]\\n1, 0.2\\n2, 1.0", source="R-1", meanings={"T_p": "period"})
+        >>> calc.methods.frequency_content(shake)[0].line.unit
+        's'
+        >>> calc.methods.record_spectrum(shake, periods="T_p")[2].line.symbol
+        'PSA_1'
+        >>> T, PSA = calc.methods.spectrum_curve(shake, longest=2.0)
+        >>> _ = calc.rows("target", "point, S_p\\n1, 1.0\\n2, 0.4", source="R-1", meanings={"S_p": "target"})
+        >>> calc.methods.scale(1, target="S_p", share=0.9)[-1].line.symbol
+        'r_target'
+        """
+        return records.motion(self._scope, motion, source, number)
+
+    def frequency_content(self, motion: Motion, *, number: int = 1) -> Handles:
+        """Dominant period T_dom1 and mean period T_mean1 of a motion, with the residual of its Fourier amplitudes."""
+        return records.frequency_content(self._scope, motion, number)
+
+    def record_spectrum(
+        self, motion: Motion, *, number: int = 1, periods: str = "T_r", refine: str = "band-limited"
+    ) -> Handles:
+        """SD_1, PSV_1 and PSA_1 of a motion at the periods of a list line, with the damping ratio zeta.
+
+        `periods` is the symbol of that list, `refine` what is taken between the samples at short periods,
+        "band-limited" or "straight-line". r_PSA1 says how far an ordinate moves where the step is halved.
+        """
+        return records.record_spectrum(self._scope, motion, number, periods, refine)
+
+    def spectrum_curve(self, motion: Motion, longest: float) -> tuple[list[float], list[float]]:
+        """Periods in s up to `longest` and pseudo-accelerations as fractions of g, for a figure; writes no line."""
+        return records.spectrum_curve(self._scope, motion, longest)
+
+    def suite(self, count: int, *, periods: str = "T_r") -> Handles:
+        """Mean, median and dispersion of PSA_1 to PSA_`count`, period by period.
+
+        >>> from calckit import Calc
+        >>> calc = Calc(project="Demo", number="D-1")
+        >>> calc.document("R-1", title="Spectra")
+        >>> names = {"T_p": "period", "PSA_1": "motion 1", "PSA_2": "motion 2"}
+        >>> _ = calc.rows("s", "point, T_p [s], PSA_1, PSA_2\\n1, 0.2, 1, 4\\n2, 1, 2, 2", source="R-1", meanings=names)
+        >>> calc.methods.suite(2, periods="T_p")
+        [PSA_mean = 2.500, 2.000, PSA_med = 2.000, 2.000, s_ln = 0.9803, 0.0000]
+        """
+        return records.suite(self._scope, count, periods)
+
+    def scale(self, count: int, *, target: str = "S_a", share: float | None = None) -> Handles:
+        """The factors f_s that bring PSA_1 to PSA_`count` nearest to a target, a list line at the same periods.
+
+        Least squares of the logarithms; with `share`, all are then lifted or lowered together until the lowest ratio of
+        mean to target is `share`. Writes the mean of the scaled motions and r_target; the choice of periods is the
+        range of scaling.
+        """
+        return records.scale(self._scope, count, target, share)

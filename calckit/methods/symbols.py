@@ -1,4 +1,4 @@
-"""The symbols that the methods take and write; those of one mode are declared for mode n.
+"""The symbols that the methods take and write; those of one mode or motion are declared for n.
 
 Knows names, meanings and kinds of quantity. Must not know how a value comes about.
 """
@@ -27,6 +27,26 @@ _ALL = (
     Symbol("r_orth", "residual of the modes: largest coupling of two modes by the masses, not above", sub="orth"),
     Symbol("r_stories", "largest difference between the pasted story values of a mode and its modal weight",
            sub="stories"),
+    Symbol("f_s", "scale factor of each motion", low=0, low_open=True, index="motion"),
+    Symbol("f_common", "part of the scale factors that lifts or lowers all motions alike", sub="common"),
+    Symbol("PSA_mean", "pseudo-acceleration, mean of the motions, as a fraction of g", sub="mean", index="point"),
+    Symbol("PSA_med", "pseudo-acceleration, median of the motions, as a fraction of g", sub="med", index="point"),
+    Symbol("s_ln", "dispersion: standard deviation of the logarithm of the pseudo-acceleration", sub="ln",
+           index="point"),
+    Symbol("PSA_scaled", "pseudo-acceleration, mean of the scaled motions, as a fraction of g", sub="scaled",
+           index="point"),
+    Symbol("r_target", "mean of the scaled motions over the target", sub="target", index="point"),
+    Symbol("f_T", "factor by which a damaged structure's period is longer than the elastic one", low=1),
+    Symbol("T_el", "elastic period of the structure", "time", sub="el"),
+    Symbol("T_long", "lengthened period of the structure", "time", sub="long"),
+    Symbol("T_site", "dominant period of the site", "time", low=0, low_open=True, sub="site"),
+    Symbol("T_b", "elastic and lengthened period", "time", index="period"),
+    Symbol("S_ab", "design ordinate at these periods, as a fraction of g", sub="ab", index="period"),
+    Symbol("PSA_b", "pseudo-acceleration of the motion at these periods, as a fraction of g", sub="b", index="period"),
+    Symbol("r_code", "pseudo-acceleration of the motion over the design ordinate", sub="code", index="period"),
+    Symbol("r_ground", "pseudo-acceleration over the peak ground acceleration", sub="ground", index="period"),
+    Symbol("r_dom", "period over the dominant period of the motion", sub="dom", index="period"),
+    Symbol("r_site", "period over the dominant period of the site", sub="site", index="period"),
 )  # fmt: skip
 
 _OF_MODE = (
@@ -41,6 +61,28 @@ _OF_MODE = (
     Symbol("rho_n", "correlation of each mode with mode n", index="mode"),
 )
 
+_OF_MOTION = (
+    Symbol("motion_n", "ground motion n", "words"),
+    Symbol("PGA_n", "peak ground acceleration of motion n, as a fraction of g"),
+    Symbol("PGV_n", "peak ground velocity of motion n", "velocity"),
+    Symbol("PGD_n", "peak ground displacement of motion n", "displacement"),
+    Symbol("I_An", "Arias intensity of motion n", "velocity", sub="A,n"),
+    Symbol("D_n", "significant duration of motion n, between 5 and 95 percent of the energy", "time", sub="5-95,n"),
+    Symbol("CAV_n", "cumulative absolute velocity of motion n", "velocity"),
+    Symbol("v_endn", "velocity left at the end of motion n, over its peak", sub="end,n"),
+    Symbol("T_domn", "dominant period of motion n, of its largest Fourier amplitude", "time", sub="dom,n"),
+    Symbol("T_meann", "mean period of motion n", "time", sub="mean,n"),
+    Symbol("r_Fn", "residual of the Fourier amplitudes of motion n: energy by frequency against energy in time",
+           sub="F,n"),
+    Symbol("f_sn", "scale factor of motion n", sub="s,n"),
+    Symbol("SD_n", "spectral displacement of motion n", "displacement", index="point"),
+    Symbol("PSV_n", "pseudo-velocity of motion n", "velocity", index="point"),
+    Symbol("PSA_n", "pseudo-acceleration of motion n, as a fraction of g", index="point"),
+    Symbol("r_PSAn", "residual of the spectrum of motion n: largest change where its step is halved", digits=2,
+           sub="PSA,n"),
+)  # fmt: skip
+OF_MOTION = {symbol.name: symbol for symbol in _OF_MOTION}
+"""Symbols of a numbered series, one for each ground motion."""
 OF_MODE = {symbol.name: symbol for symbol in _OF_MODE}
 """Symbols of a numbered series, one for each mode."""
 
@@ -52,5 +94,7 @@ SUPPLIERS = {
     **dict.fromkeys(("T_m", "W_m", "r_m", "r_sum", "modal_model"), _MODES),
     "k_x": 'rows("stories", "level, k_x [kip/in]...", source=...)',
     "rho_1": "methods.correlation()",
+    **{f"PSA_{number}": f"methods.record_spectrum(motion, number={number})" for number in range(1, 12)},
+    "T_r": "a list of periods: asce7.spectrum_ordinates([...]), or rows(...) under a name of its own",
 }
 """What supplies a symbol that is missing."""
