@@ -5,10 +5,11 @@ Knows the public names and what each step takes and writes. Must not know how a 
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
 from calckit.core.handle import Handles
-from calckit.methods import combining, modal, records
+from calckit.methods import combining, modal, records, resonance
 
 if TYPE_CHECKING:
     from calckit.core.writer import Writer
@@ -149,3 +150,25 @@ class Methods:
         range of scaling.
         """
         return records.scale(self._scope, count, target, share)
+
+    def resonance(
+        self, motion: Motion, design: tuple[Sequence[float], Sequence[float]], *, number: int = 1, period: str = "T"
+    ) -> Handles:
+        """Where the structure's periods stand beside those of the ground: information, never a verdict.
+
+        Takes `period` (a symbol), the stated factor f_T by which a damaged structure's period is longer, zeta, T_dom1
+        and PGA_1, and T_site where it stands; `design` is what `asce7.spectrum_curve()` gives. Writes the ratios of
+        periods and of ordinates and a note in plain words. Raises InputError.
+
+        >>> from calckit import Calc, motions
+        >>> calc = Calc(project="Demo", number="D-1")
+        >>> calc.document("R-1", title="Made motion")
+        >>> shake = motions.filtered_noise(1, peak=2.0, duration=10.0)
+        >>> _, _ = calc.methods.motion(shake, "R-1"), calc.methods.frequency_content(shake)
+        >>> for name, value in (("zeta", 0.05), ("T", "0.6 s"), ("f_T", 1.4)):
+        ...     _ = calc.assume(name, value, basis="demo")
+        >>> made = calc.methods.resonance(shake, ([0.0, 0.5, 2.0], [1.0, 1.0, 0.25]))
+        >>> made[0], made[-1].line.text[:46]
+        (T_b = 0.6000, 0.8400, 'Information, not a requirement of the standard')
+        """
+        return resonance.resonance(self._scope, motion, number, period, design)

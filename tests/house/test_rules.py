@@ -16,7 +16,7 @@ MOST_LINES = 500
 
 SHOWN = {
     "calckit.core.calc", "calckit.core.writer", "calckit.core.handle", "calckit.units", "calckit.plots.levels",
-    "calckit.plots.spectrum", "calckit.standards.asce7.steps",
+    "calckit.plots.spectrum", "calckit.plots.motions", "calckit.standards.asce7.steps",
     "calckit.methods.steps",
     "calckit.dynamics.closed_forms", "calckit.dynamics.combination", "calckit.dynamics.modal",
     "calckit.dynamics.oscillator", "calckit.dynamics.recurrence", "calckit.dynamics.spectrum",

@@ -44,7 +44,8 @@ def test_measures_of_a_sine() -> None:
     unit = 0.0254
     assert calc["PGA_1"].value == pytest.approx(np.sin(0.48 * np.pi) / G, rel=1e-9)  # no sample stands at the crest
     assert calc["I_A1"].value * unit == pytest.approx(0.800883, abs=1e-6)
-    assert calc["CAV_1"].value * unit == pytest.approx(20 / np.pi, rel=1e-3)
+    # straight lines between the samples lose 0.13 % of the area under the sine
+    assert calc["CAV_1"].value * unit == pytest.approx(20 / np.pi, rel=1.5e-3)
     assert calc["D_1"].value == pytest.approx(9.0, abs=1e-6)
     assert calc["v_end1"].value == pytest.approx(0, abs=1e-9)
     flags = [flag.text for flag in calc["motion_1"].line.flags]
