@@ -83,6 +83,11 @@ class Scope:
         """The line a name stands for here, or None."""
         return self.book.find(self.id, name)
 
+    def absent(self, name: str) -> bool:
+        """Whether nothing stands for a name but what an earlier run of this very cell wrote, which goes with it."""
+        entry, cell = self.find(name), this_cell()
+        return entry is None or (entry.cell.key == cell.key and entry.cell.run < cell.run)
+
     def word(self, name: str) -> str | None:
         """The word or text value a name stands for here, None if there is no line or it says none."""
         entry = self.find(name)

@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from calckit import dynamics, units
-from calckit.core.handle import Handle, Handles
+from calckit.core.handle import Handles
 from calckit.core.record import Source
 from calckit.core.series import numbered, symbol_of
 from calckit.core.symbol import Symbol
@@ -78,8 +78,13 @@ def combine(scope: Writer, names: Sequence[str], rule: str, into: str) -> Handle
     faults += [scope.missing(each) for lines in by_mode.values() for each in lines if scope.find(each) is None]
     if faults:
         raise InputError("methods.combine", faults)
+    results = [into or f"{name[:-1]}t" for name in names]
     with scope.step():
-        return Handles(_combined(scope, name, by_mode[name], rule, into or f"{name[:-1]}t") for name in names)
+        pairs = zip(names, results, strict=True)
+        apart = [_combined(scope, name, by_mode[name], rule, result) for name, result in pairs]
+        if rule == "CQC":
+            _write_residual(scope, results, max(apart))
+        return Handles(scope[result] for result in results)
 
 
 def _lines_of(name: str, count: int) -> list[str]:
@@ -87,11 +92,11 @@ def _lines_of(name: str, count: int) -> list[str]:
     return [name] if name.endswith("m") else [numbered(name, number) for number in range(1, count + 1)]
 
 
-def _combined(scope: Writer, name: str, lines: Sequence[str], rule: str, into: str) -> Handle:
+def _combined(scope: Writer, name: str, lines: Sequence[str], rule: str, into: str) -> float:
+    """Write what one quantity combines to; returns how far it is from the declared coefficient's sum (CQC)."""
     unit = scope[lines[0]].unit
-    # (modes, ...): signed
     values = np.array([_listed(scope, each, unit) for each in lines])
-    values = values[0] if name.endswith("m") else values
+    values = values[0] if name.endswith("m") else values  # (modes, ...): signed
     first = scope.symbol(lines[0])
     if into not in scope.calc.standard.symbols:
         meaning = first.meaning.replace("in mode 1", "of the modes combined").replace("of each mode", "of the modes")
@@ -102,17 +107,20 @@ def _combined(scope: Writer, name: str, lines: Sequence[str], rule: str, into: s
     method = Method(WORDS[rule], _SOURCES[rule], rests)
     frequencies, zeta = 1 / _listed(scope, "T_m"), scope.number("zeta") or 1.0
     found = dynamics.combine(values, frequencies, zeta, rule)
-    residual = _apart(values, found, frequencies, zeta) if rule == "CQC" else None
     if found.ndim:
-        handle = write_list(scope, into, found, unit, scope[lines[0]].rows, method)
+        write_list(scope, into, found, unit, scope[lines[0]].rows, method)
     else:
-        handle = write_number(scope, into, float(found), unit, method)
-    if residual is not None:
-        id_ = f"r_{into.replace('_', '')}"
-        meaning = f"residual of {scope.plain(into)}: difference from the sum with the declared coefficient, not above"
-        scope.calc.own_symbols[id_] = Symbol(id_, meaning)
-        write_residual(scope, id_, residual, Method("double sum over all pairs of modes", formulas.CQC, (into,)))
-    return handle
+        write_number(scope, into, float(found), unit, method)
+    return _apart(values, found, frequencies, zeta) if rule == "CQC" else 0.0
+
+
+def _write_residual(scope: Writer, results: Sequence[str], value: float) -> None:
+    """One residual for all quantities of a call, named after the first."""
+    id_ = f"r_{results[0].replace('_', '')}"
+    listed = ", ".join(scope.plain(result) for result in results)
+    meaning = f"residual of {listed}: largest difference from the sum with the declared coefficient, not above"
+    scope.calc.own_symbols[id_] = Symbol(id_, meaning)
+    write_residual(scope, id_, value, Method("double sum over all pairs of modes", formulas.CQC, tuple(results)))
 
 
 def _apart(values: np.ndarray, found: np.ndarray, frequencies: np.ndarray, zeta: float) -> float:

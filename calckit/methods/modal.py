@@ -34,7 +34,7 @@ def modes(scope: Writer, stiffness: str, source: str, count: int | None, worked:
     with scope.step():
         columns = _matrix(scope, stiffness, source) if stiffness else ["k_x"]
         levels = _levels(scope, ["w_x", "h_x", *columns])
-        if scope.find("g") is None:
+        if scope.absent("g"):
             scope.state("g", GRAVITY, "table", STANDARD_GRAVITY)
         weights, heights = (_si(scope, name)[::-1] for name in ("w_x", "h_x"))
         matrix = (

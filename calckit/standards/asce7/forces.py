@@ -166,17 +166,10 @@ def vertical_distribution(scope: Scope) -> Handle:
 def drift(scope: Scope) -> Handle:
     """Amplified displacements and story drifts against the allowable drift; NOT CHECKED without displacements."""
     title = "Story drift"
-    risk, kind = scope.word("risk_category"), scope.word("drift_class")
-    faults = [scope.missing(name) for name, word in (("risk_category", risk), ("drift_class", kind)) if word is None]
-    if faults or risk is None or kind is None:
-        raise InputError("asce7.drift", faults)
     with scope.step():
-        scope.look_up("r_Delta", load(PACKAGE, "drift").entry(kind, risk), rests=("drift_class", "risk_category"))
-        moment_frame = _divided_by_rho(scope)
-        if moment_frame and scope.number("rho") is None:
-            missing = f"{scope.plain('rho')} (redundancy factor; it divides the allowable drift of a moment frame)"
-            return scope.verdict("drift", title, NOT_CHECKED, rule("12.12.1.1"), missing=missing)
-        formula = formulas.DELTA_A_RHO if moment_frame else formulas.DELTA_A
+        formula = allowable_drift(scope, "drift", title)
+        if isinstance(formula, Handle):
+            return formula
         if scope.find("delta_xe") is None:
             scope.compute(formula)
             scope.table("drift", "Allowable story drift", ["h_sx", "Delta_a"], head="Story below")
@@ -193,6 +186,20 @@ def drift(scope: Scope) -> Handle:
         return scope.require(
             "Delta <= Delta_a", title=title, source=rule("12.12.1"), id_="drift", flags=_edge_flags(scope)
         )
+
+
+def allowable_drift(scope: Scope, id_: str, title: str) -> Formula | Handle:
+    """The formula of Delta_a, its limit written; or the check `id_` as not made, where rho is missing."""
+    risk, kind = scope.word("risk_category"), scope.word("drift_class")
+    faults = [scope.missing(name) for name, word in (("risk_category", risk), ("drift_class", kind)) if word is None]
+    if faults or risk is None or kind is None:
+        raise InputError("asce7.drift", faults)
+    scope.look_up("r_Delta", load(PACKAGE, "drift").entry(kind, risk), rests=("drift_class", "risk_category"))
+    moment_frame = _divided_by_rho(scope)
+    if moment_frame and scope.number("rho") is None:
+        missing = f"{scope.plain('rho')} (redundancy factor; it divides the allowable drift of a moment frame)"
+        return scope.verdict(id_, title, NOT_CHECKED, rule("12.12.1.1"), missing=missing)
+    return formulas.DELTA_A_RHO if moment_frame else formulas.DELTA_A
 
 
 def _divided_by_rho(scope: Scope) -> bool:
@@ -220,7 +227,7 @@ def stability(scope: Scope) -> Handle:
     """The stability coefficient of each story against its maximum; NOT CHECKED without P_x or drifts."""
     title = "Stability coefficient"
     with scope.step():
-        if scope.number("beta") is None:
+        if scope.number("beta") is None or scope.absent("beta"):
             scope.state("beta", "1.0", "table", rule("12.8.7"), detail="permitted to be taken as 1.0")
         scope.compute(formulas.THETA_MAX)
         lists = ("P_x", "Delta", "V_x", "h_sx")

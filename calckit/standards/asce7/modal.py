@@ -14,6 +14,7 @@ from calckit.core.series import formula_of, numbered, symbol_of
 from calckit.errors import InputError, ScopeError
 from calckit.standards.asce7 import modal_rules as rules
 from calckit.standards.asce7.clauses import rule
+from calckit.standards.asce7.forces import allowable_drift
 from calckit.standards.asce7.hazard import study
 
 if TYPE_CHECKING:
@@ -24,6 +25,7 @@ NEED_THREE_DIMENSIONS = ("H1a", "H1b", "H4", "H5")
 nonparallel system."""
 STICK = "stick model"
 SHARE = "0.90"
+DRIFT = "Story drift, modal analysis"
 WIDTH = 6
 """Columns of a table of values by mode."""
 _TITLES = {
@@ -134,11 +136,21 @@ def modal_scaling(scope: Scope) -> Handles:
                 "T <= T_max", title="Period of the static base shear", source=rules.F_V.source, id_="modal_period"
             )
         made += [scope.compute(formula) for name, formula in rules.SCALED.items() if scope.find(name)]
+        drifts_judged = scope.find("Delta_d") is not None and _allowed(scope)
         _beside_static(scope)
-        if scope.find("Delta_d"):
-            scope.require("Delta_d <= Delta_a", title="Story drift, modal analysis", source=rule("12.12.1"),
-                          id_="modal_drift")  # fmt: skip
+        if drifts_judged:
+            scope.require("Delta_d <= Delta_a", title=DRIFT, source=rule("12.12.1"), id_="modal_drift")
         return made
+
+
+def _allowed(scope: Scope) -> bool:
+    """Whether Delta_a stands, written here unless asce7.drift() wrote it before."""
+    if scope.absent("Delta_a"):
+        formula = allowable_drift(scope, "modal_drift", DRIFT)
+        if isinstance(formula, Handle):
+            return False
+        scope.compute(formula)
+    return True
 
 
 def _share(scope: Scope) -> str:

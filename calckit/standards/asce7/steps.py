@@ -132,6 +132,6 @@ class Steps:
         """Factors on the combined forces and drifts, against the static V (12.9.1.4), and the values for design.
 
         Takes V_t and, where they were combined, F_xt, V_xt, M_xt, delta_xt and Delta_t; prints them beside the static
-        answer and checks the drifts.
+        answer and checks the drifts against Delta_a, which it writes unless `drift` did before.
         """
         return modal.modal_scaling(self._scope)

@@ -16,6 +16,7 @@ from calckit.core.record import NOT_CHECKED, NOT_OK, OK
 from calckit.errors import InputError, ScopeError
 from calckit.report.digits_check import check_digits
 from calckit.report.reevaluate import reevaluate
+from tests.core.session import Session
 from tests.printed_audit import audit
 from tests.standards.asce7.building import NAMES, open_flags, value, whole
 
@@ -168,6 +169,8 @@ def test_modes_of_a_three_dimensional_analysis_are_taken() -> None:
     for name in NO:
         calc.answer(name, "yes" if name == "H1a" else "no", basis="plan")
     calc.given("zeta", 0.05, source="P")
+    calc.given("drift_class", "all other", source="P")
+    calc.answer("rho", "1.0", basis="four bays")
     pairs = zip(value(source, "T_m"), value(source, "r_m"), strict=True)
     modes = "\n".join(f"{n}, {T:.9f}, {r:.9f}" for n, (T, r) in enumerate(pairs, 1))
     columns = [f"{stem}{n} [{unit}]" for n in range(1, 6) for stem, unit in (("s_x", "kip"), ("d_x", "in"))]
@@ -232,3 +235,52 @@ def test_first_sheets_name_the_procedure(worked: Calc) -> None:
     static = {row.label: row.cells for summary in assemble(whole()).summaries for row in summary.rows}
     assert static["Analysis procedure"] == ["equivalent lateral force"]
     assert "Base shear, modes combined" not in static
+
+
+def test_drifts_are_judged_without_the_static_step() -> None:
+    calc = prepared()
+    calc.asce7.modal_response()
+    calc.methods.correlation()
+    calc.methods.combine("V_m", "Delta_n")
+    calc.asce7.modal_scaling()
+    assert calc["modal_drift"].line.verdict in (OK, NOT_OK)
+    assert calc.find("drift") is None
+
+
+def test_drifts_of_a_moment_frame_wait_for_rho() -> None:
+    calc = prepared()
+    del calc.lines.entries["rho"]
+    calc.asce7.modal_response()
+    calc.methods.correlation()
+    calc.methods.combine("V_m", "Delta_n")
+    calc.asce7.modal_scaling()
+    assert calc["modal_drift"].line.verdict == NOT_CHECKED
+    assert "redundancy factor" in calc["modal_drift"].line.missing
+
+
+def test_cells_may_run_again(monkeypatch: pytest.MonkeyPatch) -> None:
+    live = Session(monkeypatch)
+    with live.cell("start"):
+        calc = whole()
+        for name in NO:
+            calc.answer(name, "no", basis="regular plan")
+        calc.given("zeta", 0.05, source="P")
+        calc.given("drift_class", "all other", source="P")
+        calc.answer("rho", "1.0", basis="four bays")
+        rows = "\n".join(f"{name}, {stiffness}" for name, stiffness in zip(NAMES, K, strict=True))
+        calc.rows("stories", f"level, k_x [kip/in]\n{rows}", source="P")
+    cells = {
+        "modes": calc.methods.modes,
+        "response": calc.asce7.modal_response,
+        "combine": lambda: (calc.methods.correlation(), calc.methods.combine(*QUANTITIES)),
+        "scaling": calc.asce7.modal_scaling,
+    }
+    counts = []
+    for _ in range(2):
+        for key, step in cells.items():
+            with live.cell(key):
+                step()
+        counts.append(list(calc.lines.entries))
+    assert counts[0] == counts[1]
+    assert {"g", "Delta_a", "r_Delta"} <= set(counts[1])
+    assert calc.lines.stale() == {}
