@@ -17,6 +17,7 @@ from calckit.dynamics.recurrence import scaled
 BLOCK = 32
 """Samples worked as one matrix product."""
 _COLUMNS = 4096  # blocks worked at once, few enough for their states to stay in the processor's cache
+_PIECE = 100  # blocks to a matrix product, few enough for it to stay on one thread: waiting for others costs more
 
 
 def lengthened(records: Array, dt: float, rest: float) -> Array:
@@ -30,6 +31,8 @@ class Blocks:
     def __init__(self, records: Array, dt: float, omega: Array, damping: Array) -> None:
         self.count, self.samples = records.shape
         blocks = max(1, -(-(self.samples - 1) // BLOCK))
+        pieces = -(-blocks // _PIECE)
+        blocks = pieces * -(-blocks // pieces)
         padded = np.pad(records, ((0, 0), (0, blocks * BLOCK + 1 - self.samples)))
         windows = np.lib.stride_tricks.sliding_window_view(padded, BLOCK + 1, axis=1)[:, ::BLOCK]
         transition, start, end = scaled(omega * dt, damping)
@@ -39,6 +42,7 @@ class Blocks:
         # rows: the samples of a block and the one before them, then the state before them
         self._sources = np.empty((BLOCK + 3, self.count, blocks))
         self._sources[: BLOCK + 1] = windows.transpose(2, 0, 1)
+        self._pieces = pieces
 
     def _carried(self, windows: Array) -> Array:
         """The state at the start of each block: (blocks, oscillators, 2, records)."""
@@ -55,12 +59,13 @@ class Blocks:
         return carried
 
     def _worked(self, oscillator: int, weights: Array, records: slice) -> Array:
-        """What `weights` (outputs, 2) make of the states of some records: (outputs, BLOCK, records, blocks)."""
+        """What `weights` (outputs, 2) make of the states of some records: (records, pieces, outputs, BLOCK, blocks)."""
         joined = np.concatenate([self._forced[oscillator], self._free[oscillator]], axis=2)
         matrix = np.einsum("ki,sij->ksj", weights, joined).reshape(-1, BLOCK + 3)
         sources = self._sources[:, records]
         sources[BLOCK + 1 :] = self._starts[:, oscillator, :, records].transpose(1, 2, 0)
-        return (matrix @ sources.reshape(BLOCK + 3, -1)).reshape(len(weights), BLOCK, *sources.shape[1:])
+        stacked = sources.reshape(BLOCK + 3, sources.shape[1], self._pieces, -1).transpose(1, 2, 0, 3)
+        return (matrix @ stacked).reshape(*stacked.shape[:2], len(weights), BLOCK, -1)
 
     def peaks(self, oscillator: int, weights: Array) -> Array:
         """Largest absolute values of what `weights` (outputs, 2) make of the states (u, v/omega): (outputs, records).
@@ -73,12 +78,12 @@ class Blocks:
             records = slice(first, first + at_once)
             worked = self._worked(oscillator, weights, records)
             np.abs(worked, out=worked)
-            found[:, records] = worked.max(axis=3).max(axis=1)
+            found[:, records] = worked.max(axis=4).max(axis=(1, 3)).T
         return found
 
     def states(self, oscillator: int) -> Array:
         """The states (u, v/omega) at every sample: (2, records, samples)."""
-        worked = self._worked(oscillator, np.eye(2), slice(None)).transpose(0, 2, 3, 1)
+        worked = self._worked(oscillator, np.eye(2), slice(None)).transpose(2, 0, 1, 4, 3)
         later = worked.reshape(2, self.count, -1)[..., : max(self.samples - 1, 0)]
         return np.concatenate([np.zeros((2, self.count, 1)), later], axis=2)
 

@@ -73,7 +73,7 @@ def response_spectrum(
     parts = np.minimum(2 ** np.ceil(np.log2(np.maximum(STEPS * dt / natural, 1))), _MOST).astype(int)
     displacement, total = (np.empty((len(zeta), len(records), len(natural))) for _ in range(2))
     for curve, count in sorted(set(zip(curves, parts.tolist(), strict=True))):
-        chosen = np.array([i for i, pair in enumerate(zip(curves, parts.tolist(), strict=True)) if pair == (curve, count)])
+        chosen = np.flatnonzero((np.array(curves) == curve) & (parts == count))
         step, rest = dt / count, float(natural[chosen].max()) / 2
         at_once = max(1, _SAMPLES // (records.shape[1] * count))
         for first in range(0, len(records), at_once):
