@@ -14,8 +14,11 @@ from calckit.core import work
 from calckit.core.book import Cell, Entry
 from calckit.core.formula import Formula
 from calckit.core.record import Line, Record
+from calckit.core.standard import edition
 from calckit.core.symbol import KINDS, Symbol
-from calckit.standards.asce7.declared import FORMULAS, SYMBOLS
+from calckit.methods import symbols as methods_symbols
+from calckit.standards.asce7 import modal_rules
+from calckit.standards.asce7.declared import FORMULAS
 from tests.building import Building, metric
 
 ONE_DECLARATION = 1e-12
@@ -100,7 +103,11 @@ MIXED = {
     "stiffness": ("kip/in", "kip/ft", "kN/mm", "N/m"),
     "line load": ("kip/ft", "plf", "kN/m", "N/mm"),
 }
-LISTS = {"w_x", "h_x", "h_sx", "wh_x", "C_vx", "F_x", "V_x", "delta_xe", "delta_x", "Delta", "P_x", "T_r", "A_ei"}
+OF_MODE = {**modal_rules.OF_MODE, **methods_symbols.OF_MODE}
+SYMBOLS = {**edition("ASCE 7-16").symbols, **OF_MODE}
+LISTS = {"w_x", "h_x", "h_sx", "wh_x", "C_vx", "F_x", "V_x", "delta_xe", "delta_x", "Delta", "P_x", "T_r", "A_ei",
+         "T_m", "W_m", "S_am", "C_sm", "V_xd", "s_xn", "d_xn", "F_xn", "V_xn", "delta_xn",
+         "F_xt", "V_xt", "M_xt", "delta_xt", "Delta_t"}  # fmt: skip
 LISTS |= {f"{d}{case}" for d in ("d_1", "d_2", "D_1", "D_2") for case in ("plus", "minus")}
 LISTS |= {"K_d", "K_s", "K_1", "K_2", "b_s", "V_ys", "q_s"}
 LISTS |= {"x_i", "y_i", "k_ix", "k_iy", "V_ax", "V_ay", "b_i", "L_s", "d_s", "V_dirx", "V_diry"}
@@ -121,6 +128,7 @@ def entry(symbol: Symbol, unit: str, number: int) -> Entry:
 def worked(formula: Formula, choice: int) -> tuple[list[float], str]:
     """The values of a formula, before rounding, with every operand typed in its unit number `choice`."""
     calc = Calc(project="Units")
+    calc.own_symbols |= OF_MODE
     operands = {}
     for number, name in enumerate(formula.names, 1):
         symbol = SYMBOLS[name]

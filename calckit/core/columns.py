@@ -114,6 +114,16 @@ def _work_again(scope: Scope, grids: dict[str, int]) -> None:
         rests = key in grids or not grids.keys().isdisjoint(entry.line.inputs)
         if entry.remake and rests and not entry.line.override:
             scope.book.remade(entry.remake(grids.get(key, entry.decimals)))
+    for entry in scope.book.entries.values():
+        for key in grids.keys() & entry.line.inputs.keys() - _named(entry):
+            entry.line.inputs[key].shown = list(scope.book.entries[key].line.shown)
+
+
+def _named(entry: Entry) -> set[str]:
+    """The ids that a line's formula names; the other inputs of the line it merely rests on."""
+    line = entry.line
+    names = parse(line.formula).names if line.formula else ()
+    return {id_ for name in names for id_ in (name, f"{line.part}.{name}")}
 
 
 def _column(entry: Entry) -> digits.Operand:

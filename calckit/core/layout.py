@@ -304,7 +304,8 @@ class Form(Printer):
     def _print_AtLevel(self, node: AtLevel) -> str:
         inner = node.args[0]
         if self.operands is None:
-            name = node.level if " " in node.level else f"level {node.level}"  # "wall A", "0.5 s" say what they are
+            index = self.symbols(inner.name).index if isinstance(inner, Ref) else "level"
+            name = node.level if " " in node.level else f"{index} {node.level}"  # "wall A", "0.5 s" say what they are
             return self._lower(inner, lambda sub: f"{sub}, {name}".removeprefix(", "))
         assert self.env is not None
         return self._at(node.env(self.env).row or 0, inner, self._factor)

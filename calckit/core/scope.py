@@ -18,6 +18,7 @@ from calckit.core.formula import Formula
 from calckit.core.handle import Handle
 from calckit.core.inputs import NONE, Reading, read
 from calckit.core.record import NOT_CHECKED, NOT_OK, Candidate, Flag, Line, Margin, Operand, Override, Source
+from calckit.core.standard import methods
 from calckit.core.symbol import Symbol
 from calckit.errors import Fault, InputError, StaleObjectError, UnknownNameError, nearest_first
 
@@ -84,6 +85,11 @@ class Scope:
         """The line a name stands for here, or None."""
         return self.book.find(self.id, name)
 
+    def absent(self, name: str) -> bool:
+        """Whether nothing stands for a name but what an earlier run of this very cell wrote, which goes with it."""
+        entry, cell = self.find(name), this_cell()
+        return entry is None or (entry.cell.key == cell.key and entry.cell.run < cell.run)
+
     def word(self, name: str) -> str | None:
         """The word or text value a name stands for here, None if there is no line or it says none."""
         entry = self.find(name)
@@ -119,7 +125,7 @@ class Scope:
         given = str(line.shown) if line else "nothing"
         cure = f"supply it with {supplier}"
         known = {**self.calc.standard.symbols, **self.calc.own_symbols}
-        if symbol.name not in known:
+        if symbol.name not in known and symbol.name not in self.calc.standard.suppliers:
             cure += f", or did you mean {', '.join(nearest_first(symbol.name, known)[:4])}?"
         return Fault(name, needed, given, cure, symbol.meaning if symbol.name in known else "")
 
@@ -330,6 +336,8 @@ class Scope:
     def __getattr__(self, name: str) -> Any:
         if not name.startswith("_") and name == self.calc.standard.family:
             return self.calc.standard.steps(self)
+        if name == "methods":
+            return methods().attached(self)
         raise AttributeError(f"{type(self).__name__} has no attribute {name!r}")
 
 

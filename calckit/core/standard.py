@@ -1,6 +1,6 @@
 """What a standard gives to the core: one edition's names, symbols, steps and statements.
 
-Knows where standards are found. Must not know any one of them.
+Knows where standards and the methods owned by none are found. Must not know any one of them.
 """
 
 from __future__ import annotations
@@ -8,7 +8,7 @@ from __future__ import annotations
 import importlib
 import pkgutil
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from functools import cache
 from typing import Any
 
@@ -45,12 +45,25 @@ class Standard:
 
 @cache
 def editions() -> dict[str, Standard]:
-    """Every edition offered, by what the title block says."""
+    """Every edition offered, by what the title block says; to each belong the symbols of the methods."""
     package = importlib.import_module("calckit.standards")
     found: dict[str, Standard] = {}
     for module in pkgutil.iter_modules(package.__path__, "calckit.standards."):
         found |= importlib.import_module(module.name).EDITIONS
-    return found
+    shared = methods()
+    return {
+        name: replace(
+            standard,
+            symbols={**shared.SYMBOLS, **standard.symbols},
+            suppliers={**shared.SUPPLIERS, **standard.suppliers},
+        )
+        for name, standard in found.items()
+    }
+
+
+def methods() -> Any:
+    """The package of steps owned by no standard: `SYMBOLS`, `SUPPLIERS` and `attached(scope)`."""
+    return importlib.import_module("calckit.methods")
 
 
 def edition(text: str) -> Standard:

@@ -26,6 +26,7 @@ KINDS = {
     "stiffness": ("kip/in", "kN/mm"),
     "line load": ("lb/ft", "kN/m"),
     "load effect": ("kip", "kN"),
+    "velocity": ("in/s", "m/s"),
     "acceleration": ("ft/s**2", "m/s**2"),
     "other": ("", ""),
 }
@@ -55,7 +56,8 @@ class Symbol:
     Python keyword takes a trailing underscore); `meaning` in plain words; `kind`, a key of `KINDS`; `sub`, the printed
     subscript where it differs from the name's ("s,min"); `layout`, an expression whose printed form stands for the
     symbol ("w_x*h_x**k"); `digits`, the significant digits of a printed result; `low`, `high`, the allowed range, with
-    `low_open` if `low` itself is not allowed; `choices` for words; `own_unit`, the display unit of kind "other".
+    `low_open` if `low` itself is not allowed; `choices` for words; `own_unit`, the display unit of kind "other";
+    `index`, what the rows of its list are.
 
     >>> T_a = Symbol("T_a", "approximate fundamental period", "time", low=0, low_open=True)
     >>> T_a.stem, T_a.subscript, T_a.unit("SI")
@@ -73,6 +75,7 @@ class Symbol:
     low_open: bool = False
     choices: tuple[str, ...] = ()
     own_unit: str = ""
+    index: str = "level"
 
     def __post_init__(self) -> None:
         check_name(self.name, words=self.kind == "words")

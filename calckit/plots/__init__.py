@@ -9,18 +9,25 @@ from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
     from calckit.plots.chain import dependency
-    from calckit.plots.levels import drift_profile, elevation, level_forces, story_shears
+    from calckit.plots.levels import drift_profile, elevation, level_forces, modal_shears, mode_shapes, story_shears
+    from calckit.plots.motions import cumulative_energy, fourier_amplitude, motion_history, spectra
     from calckit.plots.spectrum import design_spectrum
     from calckit.plots.style import Drawing, png_bytes, svg_bytes
 
 __all__ = [
     "Drawing",
+    "cumulative_energy",
     "dependency",
     "design_spectrum",
     "drift_profile",
     "elevation",
+    "fourier_amplitude",
     "level_forces",
+    "modal_shears",
+    "mode_shapes",
+    "motion_history",
     "png_bytes",
+    "spectra",
     "story_shears",
     "svg_bytes",
 ]
@@ -28,9 +35,10 @@ __all__ = [
 
 def __getattr__(name: str) -> Any:
     if name in __all__:
-        from calckit.plots import chain, levels, spectrum, style
+        from calckit.plots import chain, levels, motions, spectrum, style
 
-        return next(getattr(module, name) for module in (chain, levels, spectrum, style) if hasattr(module, name))
+        modules = (chain, levels, motions, spectrum, style)
+        return next(getattr(module, name) for module in modules if hasattr(module, name))
     raise AttributeError(f"module 'calckit.plots' has no attribute {name!r}")
 
 

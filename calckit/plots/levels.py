@@ -113,6 +113,15 @@ class _Elevation:
             self.line([x - 0.5, x - 0.08], [0.1, 0.1], **style)
             x -= 0.5 + 2 * _GAP
 
+    def key_above(self, styles: Mapping[str, Mapping[str, Any]]) -> float:
+        """What each style of line stands for, above the drawing from the left; returns where the key ends."""
+        x, y = _EDGE, self.heading + 1.3 * PITCH
+        for label, style in styles.items():
+            self.line([x, x + 0.38], [y, y], **style)
+            letter(self.drawing, x + 0.43, y, label)
+            x += 0.43 + width_of(self.drawing, [label]) + _GAP
+        return x - _GAP
+
     def axes(self, start: float, end: float, low: float, high: float) -> Axes:
         """Unframed axes between two places, with the heights of the levels as ordinates and `low` to `high` across."""
         width, height = self.drawing.get_size_inches()
@@ -305,6 +314,105 @@ def drift_profile(
                 sketch.numbers(end, panel.columns[heading], sketch.middles, heading)
         sketch.key({symbol: {"lw": HEAVY}, limit_symbol: {"lw": LINE, "ls": DASHED}})
     return sketch.drawing
+
+
+MOST_MODES = 5
+_MODE_STYLES = ((0, (5, 2.5)), (0, (1, 2)), (0, (6, 2, 1, 2)), (0, (1, 1)), (0, (8, 4)))
+
+
+def mode_shapes(
+    levels: Sequence[str], h_x: Numbers, shapes: Mapping[str, Numbers], *, length_unit: str, base: str = "Base"
+) -> Drawing:
+    """Mode shapes over the height, side by side, each to its own scale.
+
+    Arguments: `levels` and `h_x` as for `elevation`; `shapes`, for each of one to five modes its label -> the
+    displacement of each level. Raises InputError listing every bad argument.
+
+    >>> drawing = mode_shapes(["Roof", "2"], [24, 13], {"1": [1, 0.6], "2": [1, -1.7]}, length_unit="ft")
+    >>> drawing.axes[1].lines[0].get_xdata().tolist()
+    [1.0, -1.7, 0.0]
+    """
+    read = Reader("plots.mode_shapes")
+    names = read.levels(levels)
+    heights = read.heights(h_x, len(names))
+    modes = _modes(read, "shapes", shapes, len(names))
+    with _elevation(read, names, heights, base, length_unit, titled=True) as sketch:
+        pitch = (sketch.right - sketch.left + _GAP) / len(modes)
+        _room(read, (sketch.right - sketch.left) / 2)
+        for place, (label, column) in enumerate(modes.items()):
+            start = sketch.left + place * pitch
+            end = start + pitch - _GAP
+            sketch.level_lines(start, end, lw=THIN)
+            sketch.ground(start, end)
+            largest = 1.1 * max(map(abs, column.values)) or 1.0
+            axes = sketch.axes(start, end, -largest, largest)
+            axes.plot([*column.values, 0.0], [*heights.values, 0.0], "-o", color="black", lw=HEAVY, ms=3, clip_on=False)
+            axes.plot([0, 0], [0, heights.values[0]], color="black", lw=THIN)
+            letter(sketch.drawing, (start + end) / 2, sketch.heading + 1.3 * PITCH, f"Mode {label}", ha="center")
+    return sketch.drawing
+
+
+def modal_shears(
+    levels: Sequence[str],
+    h_x: Numbers,
+    by_mode: Mapping[str, Numbers],
+    combined: Numbers,
+    *,
+    force_unit: str,
+    length_unit: str,
+    symbol: str = "V_x",
+    base: str = "Base",
+) -> Drawing:
+    """Story shears of single modes, with their signs, and of the modes combined, as steps over the height.
+
+    Arguments as for `mode_shapes`; `by_mode`, for each of one to five modes its label -> the shear of each story, named
+    by the level at its top; `combined`, that of the modes together. Raises InputError listing every bad argument.
+
+    >>> drawing = modal_shears(["Roof", "2"], [24, 13], {"1": [40, 70], "2": [-12, 9]}, [42, 71],
+    ...                        force_unit="kip", length_unit="ft")
+    >>> [patch.get_data().values.tolist() for patch in drawing.axes[0].patches]
+    [[70.0, 40.0], [9.0, -12.0], [71.0, 42.0]]
+    """
+    read = Reader("plots.modal_shears")
+    names = read.levels(levels)
+    heights = read.heights(h_x, len(names))
+    modes = _modes(read, "by_mode", by_mode, len(names))
+    together = read.column("combined", combined, len(names))
+    read.words(force_unit=force_unit, symbol=symbol)
+    with _elevation(read, names, heights, base, length_unit, titled=True) as sketch:
+        heading = typeset(symbol, f" ({force_unit})")
+        column = max(width_of(sketch.drawing, [heading], math=True), width_of(sketch.drawing, together.shown))
+        start, end = sketch.left, sketch.right - column - 2 * _GAP
+        _room(read, end - start)
+        every = [0.0, *together.values, *(value for one in modes.values() for value in one.values)]
+        low, high = min(every), max(every)
+        high = high if high > low else low + 1
+        axes = sketch.axes(start, end, low, high)
+        edges = (0.0, *heights.values[::-1])
+        sketch.level_lines(start, end, lw=THIN)
+        sketch.ground(start, end)
+        zero = start - low / (high - low) * (end - start)
+        sketch.line([zero, zero], [_FOOT, sketch.lines[0]], lw=LINE)
+        styles = {f"Mode {label}": {"lw": LINE, "ls": style} for label, style in zip(modes, _MODE_STYLES, strict=False)}
+        styles["combined"] = {"lw": HEAVY}
+        for one, style in zip([*modes.values(), together], styles.values(), strict=True):
+            axes.stairs(one.values[::-1], edges, orientation="horizontal", color="black", clip_on=False, baseline=None,
+                        **style)  # fmt: skip
+        sketch.numbers(sketch.right, together, sketch.middles, heading)
+        if sketch.key_above(styles) > sketch.right:
+            read.fault("by_mode", "labels that fit on one line", ", ".join(modes), "shorten the labels")
+            read.done()
+    return sketch.drawing
+
+
+def _modes(read: Reader, name: str, columns: Mapping[str, Numbers], count: int) -> dict[str, Column]:
+    if not isinstance(columns, Mapping) or not 1 <= len(columns) <= MOST_MODES:
+        given = f"{len(columns)}" if isinstance(columns, Mapping) else type(columns).__name__
+        read.fault(name, f"1 to {MOST_MODES} modes with their numbers", given, 'give a mapping like {"1": [...]}')
+        return {}
+    for label in columns:
+        read.words(**{name: str(label)})
+    return {str(label): read.column(f"{name}[{label!r}]", values, count) for label, values in columns.items()}
 
 
 @dataclass(frozen=True)

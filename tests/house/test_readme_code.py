@@ -10,7 +10,7 @@ from calckit import Calc, plots
 from tests.house import source
 
 BLOCKS = re.findall(r"```python\n(.*?)```", source.text_files()["README.md"], re.DOTALL)
-INPUTS, OWN_LINES, BOUND, OVERRIDE, CONFIRM, REVISE, ARRAYS = BLOCKS
+INPUTS, OWN_LINES, BOUND, OVERRIDE, CONFIRM, REVISE, MODES, ARRAYS = BLOCKS
 REGISTER = re.search(r"```\n(standard,.*?)```", source.text_files()["README.md"], re.DOTALL)
 
 
@@ -36,10 +36,13 @@ def test_the_blocks_run_in_a_calculation(tmp_path: Path, monkeypatch: pytest.Mon
     exec(BOUND, names)
     exec(CONFIRM, names)
     exec(REVISE, names)
+    x.givens("zeta, 0.05, B-1\ndrift_class, all other, B-1")
+    exec(MODES, names)
 
     assert calc["h_n"].shown == "62 ft"
     assert calc["F_a"].value == 1.3
     assert calc["F_a"].line.override.reason == "local amendment"
+    assert x["V_xd"].value[-1] == pytest.approx(max(x["V"].value, x["V_t"].value), rel=1e-11)
     assert x["M_r"].unit == "kip*ft"
     assert x["M_r"].value == pytest.approx(x["V"].value * 2 / 3 * 62, rel=1e-11)
     assert calc.enclosures["H-2"].page_numbers() == [1, 2]

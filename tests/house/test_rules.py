@@ -16,7 +16,8 @@ MOST_LINES = 500
 
 SHOWN = {
     "calckit.core.calc", "calckit.core.writer", "calckit.core.handle", "calckit.units", "calckit.plots.levels",
-    "calckit.plots.spectrum", "calckit.standards.asce7.steps",
+    "calckit.plots.spectrum", "calckit.plots.motions", "calckit.standards.asce7.steps",
+    "calckit.methods.steps",
     "calckit.dynamics.closed_forms", "calckit.dynamics.combination", "calckit.dynamics.modal",
     "calckit.dynamics.oscillator", "calckit.dynamics.recurrence", "calckit.dynamics.spectrum",
     "calckit.dynamics.stepping",
@@ -33,6 +34,8 @@ NOT_SHOWN = {
     "calckit.dynamics.arguments": "behind the array functions; every refusal shows it",
     "calckit.dynamics.blocks": "behind responses and spectra; shown by their examples",
     "calckit.dynamics.verify": "run by `calckit verify dynamics`",
+    "calckit.methods": "passes on what its modules define",
+    "calckit.methods.": "behind the steps; shown by their examples",
     "calckit.motions": "passes on what its modules define",
     "calckit.motions.verify": "run by `calckit verify dynamics`",
     "calckit.errors": "raised, never called; the wording is compared in the tests of what raises it",

@@ -9,6 +9,9 @@ from matplotlib.text import Annotation
 from calckit import plots
 from tests.plots import ink
 from tests.plots.examples import (
+    A_G,
+    AMPLITUDES,
+    COMBINED,
     CORNERS,
     DRIFT_UNITS,
     DRIFTS,
@@ -17,8 +20,14 @@ from tests.plots.examples import (
     LEVELS,
     LIMITS,
     MARKS,
+    MODAL,
+    ORDINATES,
+    PERIODS,
     S_A,
+    SHAPES,
+    SHARE,
     SHEARS,
+    STEP,
     UNITS,
     W_X,
     T,
@@ -132,3 +141,60 @@ def test_a_drawing_of_the_users_own_is_saved_the_same_way() -> None:
     assert figure._repr_svg_() == plots.svg_bytes(figure).decode()
     assert figure._repr_png_() == plots.png_bytes(figure, 100)
     assert "<dc:date>" not in figure._repr_svg_()
+
+
+def test_mode_shapes_start_at_the_base() -> None:
+    figure = plots.mode_shapes(LEVELS, H_X, SHAPES, length_unit="ft")
+    assert len(figure.axes) == 3
+    for axes, shape in zip(figure.axes, SHAPES.values(), strict=True):
+        assert axes.lines[0].get_xdata().tolist() == [*shape, 0.0]
+        assert axes.lines[0].get_ydata().tolist() == [*H_X, 0.0]
+        low, high = axes.get_xlim()
+        assert low == -high < -max(map(abs, shape))
+    assert {"Mode 1", "Mode 2", "Mode 3"} <= set(ink.words(figure))
+
+
+def test_modal_shears_keep_their_signs() -> None:
+    figure = plots.modal_shears(LEVELS, H_X, MODAL, COMBINED, **UNITS)
+    steps = [patch for patch in figure.axes[0].patches if isinstance(patch, StepPatch)]
+    values = [step.get_data().values.tolist() for step in steps]
+    assert values == [[*reversed(shears)] for shears in (*MODAL.values(), list(map(float, COMBINED)))]
+    assert len({step.get_linestyle() for step in steps}) == 3
+    assert {*COMBINED, "Mode 1", "Mode 2", "combined"} <= set(ink.words(figure))
+
+
+def test_a_long_history_keeps_its_peaks() -> None:
+    figure = plots.motion_history(STEP, {"a": (A_G, "g")})
+    drawn = figure.axes[0].lines[0]
+    assert len(drawn.get_xdata()) < len(A_G)
+    assert max(drawn.get_ydata()) == max(A_G) and min(drawn.get_ydata()) == min(A_G)
+    peak = max(range(len(A_G)), key=lambda n: abs(A_G[n]))
+    assert any(word.endswith(f"at {peak * STEP:.4g} s") for word in ink.words(figure))
+    assert len(plots.svg_bytes(figure)) < 200_000
+
+
+def test_a_short_history_is_drawn_sample_by_sample() -> None:
+    figure = plots.motion_history(0.5, {"a": ([0.0, 0.2, -0.1], "g")})
+    assert figure.axes[0].lines[0].get_xydata().tolist() == [[0.0, 0.0], [0.5, 0.2], [1.0, -0.1]]
+
+
+def test_energy_and_its_bounds() -> None:
+    axes = plots.cumulative_energy(STEP, SHARE, between=(2.5, 47.5)).axes[0]
+    assert axes.lines[0].get_ydata().tolist() == SHARE
+    assert [line.get_xdata()[0] for line in axes.lines[1:]] == [2.5, 47.5]
+
+
+def test_fourier_amplitudes_rise_along_the_period() -> None:
+    figure = plots.fourier_amplitude(PERIODS[::-1], AMPLITUDES[::-1], unit="in/s", marks={"T_dom": "0.50"})
+    axes = figure.axes[0]
+    assert axes.lines[0].get_xdata().tolist() == PERIODS and axes.lines[0].get_ydata().tolist() == AMPLITUDES
+    assert axes.lines[1].get_xdata()[0] == 0.5
+    assert any("0.50 s" in word for word in ink.words(figure))
+
+
+def test_spectra_are_told_apart_without_color() -> None:
+    figure = plots.spectra(T, S_A, {"Motion 1": (PERIODS, ORDINATES), "Mean": (PERIODS, AMPLITUDES)})
+    lines = figure.axes[0].lines
+    assert [line.get_ydata().tolist() for line in lines] == [S_A, ORDINATES, AMPLITUDES]
+    assert len({(line.get_linestyle(), line.get_linewidth(), line._unscaled_dash_pattern) for line in lines}) == 3
+    assert {"Design spectrum", "Motion 1", "Mean"} <= set(ink.words(figure))

@@ -1,6 +1,6 @@
-"""ASCE/SEI 7: seismic loads on buildings by equivalent lateral forces, editions 7-16 and 7-22.
+"""ASCE/SEI 7: seismic loads on buildings by equivalent lateral forces and by modes, editions 7-16 and 7-22.
 
-Knows which editions are offered and what they are made of; the rooms are hazard, structure, forces, summary.
+Knows which editions are offered and what they are made of; the rooms are hazard, structure, forces, modal, summary.
 """
 
 from typing import Any
@@ -20,6 +20,7 @@ FIELD_OF_USE = (
     "is the engineer's answer.",
     "Seismic forces on nonstructural components (chapter 13) and their anchors, from a row of the tables or from typed "
     "factors. Whether a component is exempt is the engineer's answer: the kit does not look at it.",
+    "Modal response spectrum analysis (12.9.1) from the modes of a stick model or of a three-dimensional analysis.",
     "Values and rules marked as to be confirmed were not read in the printed standard by the kit's authors.",
     "The kit is held against published examples; the command calckit verify asce7 runs these checks again, with their "
     "sources, and names what no example reaches.",
@@ -30,7 +31,8 @@ NOT_COVERED = (
     "the design of elements: collectors and chords, columns, walls, anchors, foundations; the further rules of 12.11.2 "
     "for anchorage in design categories C to F; the alternative diaphragm methods (12.10.3, 12.10.4); what is "
     "excepted for light frame in 12.10.2",
-    "modal and response history analysis (12.9, chapter 16); soil-structure interaction (chapter 19)",
+    "response history analysis (12.9.2, chapter 16); the lumping of short modes into one rigid mode (12.9.1.1); "
+    "soil-structure interaction (chapter 19)",
     "the simplified method (12.14), nonbuilding structures (chapter 15), isolated and damped structures (chapters 17 "
     "and 18), existing buildings",
     "combined systems",

@@ -17,6 +17,7 @@ from calckit.standards.asce7 import (
     ground_rules,
     irregularity_rules,
     load_effects_rules,
+    modal_rules,
     model_rules,
     plan_rules,
     structure_rules,
@@ -26,8 +27,8 @@ from calckit.standards.asce7 import (
 )
 
 ROOMS: tuple[ModuleType, ...] = (
-    symbols, formulas, ground_rules, structure_rules, model_rules, weight_rules, irregularity_rules, plan_rules,
-    diaphragm_forces_rules, load_effects_rules, base_reactions_rules, wall_forces_rules, components_rules,
+    symbols, formulas, ground_rules, structure_rules, model_rules, modal_rules, weight_rules, irregularity_rules,
+    plan_rules, diaphragm_forces_rules, load_effects_rules, base_reactions_rules, wall_forces_rules, components_rules,
 )  # fmt: skip
 """Modules with declarations: a tuple SYMBOLS, formulas by their Python names."""
 

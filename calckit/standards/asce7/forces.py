@@ -226,17 +226,10 @@ def vertical_distribution(scope: Scope) -> Handle:
 def drift(scope: Scope) -> Handle:
     """Amplified displacements and story drifts against the allowable drift; NOT CHECKED without displacements."""
     title = "Story drift"
-    risk, kind = scope.word("risk_category"), scope.word("drift_class")
-    faults = [scope.missing(name) for name, word in (("risk_category", risk), ("drift_class", kind)) if word is None]
-    if faults or risk is None or kind is None:
-        raise InputError("asce7.drift", faults)
     with scope.step():
-        scope.look_up("r_Delta", load(PACKAGE, "drift").entry(kind, risk), rests=("drift_class", "risk_category"))
-        moment_frame = _divided_by_rho(scope)
-        if moment_frame and scope.number("rho") is None:
-            missing = f"{scope.plain('rho')} (redundancy factor; it divides the allowable drift of a moment frame)"
-            return scope.verdict("drift", title, NOT_CHECKED, rule("12.12.1.1"), missing=missing, rests=("rho",))
-        formula = formulas.DELTA_A_RHO if moment_frame else formulas.DELTA_A
+        formula = allowable_drift(scope, "drift", title)
+        if isinstance(formula, Handle):
+            return formula
         if scope.find("delta_xe") is None:
             scope.compute(formula)
             scope.table("drift", "Allowable story drift", ["h_sx", "Delta_a"], head="Story below")
@@ -273,6 +266,20 @@ def _renamed_flags(scope: Scope) -> list[Flag]:
     return [Flag(f"{scope.id_of('delta_x')}: {unknown}", True, "holder of the standard")]
 
 
+def allowable_drift(scope: Scope, id_: str, title: str) -> Formula | Handle:
+    """The formula of Delta_a, its limit written; or the check `id_` as not made, where rho is missing."""
+    risk, kind = scope.word("risk_category"), scope.word("drift_class")
+    faults = [scope.missing(name) for name, word in (("risk_category", risk), ("drift_class", kind)) if word is None]
+    if faults or risk is None or kind is None:
+        raise InputError("asce7.drift", faults)
+    scope.look_up("r_Delta", load(PACKAGE, "drift").entry(kind, risk), rests=("drift_class", "risk_category"))
+    moment_frame = _divided_by_rho(scope)
+    if moment_frame and scope.number("rho") is None:
+        missing = f"{scope.plain('rho')} (redundancy factor; it divides the allowable drift of a moment frame)"
+        return scope.verdict(id_, title, NOT_CHECKED, rule("12.12.1.1"), missing=missing, rests=("rho",))
+    return formulas.DELTA_A_RHO if moment_frame else formulas.DELTA_A
+
+
 def _divided_by_rho(scope: Scope) -> bool:
     """Whether 12.12.1.1 divides the allowable drift by rho: moment frames only, design categories D to F."""
     key, _, _ = system_row(scope)
@@ -297,7 +304,7 @@ def stability(scope: Scope) -> Handle:
     """The stability coefficient of each story against its maximum; NOT CHECKED without P_x or drifts."""
     title = "Stability coefficient"
     with scope.step():
-        if scope.number("beta") is None:
+        if scope.number("beta") is None or scope.absent("beta"):
             scope.state("beta", "1.0", "table", rule("12.8.7"), detail="permitted to be taken as 1.0")
         scope.compute(formulas.THETA_MAX)
         absent = [name for name in ("P_x", "Delta", "V_x", "h_sx") if scope.find(name) is None]

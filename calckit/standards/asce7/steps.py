@@ -20,6 +20,7 @@ from calckit.standards.asce7 import (
     hazard,
     irregularity,
     load_effects,
+    modal,
     model,
     plan,
     redundancy,
@@ -135,6 +136,13 @@ class Steps:
     >>> pasted = "tag, component, W_p [lb], z [ft]\\nB1, boiler, 900, 0\\nP1, pump, 300, 15"
     >>> listed.asce7.components(pasted, source="H-2")
     P.F_p = 136.1, 48.4
+    >>> _ = x.rows("stories", "level, k_x [kip/in]\\nRoof, 300\\n2, 500", source="H-2")
+    >>> _, _ = x.given("zeta", 0.05, source="H-2"), x.methods.modes()
+    >>> x.asce7.modal_response()
+    [X.C_sm = 0.07876, 0.08400, X.V_m = 54.10, 6.56]
+    >>> _, _ = x.methods.correlation(), x.methods.combine("V_m", "V_xn", "Delta_n")
+    >>> x.asce7.modal_scaling()
+    [X.f_V = 1.177, X.f_Delta = 1, X.V_xd = 37.13, 64.26, X.Delta_d = 0.5257, 0.5459]
     """
 
     def __init__(self, scope: Scope) -> None:
@@ -364,3 +372,19 @@ class Steps:
         (S_DS, h, I_p, in 7-22 T_a, R, Omega_0, I_e) is given before. One list takes rows of one table of the standard.
         """
         return component_list.components(self._scope, text, source)
+    # chapter 12, modal response spectrum analysis
+    def modal_response(self) -> Handles:
+        """S_am, C_sm and V_m of each mode, and forces, shears, moments and drifts of each mode (12.9.1.1, 12.9.1.2).
+
+        Takes the modes by symbol: T_m, W_m, r_m, r_sum, and s_xn, d_xn of each mode n. A stick model is refused where
+        an irregularity asks for a three-dimensional one.
+        """
+        return modal.modal_response(self._scope)
+
+    def modal_scaling(self) -> Handles:
+        """Factors on the combined forces and drifts, against the static V (12.9.1.4), and the values for design.
+
+        Takes V_t and, where they were combined, F_xt, V_xt, M_xt, delta_xt and Delta_t; prints them beside the static
+        answer and checks the drifts against Delta_a, which it writes unless `drift` did before.
+        """
+        return modal.modal_scaling(self._scope)

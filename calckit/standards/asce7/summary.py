@@ -32,6 +32,8 @@ SUPPLIERS = {
     "T_a": "asce7.approximate_period()",
     "T": "asce7.period()",
     "W": "asce7.seismic_weight()",
+    "V_t": 'methods.combine("V_m", ...) after asce7.modal_response()',
+    "C_sfloor1": "asce7.base_shear()",
     "V": "asce7.base_shear()",
     "C_s": "asce7.base_shear()",
     "V_x": "asce7.vertical_distribution()",
@@ -92,6 +94,13 @@ _ANSWER = (
     ("Largest story drift over allowable", "drift"),
     ("Largest stability coefficient over its maximum", "stability"),
 )
+_MODAL = (
+    ("Base shear, modes combined", "V_t"),
+    ("Factor on combined forces", "f_V"),
+    ("Factor on combined drifts", "f_Delta"),
+    ("Largest modal story drift over allowable", "modal_drift"),
+)
+"""Further rows of the answer where modes were combined."""
 _DRAWINGS = (
     ("Risk category", ("risk_category",)),
     ("Importance factor", ("I_e",)),
@@ -105,6 +114,9 @@ _DRAWINGS = (
     ("Response modification coefficient", ("R",)),
 )
 
+CHECKS = ("drift", "stability", "procedure", "system_permitted", "modal_drift")
+"""Checks among the rows of the answer."""
+
 
 def summaries(calc: Calc) -> list[Summary]:
     """The tables of the first sheets, from the lines as they stand: two of the building, one of components if any."""
@@ -113,12 +125,15 @@ def summaries(calc: Calc) -> list[Summary]:
     if components and not building_too(calc):
         return components
     parts = _directions(calc, carried)
-    answer = [SummaryRow(label, *_row(parts, (name,))) for label, name in _ANSWER]
+    modal = [part.find("f_V") is not None for part in parts]
+    rows = _ANSWER + (_MODAL if any(modal) else ())
+    answer = [SummaryRow(label, *_row(parts, (name,))) for label, name in rows]
     governing = SummaryRow("Governing equation", *_governing(parts))
     answer.insert([name for _, name in _ANSWER].index("C_s") + 1, governing)
     head = [SummaryRow(label, *_row(parts, (name,))) for label, name in _COMMON]
     drawings = [SummaryRow(label, *_row(parts, names)) for label, names in _DRAWINGS]
-    drawings.append(SummaryRow("Analysis procedure", ["equivalent lateral force"] * len(parts), [""] * len(parts)))
+    procedures = ["modal response spectrum" if by_modes else "equivalent lateral force" for by_modes in modal]
+    drawings.append(SummaryRow("Analysis procedure", procedures, [""] * len(parts)))
     columns = [f"{part.id}: {part.title}" if part.id else "Calculation" for part in parts]
     return [
         Summary("answer", "Governing results", columns, head + answer),
@@ -148,7 +163,7 @@ def _line(part: Scope, name: str) -> str:
 def _shown(part: Scope, name: str) -> str:
     entry = part.find(name)
     if entry is None:
-        return NOT_CHECKED if name in ("drift", "stability", "procedure", "system_permitted") else "not stated"
+        return NOT_CHECKED if name in CHECKS else "not stated"
     line = entry.line
     if line.kind == "check":
         at = f" ({line.row})" if line.row else ""

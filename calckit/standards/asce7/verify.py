@@ -13,7 +13,14 @@ from calckit import units
 from calckit.core.calc import Calc
 from calckit.core.handle import Handle
 from calckit.errors import MismatchError
-from calckit.standards.asce7 import verify_components, verify_effects, verify_ground, verify_plan, verify_structure
+from calckit.standards.asce7 import (
+    verify_components,
+    verify_effects,
+    verify_ground,
+    verify_modal,
+    verify_plan,
+    verify_structure,
+)
 
 Given = Mapping[str, Any]
 Results = dict[str, Any]
@@ -277,5 +284,6 @@ ADAPTERS: dict[str, Callable[[Given], Results]] = {
     **verify_ground.ADAPTERS,
     **verify_components.ADAPTERS,
     "asce7.ex11.wall_and_parapet_Fp": _wall_and_parapet,
+    **verify_modal.ADAPTERS,
 }
 """What runs each check, by its id."""
