@@ -30,6 +30,7 @@ LINES = "calckit/report/lines.py"
 LOG = "calckit/report/checklog.py"
 CHECKED = "calckit/report/checked.py"
 ISSUE = "calckit/report/issue.py"
+ASCE7 = "calckit/standards/asce7/"
 
 ROWS = "tests/report/test_requirement_rows.py::test_"
 PACKAGE = "tests/report/test_requirement_package.py::test_"
@@ -37,6 +38,8 @@ OF_PDF = "tests/report/test_pdf.py::test_"
 OF_LOG = "tests/report/test_checklog.py::test_"
 OF_ISSUE = "tests/report/test_issue.py::test_"
 OF_STATUS = "tests/report/test_status.py::test_"
+ASKED = "tests/report/test_requirement_questions.py::test_"
+OF_QUESTIONS = "tests/standards/asce7/test_questions.py::test_"
 OF_CHECK = "tests/report/test_checked.py::test_"
 
 
@@ -141,6 +144,10 @@ ALL = [
     _of("B18", "calckit/core/scope.py", 'self.state(name, usual, "given", source, detail=DEFAULT)', "pass",
         PACKAGE + "b18_what_nobody_typed_is_called_default"),
     _of("B19", TYPST, "for s in view.answer { summary(s) }", "", PACKAGE + "b19_governing_results_stand_on_sheet_2"),
+    _of("B20", ASCE7 + "estimate_rules.py", '"100*(V_e/V - 1)"', '"100*(V/V_e - 1)"',
+        ASKED + "b20_an_independent_estimate_stands_beside_the_base_shear_with_the_difference"),
+    _of("B22", ASCE7 + "site_report.py", "if given == in_use:", "if given:",
+        OF_QUESTIONS + "site_class_against_the_report"),
     _of("B21", "calckit/standards/asce7/summary.py", '    ("Response modification coefficient", ("R",)),\n', "",
         PACKAGE + "b21_the_seismic_data_for_the_drawings_are_complete"),
     _of("B23", TYPST, "author: (sheet-title.prepared_by, sheet-title.firm, ()).find(name => name != \"\"),",
@@ -174,6 +181,15 @@ ALL = [
     _of("C13", VIEW, 'if line.kind in ("given", "assumption") or (line.kind == "judgment" and line.symbol):',
         'if line.kind in ("given", "assumption"):',
         PACKAGE + "c13_every_question_prints_its_answer_or_that_there_is_none"),
+    _of(" ".join(f"S{n}" for n in range(1, 23)), ASCE7 + "questions.py", "for question in QUESTIONS)",
+        "for question in ())",
+        *(f"{ASKED}each_question_prints_in_both_files_with_its_answer_or_as_an_open_item[S{n}]" for n in range(1, 23))),
+    _of("S6 S13", ASCE7 + "questions_rules.py", ' Need("A_x amplification", where=_AMPLIFIED)', "",
+        OF_QUESTIONS + "irregularities_by_numbers_come_before_answers_and_torsion_asks_for_its_amplification"),
+    _of("S19", ASCE7 + "questions.py", "True, OWNER))", "False, OWNER))",
+        OF_QUESTIONS + "what_no_line_answers_is_an_open_item_of_the_originator"),
+    _of("S21", ASCE7 + "questions.py", 'return "" if need.text in line.text else', 'return "" if True else',
+        OF_QUESTIONS + "cracked_stiffness_is_read_from_what_was_said_of_the_model"),
     _of("D1", PAGE, "default-src 'none'; style-src", "default-src *; style-src",
         PACKAGE + "d1_the_page_needs_no_script_and_no_network"),
     _of("D2", "calckit/report/signature.py", '"sha1": item.sha1,', '"sha1": item.sha256,',

@@ -103,7 +103,7 @@ def build(record: Record, content: Content, revised: Revised | None = None) -> V
         counts=tuple((word, sum(line.verdict == word for line in record.lines)) for word in (OK, NOT_OK, NOT_CHECKED)),
         not_met=tuple(lines.view(line) for line in record.lines if line.verdict in (NOT_OK, NOT_CHECKED)),
         margins=tuple(
-            Statement(_called(line), f"{line.margin.shown} {line.margin.to}", (Ref(line.n, line.id),))
+            Statement(_of_part(line), f"{line.margin.shown} {line.margin.to}", (Ref(line.n, line.id),))
             for line in record.lines
             if line.margin
         ),
@@ -125,8 +125,9 @@ def build(record: Record, content: Content, revised: Revised | None = None) -> V
     )
 
 
-def _called(line: Line) -> str:
-    return line.meaning or line.id
+def _of_part(line: Line) -> str:
+    called = line.meaning or line.id
+    return f"{line.part}: {called}" if line.part else called
 
 
 def _revisions(facts: dict[str, Any], revised: Revised | None) -> tuple[Revision, ...]:

@@ -13,6 +13,7 @@ from calckit.standards.asce7 import (
     base_reactions_rules,
     components_rules,
     diaphragm_forces_rules,
+    estimate_rules,
     formulas,
     ground_rules,
     irregularity_rules,
@@ -20,6 +21,7 @@ from calckit.standards.asce7 import (
     modal_rules,
     model_rules,
     plan_rules,
+    questions_rules,
     structure_rules,
     symbols,
     wall_forces_rules,
@@ -29,6 +31,7 @@ from calckit.standards.asce7 import (
 ROOMS: tuple[ModuleType, ...] = (
     symbols, formulas, ground_rules, structure_rules, model_rules, modal_rules, weight_rules, irregularity_rules,
     plan_rules, diaphragm_forces_rules, load_effects_rules, base_reactions_rules, wall_forces_rules, components_rules,
+    estimate_rules, questions_rules,
 )  # fmt: skip
 """Modules with declarations: a tuple SYMBOLS, formulas by their Python names."""
 

@@ -19,6 +19,7 @@ from calckit.standards.asce7 import irregularity_rules as rules
 from calckit.standards.asce7.clauses import rule, rule_of
 from calckit.standards.asce7.found import IRREGULARITIES, finding, present, with_findings
 from calckit.standards.asce7.hazard import of_2022
+from calckit.standards.asce7.margins import to_limit
 
 if TYPE_CHECKING:
     from calckit.core.scope import Scope
@@ -154,6 +155,8 @@ def _torsional(scope: Scope) -> list[Handle]:
     if finding(scope, "diaphragm") == "flexible":
         text = "flexible diaphragm: the types are those of rigid and semirigid diaphragms"
         return [_write(scope, name, "no", text, source, rests) for name in ("H1a", "H1b")]
+    for name in ("r_Dplus", "r_Dminus"):
+        _margin_of_ends(scope, name)
     ratios = _ratios(scope, "r_Dplus") + _ratios(scope, "r_Dminus")
     beyond = {limit: [each for each in ratios if each[1] > limit] for limit in (1.2, 1.4)}
     severe = _decide(scope, "H1b", beyond[1.4], 1.4, ">", source, rests)
@@ -166,6 +169,16 @@ def _torsional(scope: Scope) -> list[Handle]:
         text = "over 75 % of the strength of a story on one side of its center of mass"
         return [_write(scope, "H1a", "yes", text, source, rests), severe]
     return [_decide(scope, "H1a", [], 1.2, ">", source, rests), severe]
+
+
+def _margin_of_ends(scope: Scope, name: str) -> None:
+    """How near the largest ratio of end drifts is to the limit of the next type."""
+    entry = scope.find(name)
+    if entry is not None and (ratios := _ratios(scope, name)):
+        largest = max(value for _, value, _ in ratios)
+        limit, kind = (1.2, "H1a") if largest <= 1.2 else (1.4, "H1b")
+        words = f"{limit:g}, above which {kind} is present"
+        entry.line.margin = to_limit(f"largest {scope.plain(name)}", largest, limit, words)
 
 
 def _amplification(scope: Scope, cases: Sequence[int]) -> list[Handle]:
@@ -185,6 +198,8 @@ def _amplification(scope: Scope, cases: Sequence[int]) -> list[Handle]:
             f"end_means_{word}", f"Displacements of the diaphragm ends, mass shifted toward {'+−'[case]}", columns
         )
     made = scope.compute(rules.A_X if len(cases) == 2 else rules.A_X_ONE_CASE, rests=("H1a_found", "H1b_found"))
+    if isinstance(made.value, list):
+        made.line.margin = to_limit(f"largest {scope.plain('A_x')}", max(made.value), 3.0, "3, its upper limit")
     words = [("plus", "minus")[case] for case in cases]
     columns = [f"{name}{word}" for word in words for name in ("d_max", "d_avg")]
     scope.table("amplification", "Amplification of accidental torsion", [*columns, "A_x"])

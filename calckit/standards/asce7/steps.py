@@ -16,6 +16,7 @@ from calckit.standards.asce7 import (
     components,
     conditions,
     diaphragm_forces,
+    estimate,
     forces,
     hazard,
     irregularity,
@@ -23,7 +24,9 @@ from calckit.standards.asce7 import (
     modal,
     model,
     plan,
+    questions,
     redundancy,
+    site_report,
     spectrum,
     structure,
     systems,
@@ -143,6 +146,10 @@ class Steps:
     >>> _, _ = x.methods.correlation(), x.methods.combine("V_m", "V_xn", "Delta_n")
     >>> x.asce7.modal_scaling()
     [X.f_V = 1.177, X.f_Delta = 1, X.V_xd = 37.13, 64.26, X.Delta_d = 0.5257, 0.5459]
+    >>> x.asce7.second_estimate(), calc.asce7.site_report()
+    (X.e_V = 0.0, site_report = NOT CHECKED)
+    >>> calc.asce7.reviewers_questions()[0]
+    review_Q1 = risk_category II, I_e = 1.00
     """
 
     def __init__(self, scope: Scope) -> None:
@@ -273,6 +280,10 @@ class Steps:
         """theta and theta_max (12.8.7) and the check of each story."""
         return forces.stability(self._scope)
 
+    def second_estimate(self) -> Handle:
+        """V_e by a period that does not rest on 12.8.2 (Rayleigh's from delta_xe, else by stories), e_V against V."""
+        return estimate.second_estimate(self._scope)
+
     def separation(self) -> Handle:
         """delta_M, delta_MT (12.12.3) and their check, from delta_eM, delta_M2 of a neighbor, and d_gap."""
         return model.separation(self._scope)
@@ -354,6 +365,18 @@ class Steps:
     def wall_forces(self) -> Handles:
         """The force on structural walls out of plane (12.11.1) and on their anchorage (12.11.2), from w_w and W_pa."""
         return wall_forces.wall_forces(self._scope)
+
+    # the whole calculation
+    def site_report(self) -> Handle:
+        """The check of site_class against `report_class`, given with the geotechnical report as its source."""
+        return site_report.site_report(self._scope)
+
+    def reviewers_questions(self) -> Handles:
+        """Q1 to Q22: each with the lines that answer it, in all directions; what none answers is an open item.
+
+        Stands last. Where one does not apply, say so before: `answer("Q21", "n/a", basis=...)`, also for one part.
+        """
+        return questions.reviewers_questions(self._scope)
 
     # chapter 13
     def component_force(self) -> Handle:

@@ -64,6 +64,7 @@ SUPPLIERS = {
     "V_drift": "asce7.analysis_model()",
     "D_i": 'rows("walls", ...), column D_i',
     "t_i": 'rows("walls", ...), column t_i',
+    "report_class": 'given("report_class", ...), the class in the geotechnical report or "none: why"',
     "component": 'given("component", ...), or the factors of the component with their source',
     "I_p": 'answer("I_p", "1.0" or "1.5", basis=...)',
 }
@@ -140,6 +141,11 @@ def summaries(calc: Calc) -> list[Summary]:
         Summary("drawings", "Seismic data for the drawings", columns, drawings),
         *components,
     ]
+
+
+def directions(calc: Calc) -> list[Scope]:
+    """The parts that answer for a direction, or the calculation where it has no parts."""
+    return _directions(calc, with_components(calc))
 
 
 def _directions(calc: Calc, carried: Sequence[Scope]) -> list[Scope]:

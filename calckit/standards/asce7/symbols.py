@@ -13,6 +13,7 @@ from calckit.core.table import load
 
 _YES_NO = ("yes", "no")
 _CATEGORIES = ("A", "B", "C", "D", "E", "F")
+_SITE_CLASSES = ("A", "B", "B assumed", "BC", "C", "CD", "D", "D default", "DE", "E", "F", "default")
 _DRIFT_CLASSES = tuple(load("calckit.standards.asce7", "drift").rows)
 
 
@@ -35,9 +36,9 @@ def _question(name: str, meaning: str) -> Symbol:
 _GROUND_MOTION = (
     _ordinate("S_S", "mapped risk-targeted spectral ordinate at 0.2 s"),
     _ordinate("S_1", "mapped risk-targeted spectral ordinate at 1 s"),
+    Symbol("report_class", "site class that the geotechnical report gives", "words", choices=_SITE_CLASSES),
     Symbol(
-        "site_class", "site class", "words",
-        choices=("A", "B", "B assumed", "BC", "C", "CD", "D", "D default", "DE", "E", "F", "default"),
+        "site_class", "site class", "words", choices=_SITE_CLASSES,
     ),
     Symbol(
         "hazard_basis", "where the design ordinates come from", "words",
