@@ -58,9 +58,10 @@ def motion(scope: Writer, record: Motion, source: str, number: int) -> Handles:
         for symbol, value, unit in (
             ("PGA_n", found.PGA / G, ""), ("PGV_n", found.PGV, "m/s"), ("PGD_n", found.PGD, "m"),
             ("I_An", motions.arias_intensity(record), "m/s"), ("D_n", end - start, "s"),
-            ("CAV_n", motions.cumulative_absolute_velocity(record), "m/s"), ("v_endn", left, ""),
+            ("CAV_n", motions.cumulative_absolute_velocity(record), "m/s"),
         ):  # fmt: skip
             made.append(write_number(scope, numbered(symbol, number), value, unit, method))
+        made.append(write_residual(scope, numbered("v_endn", number), left, method))
         return made
 
 

@@ -147,7 +147,7 @@ class Steps:
     >>> x.asce7.modal_scaling()
     [X.f_V = 1.177, X.f_Delta = 1, X.V_xd = 37.13, 64.26, X.Delta_d = 0.5257, 0.5459]
     >>> x.asce7.second_estimate(), calc.asce7.site_report()
-    (X.e_V = 0.0, site_report = NOT CHECKED)
+    (X.e_V = 0, site_report = NOT CHECKED)
     >>> calc.asce7.reviewers_questions()[0]
     review_Q1 = risk_category II, I_e = 1.00
     """

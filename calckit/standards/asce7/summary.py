@@ -136,6 +136,8 @@ def summaries(calc: Calc) -> list[Summary]:
     procedures = ["modal response spectrum" if by_modes else "equivalent lateral force" for by_modes in modal]
     drawings.append(SummaryRow("Analysis procedure", procedures, [""] * len(parts)))
     columns = [f"{part.id}: {part.title}" if part.id else "Calculation" for part in parts]
+    if not building_too(calc):
+        return [Summary("answer", "Governing results", columns, [row for row in head + answer if any(row.lines)])]
     return [
         Summary("answer", "Governing results", columns, head + answer),
         Summary("drawings", "Seismic data for the drawings", columns, drawings),

@@ -184,7 +184,7 @@ def test_plan_parts_are_no_columns_of_the_first_sheets() -> None:
     calc = stories()
     calc.part("X").given("rho", 1.0, source="P")
     calc.part("P1").asce7.rigid_distribution("1", along_x="X")
-    assert [summary.columns for summary in calc.standard.summaries(calc)] == [["X: X"], ["X: X"]]
+    assert {tuple(summary.columns) for summary in calc.standard.summaries(calc)} == {("X: X",)}
 
 
 @pytest.mark.parametrize("kind", ["flexible", "semirigid"])
