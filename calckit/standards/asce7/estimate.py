@@ -53,8 +53,8 @@ def second_estimate(scope: Scope) -> Handle:
 
 
 def _by_displacements(scope: Scope) -> None:
-    value, source = GRAVITY[scope.system], Source("standard gravity, 9.80665 m/s² by definition")
-    scope.state("g", value, "table", source, detail=f"standard value: {value}")
+    value, source = GRAVITY[scope.system], Source("standard gravity")
+    scope.state("g", value, "table", source, detail="9.80665 m/s² by definition")
     if scope.number("V_applied") is not None:
         scope.compute(rules.T_E_MODEL, detail="forces of the model in proportion to the shear applied")
     else:
