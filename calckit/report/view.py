@@ -102,11 +102,7 @@ def build(record: Record, content: Content, revised: Revised | None = None) -> V
         drawings=_summaries(record, "drawings", lines),
         counts=tuple((word, sum(line.verdict == word for line in record.lines)) for word in (OK, NOT_OK, NOT_CHECKED)),
         not_met=tuple(lines.view(line) for line in record.lines if line.verdict in (NOT_OK, NOT_CHECKED)),
-        margins=tuple(
-            Statement(_of_part(line), f"{line.margin.shown} {line.margin.to}", (Ref(line.n, line.id),))
-            for line in record.lines
-            if line.margin
-        ),
+        margins=tuple(_margins(record)),
         open_items=_items(items, lines),
         to_confirm=_items([item for item in record.open_items if item.group == "confirm"], lines),
         overrides=tuple(view for line in record.lines if (view := lines.override(line))),
@@ -125,9 +121,15 @@ def build(record: Record, content: Content, revised: Revised | None = None) -> V
     )
 
 
-def _of_part(line: Line) -> str:
-    called = line.meaning or line.id
-    return f"{line.part}: {called}" if line.part else called
+def _margins(record: Record) -> Iterator[Statement]:
+    """Each margin with its line; parts of which the same is said share one row."""
+    found: dict[tuple[str, str], list[Line]] = {}
+    for line in record.lines:
+        if line.margin:
+            found.setdefault((line.meaning or line.id, f"{line.margin.shown} {line.margin.to}"), []).append(line)
+    for (called, text), lines in found.items():
+        parts = ", ".join(line.part for line in lines if line.part)
+        yield Statement(f"{parts}: {called}" if parts else called, text, tuple(Ref(x.n, x.id) for x in lines))
 
 
 def _revisions(facts: dict[str, Any], revised: Revised | None) -> tuple[Revision, ...]:

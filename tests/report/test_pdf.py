@@ -223,7 +223,7 @@ def test_the_whole_answer_stands_on_sheets_2_and_3() -> None:
     for text in (
         "Governing results", "X: East-west Y: North-south", "Seismic data for the drawings",
         "Checks: 1 OK, 1 NOT OK, 1 NOT CHECKED", "landscape architect", "Overrides", "the owner asks for a margin here",
-        "To be confirmed against the standard: 16 tables and clauses", "S_DS 11.3 % above category C (line 12/4)",
+        "To be confirmed against the standard: 16 tables and clauses", "S_DS 11.3 % above category C 12/4",
     ):  # fmt: skip
         assert text in said
 

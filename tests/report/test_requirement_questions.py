@@ -140,14 +140,15 @@ def test_margins_stand_in_one_table_of_both_files_with_line_and_sheet() -> None:
     assert len(found) > 6
     for line in found:
         assert line.margin
-        label = f"{line.part}: {line.meaning}" if line.part else line.meaning
         for text in texts():
-            assert squeezed(label) in text and squeezed(f"{line.margin.shown} {line.margin.to}") in text
+            assert squeezed(line.meaning) in text and squeezed(f"{line.margin.shown} {line.margin.to}") in text
     answer = "".join(squeezed(sheets().reader.pages[number].extract_text()) for number in (1, 2))
     table = answer.partition("Distancetothenextlimit")[2].partition("Seismicdataforthedrawings")[0]
     assert table.count("ValueMarginLine/sheet") == 2  # two halves side by side
     for line in found:
         assert re.search(rf"(?<!\d){line.n}/\d", table), line.id
+    shared = [line.n for line in found if line.symbol == "C_sfloor"]  # the same is said of both directions
+    assert re.search(rf"X,Y:seismicresponsecoefficient,lowerlimit.*{shared[0]}/\d+,{shared[1]}/\d", table)
     assert "Margins:" not in answer
     kinds = {line.id.rpartition(".")[2] for line in found}
     assert {"SDC_DS", "SDC_D1", "SDC", "C_s", "C_sfloor", "system_permitted", "r_Dplus"} <= kinds
