@@ -28,7 +28,7 @@ TEMPLATES = ROOT / "templates"
 def test_there_is_an_example_of_every_template_and_of_the_second_pass() -> None:
     assert [path.name for path in NOTEBOOKS] == sorted([*(path.name for path in TEMPLATES.glob("*.ipynb")), *PASSES])
 
-LEAST_CHECKED = {"component_force": 6}
+LEAST_CHECKED = {"component_force": 6, "building_modal_response": 8, "ground_motion": 6}
 """Cells whose outputs are compared, where a notebook has fewer than ten that write lines."""
 
 
