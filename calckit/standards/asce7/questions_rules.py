@@ -12,6 +12,7 @@ from calckit.core.symbol import Symbol
 from calckit.standards.asce7.found import IRREGULARITIES
 
 NOT_APPLICABLE = "n/a"
+_BY_MODES = (("modal_model", ("stick model", "three-dimensional analysis")),)
 _AMPLIFIED = (("H1a_found H1a", ("yes",)), ("SDC", ("C", "D", "E", "F")))
 
 
@@ -104,7 +105,9 @@ QUESTIONS = (
     Question("Q18", "vertical effect and overstrength in the combinations", _each("r_Ev", "Omega_0", "combinations")),
     Question("Q19", "both directions at once", _each("directions")),
     Question(
-        "Q20", "modal analysis: mass, scaling, combination", (), because="the lateral forces here are static", rests="V"
+        "Q20", "modal analysis: mass, scaling, combination",
+        tuple(Need(name, where=_BY_MODES) for name in ("modes_enough", "f_V", "f_Delta")),
+        because="the lateral forces here are static", rests="V",
     ),
     Question("Q21", "stiffness of cracked sections in the model", (Need("V_applied", text="stiffness: "),)),
     Question(

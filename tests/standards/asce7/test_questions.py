@@ -11,6 +11,7 @@ import pytest
 
 from calckit.core.assemble import assemble
 from calckit.core.calc import Calc
+from calckit.core.standard import edition
 from calckit.errors import InputError
 from calckit.report.reevaluate import reevaluate
 from calckit.standards.asce7.declared import SYMBOLS
@@ -279,3 +280,9 @@ def test_the_ratio_of_end_drifts_says_how_near_the_next_type_is() -> None:
         assert margin is not None and f"{margin.shown} {margin.to}" == text
     margin = calc.lines.entries["A_x"].line.margin
     assert margin is not None and margin.to == "below 3, its upper limit"
+
+
+def test_modal_analysis_is_answered_by_its_lines_where_there_are_modes() -> None:
+    (question,) = (each for each in QUESTIONS if each.id == "Q20")
+    words = dict(question.needs[0].where)["modal_model"]
+    assert set(words) == set(edition("ASCE 7-16").symbols["modal_model"].choices)
