@@ -9,7 +9,6 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping, Sequence
 from typing import Any
 
-from calckit import units
 from calckit.core.calc import Calc
 from calckit.core.handle import Handle
 from calckit.errors import MismatchError
@@ -21,6 +20,7 @@ from calckit.standards.asce7 import (
     verify_plan,
     verify_structure,
 )
+from calckit.standards.asce7.published import in_force, in_unit, start
 
 Given = Mapping[str, Any]
 Results = dict[str, Any]
@@ -30,19 +30,10 @@ _MASONRY = "building frame: special reinforced masonry"
 _HOUSE = "bearing wall: light frame wood with wood panel or steel sheet"
 
 
-def _start(edition: str = "ASCE 7-16", /, **inputs: Any) -> Calc:
-    """A calculation with the inputs of a check, each from the document that the check names."""
-    calc = Calc(project="Published check", number="verify", standard=edition)
-    calc.document("P", title="The document named by the check")
-    for name, value in inputs.items():
-        calc.given(name, value, source="P")
-    return calc
-
-
 def _site_specific(given: Given, edition: str = "ASCE 7-16", /, **more: Any) -> Calc:
     """Started from design ordinates; S_S, T_L and the site class do not enter the quantities checked."""
     unused = {"S_S": 1.0, "S_1": given["S_1"], "T_L": f"{given.get('T_L', 8)} s", "site_class": "C"}
-    calc = _start(edition, hazard_basis="site-specific", **unused, **more)
+    calc = start(edition, hazard_basis="site-specific", **unused, **more)
     calc.asce7.site_specific_values(given["S_DS"], given.get("S_D1", given.get("S_D1_rounded")), source="P")
     calc.asce7.design_spectrum()
     return calc
@@ -51,7 +42,7 @@ def _site_specific(given: Given, edition: str = "ASCE 7-16", /, **more: Any) -> 
 def _mapped(given: Given, **more: Any) -> Calc:
     """Started from mapped values; T_L does not enter the quantities checked."""
     site_class = given["site_class"].replace("(", "").replace(")", "")
-    return _start(site_class=site_class, S_S=given["S_S"], S_1=given["S_1"], T_L="8 s", **more)
+    return start(site_class=site_class, S_S=given["S_S"], S_1=given["S_1"], T_L="8 s", **more)
 
 
 def _levels(calc: Calc, given: Given, **columns: Sequence[Any]) -> None:
@@ -62,23 +53,11 @@ def _levels(calc: Calc, given: Given, **columns: Sequence[Any]) -> None:
     calc.levels("\n".join(", ".join(map(str, row)) for row in (header, *rows)), source="P")
 
 
-def _value(calc: Calc, name: str, unit: str = "") -> Any:
-    """The value in force of a line, in `unit`."""
-    return _in(Handle(calc, name), unit)
-
-
-def _in(handle: Handle, unit: str) -> Any:
-    value = handle.value
-    if isinstance(value, list):
-        return [units.convert(entry, handle.unit, unit) for entry in value]
-    return units.convert(value, handle.unit, unit) if isinstance(value, float) else value
-
-
 def _same(calc: Calc, given: Given, *names: str) -> None:
     """Hold table values of a step against those the check states."""
     for name in names:
-        if _value(calc, name) != given[name]:
-            raise MismatchError(f"{name}: the table gives {_value(calc, name)}, the check states {given[name]}")
+        if in_force(calc, name) != given[name]:
+            raise MismatchError(f"{name}: the table gives {in_force(calc, name)}, the check states {given[name]}")
 
 
 def _stockton_forces(given: Given) -> Results:
@@ -95,21 +74,21 @@ def _stockton_forces(given: Given) -> Results:
     calc.asce7.vertical_distribution()
     _same(calc, given, "R", "C_d", "Omega_0", "C_t", "x", "C_u")
     return {
-        "W": _value(calc, "W", "kip"),
-        "T_a": _value(calc, "T_a", "s"),
-        "T": _value(calc, "T", "s"),
-        "C_s_basic": _value(calc, "C_sbasic"),
-        "C_s_cap": _value(calc, "C_scap"),
-        "C_s_floor": _value(calc, "C_sfloor"),
-        "C_s": _value(calc, "C_s"),
-        "V": _value(calc, "V", "kip"),
-        "k": _value(calc, "k"),
+        "W": in_force(calc, "W", "kip"),
+        "T_a": in_force(calc, "T_a", "s"),
+        "T": in_force(calc, "T", "s"),
+        "C_s_basic": in_force(calc, "C_sbasic"),
+        "C_s_cap": in_force(calc, "C_scap"),
+        "C_s_floor": in_force(calc, "C_sfloor"),
+        "C_s": in_force(calc, "C_s"),
+        "V": in_force(calc, "V", "kip"),
+        "k": in_force(calc, "k"),
     }
 
 
 def _distributed(given: Given, V: float, **overrides: float) -> Calc:
     """A stated base shear distributed over the height; the period only decides k."""
-    calc = _start(V=f"{V} kip", T=f"{given.get('T_rounded', 2.2)} s")
+    calc = start(V=f"{V} kip", T=f"{given.get('T_rounded', 2.2)} s")
     for name, value in overrides.items():
         calc.override(name, value, reason="stated by the check", by="kit")
     _levels(calc, given, h_x_ft=given["h_x"], w_x_kip=given["w_x"])
@@ -120,34 +99,34 @@ def _distributed(given: Given, V: float, **overrides: float) -> Calc:
 def _stockton_distribution(given: Given) -> Results:
     calc = _distributed(given, given["V"], k=given["k"])
     return {
-        "w_h_k": _value(calc, "wh_x"),
-        "sum_w_h_k": _value(calc, "sum_wh"),
-        "C_vx": _value(calc, "C_vx"),
-        "F_x": _value(calc, "F_x", "kip"),
-        "V_x": _value(calc, "V_x", "kip"),
+        "w_h_k": in_force(calc, "wh_x"),
+        "sum_w_h_k": in_force(calc, "sum_wh"),
+        "C_vx": in_force(calc, "C_vx"),
+        "F_x": in_force(calc, "F_x", "kip"),
+        "V_x": in_force(calc, "V_x", "kip"),
     }
 
 
 def _stockton_overturning(given: Given) -> Results:
     calc = _distributed(given, given["V"], k=given["k"])
-    if _value(calc, "h_sx", "ft") != given["h_sx"]:
+    if in_force(calc, "h_sx", "ft") != given["h_sx"]:
         raise MismatchError("h_sx: the heights of the levels give other story heights than the check states")
-    return {"M_x_kip_ft": _value(calc, "M_x", "kip*ft")}
+    return {"M_x_kip_ft": in_force(calc, "M_x", "kip*ft")}
 
 
 def _stockton_drift(given: Given) -> Results:
-    calc = _start(
+    calc = start(
         system=_STEEL, risk_category="II", drift_class="all other", C_d=given["C_d"], I_e=given["I_e"], SDC="C"
     )
     _levels(calc, given, h_sx_in=given["h_sx_in"], delta_xe_in=given["delta_xe_in"])
     elastic = calc.line("Delta_e", "delta_xe - below(delta_xe)", unit="in", meaning="elastic story drift")
     check = calc.asce7.drift()
-    if _value(calc, "r_Delta") != given["drift_limit"]:
-        raise MismatchError(f"drift limit: the table gives {_value(calc, 'r_Delta')}")
+    if in_force(calc, "r_Delta") != given["drift_limit"]:
+        raise MismatchError(f"drift limit: the table gives {in_force(calc, 'r_Delta')}")
     return {
-        "Delta_e_in": _in(elastic, "in"),
-        "Delta_in": _value(calc, "Delta", "in"),
-        "Delta_a_in": _value(calc, "Delta_a", "in"),
+        "Delta_e_in": in_unit(elastic, "in"),
+        "Delta_in": in_force(calc, "Delta", "in"),
+        "Delta_a_in": in_force(calc, "Delta_a", "in"),
         "levels_failing_unrelieved": _failing(check),
     } | _stockton_relieved(given)
 
@@ -167,11 +146,11 @@ def _stockton_relieved(given: Given) -> Results:
     _levels(calc, given, h_sx_in=given["h_sx_in"], w_x_kip=given["w_x"], delta_xe_in=given["delta_xe_in"])
     for step in ("system", "seismic_weight", "approximate_period", "period", "base_shear"):
         getattr(calc.asce7, step)()
-    calc.analysis(V_applied=f"{_value(calc, 'V', 'kip')} kip")
+    calc.analysis(V_applied=f"{in_force(calc, 'V', 'kip')} kip")
     calc.asce7.analysis_model()
     check = calc.asce7.drift()
     return {
-        "Delta_relieved_in": _value(calc, "Delta", "in"),
+        "Delta_relieved_in": in_force(calc, "Delta", "in"),
         "levels_failing_relieved": _failing(check),
     }
 
@@ -189,14 +168,14 @@ def _masonry(given: Given) -> Results:
     _same(calc, given, "R", "C_t", "x")
     spread = _distributed(given, given["V_for_distribution"])
     return {
-        "T_a": _value(calc, "T_a", "s"),
-        "C_s_basic": _value(calc, "C_sbasic"),
-        "C_s_cap_from_rounded_inputs": _value(calc, "C_scap"),
-        "C_s_floor": _value(calc, "C_sfloor"),
-        "C_s": _value(calc, "C_s"),
-        "W": _value(calc, "W", "kip"),
-        "V": _value(calc, "V", "kip"),
-        "F_x": _value(spread, "F_x", "kip"),
+        "T_a": in_force(calc, "T_a", "s"),
+        "C_s_basic": in_force(calc, "C_sbasic"),
+        "C_s_cap_from_rounded_inputs": in_force(calc, "C_scap"),
+        "C_s_floor": in_force(calc, "C_sfloor"),
+        "C_s": in_force(calc, "C_s"),
+        "W": in_force(calc, "W", "kip"),
+        "V": in_force(calc, "V", "kip"),
+        "F_x": in_force(spread, "F_x", "kip"),
     }
 
 
@@ -204,7 +183,7 @@ def _ordinates(given: Given) -> Results:
     calc = _mapped(given)
     calc.asce7.design_spectrum()
     names = ("F_a", "F_v", "S_MS", "S_M1", "S_DS", "S_D1")
-    return {name: _value(calc, name) for name in names} | {name: _value(calc, name, "s") for name in ("T_0", "T_S")}
+    return {name: in_force(calc, name) for name in names} | {name: in_force(calc, name, "s") for name in ("T_0", "T_S")}
 
 
 def _house(given: Given) -> Results:
@@ -220,13 +199,13 @@ def _house(given: Given) -> Results:
     calc.asce7.load_effects()
     _same(calc, given, "R", "C_t", "x")
     return _ordinates(given) | {
-        "S_M1_with_F_v_printed": _value(calc, "S_M1"),
-        "S_D1_with_F_v_printed": _value(calc, "S_D1"),
-        "T_a": _value(calc, "T_a", "s"),
-        "C_s_basic": _value(calc, "C_sbasic"),
-        "C_s_cap_with_F_v_printed": _value(calc, "C_scap"),
-        "C_s": _value(calc, "C_s"),
-        "ASD_coefficient": _value(calc, "C_sA"),
+        "S_M1_with_F_v_printed": in_force(calc, "S_M1"),
+        "S_D1_with_F_v_printed": in_force(calc, "S_D1"),
+        "T_a": in_force(calc, "T_a", "s"),
+        "C_s_basic": in_force(calc, "C_sbasic"),
+        "C_s_cap_with_F_v_printed": in_force(calc, "C_scap"),
+        "C_s": in_force(calc, "C_s"),
+        "ASD_coefficient": in_force(calc, "C_sA"),
     }
 
 
@@ -246,16 +225,16 @@ def _coefficients(given: Given) -> Results:
         calc = _site_specific({**given, "S_1": S_1}, **more)
         calc.asce7.base_shear()
         for name, line in (("C_s_cap", "C_scap"), ("C_s_floor", "C_sfloor"), ("C_s", "C_s")):
-            results[name].append(_value(calc, line))
+            results[name].append(in_force(calc, line))
     return results
 
 
 def _period_limit(given: Given) -> Results:
     values = []
     for S_D1 in given["S_D1"]:
-        calc = _start(S_D1=S_D1, T_a="1 s")  # T_a does not enter the quantity checked
+        calc = start(S_D1=S_D1, T_a="1 s")  # T_a does not enter the quantity checked
         calc.asce7.period()
-        values.append(_value(calc, "C_u"))
+        values.append(in_force(calc, "C_u"))
     return {"C_u": values}
 
 

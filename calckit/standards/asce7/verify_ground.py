@@ -9,19 +9,12 @@ from collections.abc import Callable, Mapping, Sequence
 from typing import Any
 
 from calckit.core.calc import Calc
+from calckit.standards.asce7.published import start
 
 Given = Mapping[str, Any]
 Results = dict[str, Any]
 
 _QUESTIONS = ("H1a", "H1b", "H2", "H3", "H4", "H5", "V1a", "V1b", "V2", "V3", "V4", "V5a", "V5b")
-
-
-def _start(edition: str, **inputs: Any) -> Calc:
-    calc = Calc(project="Published check", number="verify", standard=edition)
-    calc.document("P", title="The document named by the check")
-    for name, value in inputs.items():
-        calc.given(name, value, source="P")
-    return calc
 
 
 def _pasted(given: Given, *columns: str) -> str:
@@ -34,7 +27,7 @@ def _printout(given: Given, *columns: str, **more: Any) -> Calc:
     """From a 7-22 printout; S_S and S_1 below 0.6 do not enter the quantities checked."""
     names = ("site_class", "S_MS", "S_M1")
     inputs = {"S_S": 1.0, "S_1": 0.4, "T_L": f"{given.get('T_L', 8)} s", **{name: given[name] for name in names}}
-    calc = _start("ASCE 7-22", **inputs, **more)
+    calc = start("ASCE 7-22", **inputs, **more)
     calc.asce7.design_spectrum()
     calc.asce7.printed_ordinates(_pasted(given, *columns), source="P")
     return calc
@@ -62,7 +55,7 @@ def _default_envelope(given: Given) -> Results:
 def _peak_acceleration(given: Given) -> Results:
     results: Results = {"F_PGA": [], "PGA_M": []}
     for site_class, PGA in zip(given["site_class"], given["PGA"], strict=True):
-        calc = _start("ASCE 7-16", site_class=site_class, PGA=PGA)
+        calc = start("ASCE 7-16", site_class=site_class, PGA=PGA)
         calc.asce7.peak_acceleration()
         for name, values in results.items():
             values.append(float(calc[name]))
@@ -72,7 +65,7 @@ def _peak_acceleration(given: Given) -> Results:
 def _study(edition: str, given: Given) -> Calc:
     names = ("S_S", "S_1", "site_class")
     inputs = {name: given.get(name, fallback) for name, fallback in zip(names, (1.0, 0.4, "C"), strict=True)}
-    calc = _start(edition, hazard_basis="site-specific", T_L=f"{given.get('T_L', 8)} s", **inputs)
+    calc = start(edition, hazard_basis="site-specific", T_L=f"{given.get('T_L', 8)} s", **inputs)
     calc.asce7.site_specific_values(given["S_DS"], given["S_D1"], source="P")
     calc.asce7.design_spectrum()
     return calc

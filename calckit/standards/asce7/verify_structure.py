@@ -10,6 +10,7 @@ from collections.abc import Callable, Mapping, Sequence
 from typing import Any
 
 from calckit.core.calc import Calc
+from calckit.standards.asce7.published import pasted, start
 
 Given = Mapping[str, Any]
 Results = dict[str, Any]
@@ -17,23 +18,9 @@ Results = dict[str, Any]
 _STEEL = "moment frame: steel special moment frame"
 
 
-def _start(**inputs: Any) -> Calc:
-    """A calculation with the inputs of a check, each from the document that the check names."""
-    calc = Calc(project="Published check", number="verify")
-    calc.document("P", title="The document named by the check")
-    for name, value in inputs.items():
-        calc.given(name, value, source="P")
-    return calc
-
-
 def _levels(calc: Calc, columns: Mapping[str, Sequence[Any]], names: Sequence[Any]) -> None:
     """Type the table of levels."""
-    calc.levels(_pasted("level", names, columns), source="P")
-
-
-def _pasted(head: str, names: Sequence[Any], columns: Mapping[str, Sequence[Any]]) -> str:
-    rows = zip(names, *columns.values(), strict=True)
-    return "\n".join(", ".join(map(str, row)) for row in ((head, *columns), *rows))
+    calc.levels(pasted("level", names, columns), source="P")
 
 
 def _wall_period(given: Given) -> Results:
@@ -41,11 +28,11 @@ def _wall_period(given: Given) -> Results:
     results: Results = {}
     walls = {"D_i [ft]": given["D_i"], "t_i [in]": given["t_i_in"]}
     for method in ("walls", "table"):
-        calc = _start(
+        calc = start(
             system="bearing wall: special reinforced concrete shear wall", T_a_method=method,
             h_n=f"{given['h_n']} ft", A_B=f"{given['A_B']} ft**2",
         )  # fmt: skip
-        calc.rows("walls", _pasted("wall", range(1, len(given["D_i"]) + 1), walls), source="P")
+        calc.rows("walls", pasted("wall", range(1, len(given["D_i"]) + 1), walls), source="P")
         results["T_a_general" if method == "table" else "T_a"] = calc.asce7.approximate_period().value
         if method == "walls":
             results["C_w"] = calc["C_w"].value
@@ -53,7 +40,7 @@ def _wall_period(given: Given) -> Results:
 
 
 def _period_by_stories(given: Given) -> Results:
-    calc = _start(system=_STEEL, T_a_method="stories", h_n=f"{given['stories'] * given['h_sx']} ft")
+    calc = start(system=_STEEL, T_a_method="stories", h_n=f"{given['stories'] * given['h_sx']} ft")
     _levels(calc, {"h_sx [ft]": [given["h_sx"]] * given["stories"]}, range(given["stories"], 0, -1))
     return {"T_a": calc.asce7.approximate_period().value}
 
@@ -62,7 +49,7 @@ def _drift_relief(given: Given) -> Results:
     """The base shear for drift under each relief; S_S and the site class do not enter it."""
     shears = []
     for relief, T_L, S_1 in zip(given["relief"], given["T_L"], given["S_1"], strict=True):
-        calc = _start(
+        calc = start(
             hazard_basis="site-specific", S_S=1.5, S_1=S_1, T_L=f"{T_L} s", site_class="C", R=given["R"],
             I_e=given["I_e"], W=f"{given['W']} kip", T=f"{given['T']} s", T_drift=f"{given['T_drift']} s",
         )  # fmt: skip
@@ -80,7 +67,7 @@ def _stability(given: Given) -> Results:
     results: Results = {}
     cases = {"theta": ("none", "no"), "theta_with_relief": ("floor", "no"), "theta_P_delta_in_model": ("none", "yes")}
     for name, (relief, in_model) in cases.items():
-        calc = _start(
+        calc = start(
             system=_STEEL, risk_category="III", drift_class="all other", SDC="C", C_d=given["C_d"], I_e=given["I_e"],
             V=f"{given['V']} kip", T="0.4 s", beta=given["beta"],
         )  # fmt: skip
@@ -102,14 +89,14 @@ def _stability(given: Given) -> Results:
 
 
 def _drift_limit(given: Given) -> Results:
-    calc = _start(system=_STEEL, risk_category="II", drift_class="all other", SDC="D", rho=given["rho"])
+    calc = start(system=_STEEL, risk_category="II", drift_class="all other", SDC="D", rho=given["rho"])
     _levels(calc, {"h_sx [in]": [given["h_sx_in"]]}, ["Roof"])
     calc.asce7.drift()
     return {"Delta_a_in": calc["Delta_a"].value}
 
 
 def _separation(given: Given) -> Results:
-    calc = _start(
+    calc = start(
         delta_eM=f"{given['delta_e_in']} in", C_d=given["C_d"], I_e=given["I_e"],
         delta_M2=f"{given['delta_M2_in']} in",
     )  # fmt: skip
@@ -128,7 +115,7 @@ def _weight(given: Given) -> Results:
         rows.append([level, "storage", *(storage.get(name, 0) for name in units)])
     results: Results = {}
     for name, share in (("w_x", "counted"), ("w_x_left_out", "left out up to 5 %")):
-        calc = _start(storage_share=share)
+        calc = start(storage_share=share)
         _levels(calc, {"h_sx [ft]": [14] * len(given["level"])}, given["level"])
         made = calc.asce7.weight_take_off("\n".join(", ".join(map(str, row)) for row in rows), source="P")
         results[name] = made.value
