@@ -129,6 +129,29 @@ def spectra(count: int = 50, samples: int = 20_000, natural: int = 200) -> None:
     show(f"spectra, {count} records x {samples} samples x {natural} periods", ours, beside)
 
 
+ONE_RECORD = """
+import numpy as np
+dt, periods = 0.01, np.geomspace(0.05, 5, 100)
+record = np.random.default_rng(1).normal(size=(1, 4000)).cumsum() * np.hanning(4000)
+record[:, 0] = 0
+"""
+OURS = "from calckit.dynamics import response_spectrum as s; s(record, dt, periods, 0.05, refine='straight-line')"
+THEIRS = """
+from calckit.dynamics.spectrum import straight
+from tests.bench import filtered
+for period in periods:
+    part = int(2 ** np.ceil(np.log2(max(50 * dt / period, 1))))
+    finer = np.pad(straight(record, part), ((0, 0), (0, int(np.ceil(period / 2 * part / dt)))))
+    filtered(finer, dt / part, 2 * np.pi / period, 0.05)
+"""
+
+
+def one_record() -> None:
+    """One record from a fresh process, against a script that imports scipy.signal."""
+    ours, theirs = best(fresh("-c", ONE_RECORD + OURS), 3), best(fresh("-c", ONE_RECORD + THEIRS), 3)
+    show("one record from a fresh process", ours, f"{ours / theirs:.2f} of a script with scipy.signal")
+
+
 def modal(freedoms: int = 200) -> None:
     """Modes of a chain against scipy.linalg.eigh; in a process of one thread, where the two share no threads."""
     import numpy as np
@@ -162,5 +185,6 @@ if __name__ == "__main__":
     one_thread = os.environ | {"PYTHONPATH": str(ROOT), "OMP_NUM_THREADS": "1"}
     rows = "from tests import bench; bench.spectra(); bench.modal()"
     subprocess.run([sys.executable, "-c", rows], check=True, env=one_thread)
+    one_record()
     figures()
     processes()

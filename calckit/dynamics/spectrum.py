@@ -16,6 +16,7 @@ from numpy.typing import ArrayLike
 
 from calckit.dynamics.arguments import Arguments, Array
 from calckit.dynamics.blocks import Blocks, lengthened
+from calckit.dynamics.progress import Progress
 
 REFINEMENTS = ("band-limited", "straight-line")
 STEPS = 50
@@ -55,8 +56,8 @@ def response_spectrum(
     Arguments: `acceleration` of the ground in m/s2, (n,) or (records, n), at steps `dt` in s; `periods` in s;
     `damping`, one ratio or several, from 0 to below 1; `refine`, what is taken between the samples where a period has
     fewer than 20 of them, "band-limited" or "straight-line" (elsewhere: straight lines). Every record is worked in at
-    least 50 steps to a period (64 to a sample at most) and followed for half a period after its end. Returns a
-    Spectrum. Raises InputError naming every bad argument.
+    least 50 steps to a period (64 to a sample at most) and followed for half a period after its end. Past two seconds
+    a terminal shows how far it has come. Returns a Spectrum. Raises InputError naming every bad argument.
 
     >>> found = response_spectrum([0.0, 0.0, 1.0, 1.0], dt=0.01, periods=[0.01, 5.0], damping=0.05)
     >>> found.pseudo_acceleration.shape, found.refinement
@@ -72,6 +73,7 @@ def response_spectrum(
     curves = tuple(refine if period < COARSE * dt else "straight-line" for period in natural)
     parts = np.minimum(2 ** np.ceil(np.log2(np.maximum(STEPS * dt / natural, 1))), _MOST).astype(int)
     displacement, total = (np.empty((len(zeta), len(records), len(natural))) for _ in range(2))
+    bar = Progress("response spectra", displacement.size)
     for curve, count in sorted(set(zip(curves, parts.tolist(), strict=True))):
         chosen = np.flatnonzero((np.array(curves) == curve) & (parts == count))
         step, rest = dt / count, float(natural[chosen].max()) / 2
@@ -83,6 +85,7 @@ def response_spectrum(
             for places in np.split(chosen, range(together, len(chosen), together)):
                 peaks = _peaks(finer, step, natural[places], zeta)
                 displacement[:, some, places], total[:, some, places] = peaks
+                bar.advance(peaks[0].size)
     omega = 2 * np.pi / natural
 
     def settled(array: Array) -> Array:

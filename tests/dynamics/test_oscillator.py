@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import io
+
 import numpy as np
 import pytest
 from hypothesis import given, settings
@@ -10,7 +12,7 @@ from scipy.integrate import solve_ivp
 from scipy.linalg import expm
 from scipy.signal import lfilter, lsim
 
-from calckit.dynamics import oscillator_response, recurrence, response_spectrum
+from calckit.dynamics import oscillator_response, progress, recurrence, response_spectrum
 from calckit.dynamics.spectrum import band_limited, straight
 from calckit.errors import InputError
 
@@ -177,3 +179,25 @@ def test_every_bad_argument_is_named() -> None:
     assert len(caught.value.faults) == 5
     with pytest.raises(InputError, match="acceleration: needed an array of 1 or 2 dimensions"):
         oscillator_response(1.0, 0.01, 1.0, 0.05)
+
+
+class Terminal(io.StringIO):
+    """An error stream that is a terminal."""
+
+    def isatty(self) -> bool:
+        return True
+
+
+CASES = [(Terminal, 0.0, True), (Terminal, 60.0, False), (io.StringIO, 0.0, False)]
+
+
+@pytest.mark.parametrize(("stream", "patience", "shown"), CASES)
+def test_bar_on_a_terminal_past_two_seconds(
+    monkeypatch: pytest.MonkeyPatch, stream: type[io.StringIO], patience: float, shown: bool
+) -> None:
+    said = stream()
+    monkeypatch.setattr("sys.stderr", said)
+    monkeypatch.setattr(progress, "PATIENCE", patience)
+    response_spectrum(np.stack([RECORD, RECORD]), DT, [0.05, 1.0, 2.0], 0.05)
+    assert ("response spectra [" in said.getvalue()) == shown
+    assert not shown or said.getvalue().endswith("\r")

@@ -33,6 +33,7 @@ NOT_SHOWN = {
     "calckit.dynamics": "passes on what its modules define",
     "calckit.dynamics.arguments": "behind the array functions; every refusal shows it",
     "calckit.dynamics.blocks": "behind responses and spectra; shown by their examples",
+    "calckit.dynamics.progress": "behind spectra; a bar on a terminal",
     "calckit.dynamics.verify": "run by `calckit verify dynamics`",
     "calckit.methods": "passes on what its modules define",
     "calckit.methods.": "behind the steps; shown by their examples",

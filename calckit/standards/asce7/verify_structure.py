@@ -10,7 +10,7 @@ from collections.abc import Callable, Mapping, Sequence
 from typing import Any
 
 from calckit.core.calc import Calc
-from calckit.standards.asce7.published import pasted, start
+from calckit.standards.asce7.published import in_force, pasted, start
 
 Given = Mapping[str, Any]
 Results = dict[str, Any]
@@ -122,7 +122,20 @@ def _weight(given: Given) -> Results:
     return results
 
 
+def _period_choice(given: Given) -> Results:
+    periods = []
+    for choice in (*given["choice"], ""):
+        analysis = {"T_analysis": f"{given['T_analysis']} s"} if choice else {}
+        calc = start(S_D1=given["S_D1"], T_a=f"{given['T_a']} s", **analysis)
+        if choice:
+            calc.answer("T_choice", choice, basis="stated by the check")
+        calc.asce7.period()
+        periods.append(in_force(calc, "T", "s"))
+    return {"T": periods[:-1], "T_without_analysis": periods[-1]}
+
+
 ADAPTERS: dict[str, Callable[[Given], Results]] = {
+    "asce7.v.period_choice": _period_choice,
     "asce7.v.wall_period": _wall_period,
     "asce7.v.period_by_stories": _period_by_stories,
     "asce7.v.drift_relief": _drift_relief,
