@@ -13,8 +13,10 @@ from pathlib import Path
 import pytest
 
 from calckit.core.record import Record
+from calckit.report import notebook
+from calckit.report.run import Settings, run
 from tests.printed_audit import audit
-from tests.template_runs import LEVELS, SECOND_PASS, template
+from tests.template_runs import LEVELS, SECOND_PASS, TEMPLATE, template
 
 FRAME = """\
 level, h_x [ft], w_x [kip], X.delta_xe [in]
@@ -230,3 +232,15 @@ def test_printed_digits_of_the_frame(name: str, request: pytest.FixtureRequest) 
     found = audit(json.loads(record.to_json()))
     assert found.faults == []
     assert found.counts["computed line"] >= 44 and found.counts["table row"] >= 200
+
+
+def test_a_register_closes_what_is_to_be_confirmed(first: Record) -> None:
+    waiting = [item.text.removeprefix("ASCE/SEI 7-16 ") for item in first.open_items if item.group == "confirm"]
+    assert len(waiting) > 20
+    rows = [f'ASCE/SEI 7-16,ASCE 7-16,"{clause}",office copy 1,A. Person,2026-10-02' for clause in waiting]
+    register = "\n".join(["standard,edition,table_or_clause,document,by,date", *rows, ""])
+    again = run(notebook.read(TEMPLATE), Settings(confirmed=register)).record
+    assert again is not None
+    assert [item.text for item in again.open_items if item.group == "confirm"] == []
+    assert len(again.open_items) == len(first.open_items) - len(waiting)
+    assert [line.content for line in again.lines] == [line.content for line in first.lines]

@@ -12,6 +12,7 @@ from calckit import Calc
 from calckit.core.assemble import assemble
 from calckit.core.formula import Formula
 from calckit.core.record import Line, Record, Source
+from calckit.errors import InputError
 from calckit.standards.asce7 import EDITIONS
 from calckit.standards.asce7.clauses import NAMES, in_7_22, rule
 from calckit.standards.asce7.declared import FORMULAS, SYMBOLS
@@ -127,3 +128,14 @@ def test_fields_of_use_say_the_edition(edition: str) -> None:
     text = " ".join((*standard.field_of_use, *standard.not_covered))
     assert f"Ground motion of {own}" in text
     assert f"Ground motion of {other.pop()}" not in text
+
+
+@pytest.mark.parametrize("name", list(EDITIONS))
+def test_trap_18_nonbuilding_structures_are_refused_by_the_field_of_use(name: str) -> None:
+    # chapter 15 has its own lower limit, 0.03, and no T_a of 12.8.2.1: none of its systems is offered, and this is said
+    assert any("nonbuilding structures (chapter 15)" in text for text in EDITIONS[name].not_covered)
+    calc = Calc(project="Demo", number="D-1", standard=name)
+    calc.document("S-1", title="Tank")
+    calc.given("system", "elevated tank, braced legs", source="S-1")
+    with pytest.raises(InputError, match=r"a row of Table 12\.2-1; given elevated tank"):
+        calc.asce7.system()

@@ -91,7 +91,7 @@ def test_shears_and_drifts_are_combined_mode_by_mode(worked: Calc) -> None:
     assert max(abs(from_displacements / value(worked, "Delta_t") - 1)) > 0.01
 
 
-def test_forces_are_scaled_to_all_of_the_static_shear(worked: Calc) -> None:
+def test_trap_11_forces_are_scaled_to_all_of_the_static_shear(worked: Calc) -> None:
     V, V_t = value(worked, "V"), value(worked, "V_t")
     assert V_t < 0.99 * V
     assert value(worked, "f_V") == pytest.approx(V / V_t, rel=1e-10)
@@ -118,7 +118,7 @@ def test_no_factor_below_one() -> None:
     assert calc["modal_period"].line.verdict == OK
 
 
-def test_drifts_are_scaled_under_the_floor_by_S_1_alone() -> None:
+def test_trap_11_drifts_are_scaled_under_the_floor_by_S_1_alone() -> None:
     calc = modal(S_1=0.75, S_S=1.5, T_analysis="3 s", k=tuple(k / 20 for k in K))
     floor = value(calc, "C_sfloor1") * value(calc, "W")
     assert floor > value(calc, "V_t")
