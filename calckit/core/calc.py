@@ -158,10 +158,10 @@ class Calc(Writer):
         of the calculation as it stands. Raises UnknownNameError.
 
         >>> calc = Calc(project="Demo", number="D-1")
-        >>> _ = calc.assume("L", "30 ft", basis="demo", meaning="length of the wall")
-        >>> _ = calc.line("A", "L*L", unit="ft^2", meaning="area")
+        >>> _ = calc.assume("b", "30 ft", basis="demo", meaning="length of the wall")
+        >>> _ = calc.line("A", "b*b", unit="ft^2", meaning="area")
         >>> calc.dependency("A")
-        {'lines': {'L': (1, 'L', '30 ft'), 'A': (2, 'A', '900.0 ft²')}, 'edges': [('L', 'A')], 'result': 'A'}
+        {'lines': {'b': (1, 'b', '30 ft'), 'A': (2, 'A', '900.0 ft²')}, 'edges': [('b', 'A')], 'result': 'A'}
         """
         from calckit.core.dependency import dependency
 

@@ -428,7 +428,6 @@ class Writer(Scope):
         >>> from calckit import Calc
         >>> Calc(project="Demo", number="D-1").summary()
         <IPython.core.display.Markdown object>
-        <IPython.core.display.Markdown object>
         """
         from calckit.core.summary import show_summary
 

@@ -331,7 +331,7 @@ def test_changed_lines() -> None:
     assert found["X.V"] == "264.0 kip"
     assert found["X.F_x"].startswith("72.27 kip at Roof, 67.51 kip at 6, ")
     assert found["X.h_limit"] == "not in the former issue"
-    assert found["X.Omega_0"].startswith("look-up: Table 12.2-1, row moment frame: steel special moment frame")
+    assert found["X.Omega_0"].startswith("look-up: Table 12.2-1, row C1, moment frame: steel special moment frame")
     assert all(found.values())
     differ = {line.id for line in new.lines if line.id not in before or line.value != before[line.id].value}
     assert differ <= found.keys()
