@@ -227,7 +227,7 @@ def outcome(mutation: Mutation, tree: Path) -> str:
     place = tree / mutation.file
     text = place.read_text(encoding="utf-8")
     place.write_text(text.replace(mutation.old, mutation.new), encoding="utf-8")
-    command = [sys.executable, "-m", "pytest", "-q", "-x", "--tb=line", "-p", "no:cacheprovider", *mutation.tests]
+    command = [sys.executable, "-m", "pytest", "-qx", "-n0", "--tb=line", "-p", "no:cacheprovider", *mutation.tests]
     environment = {**os.environ, "PYTHONPATH": str(tree), "PYTHONDONTWRITEBYTECODE": "1"}
     result = subprocess.run(command, cwd=tree, env=environment, capture_output=True, text=True, check=False)
     place.write_text(text, encoding="utf-8")

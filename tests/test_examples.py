@@ -43,7 +43,7 @@ def unissued(stem: str, folder: Path) -> notebook.Notebook:
 
 @pytest.mark.parametrize("path", NOTEBOOKS, ids=lambda path: path.stem)
 def test_stored_outputs_are_reproduced(path: Path) -> None:
-    command = [sys.executable, "-m", "pytest", "-q", "-p", "no:cacheprovider", "--nbval-lax", str(path)]
+    command = [sys.executable, "-m", "pytest", "-q", "-n0", "-p", "no:cacheprovider", "--nbval-lax", str(path)]
     environment = {**os.environ, "PYTHONPATH": str(ROOT)}
     ran = subprocess.run(command, cwd=path.parent, env=environment, capture_output=True, text=True, check=False)
     assert ran.returncode == 0, ran.stdout + ran.stderr
